@@ -1,0 +1,1 @@
+"""What is tested, what it is judged by, and what comes out: frozen dataclasses in SI, no I/O."""

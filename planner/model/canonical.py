@@ -1,0 +1,47 @@
+"""Model objects as plain JSON values: the form that is recorded, digested and compared."""
+
+from __future__ import annotations
+
+import dataclasses
+import hashlib
+import json
+import math
+from collections.abc import Mapping
+from enum import Enum
+from typing import Any
+
+import numpy as np
+
+
+def plain(value: Any) -> Any:  # noqa: ANN401, PLR0911 - one return for each kind of value
+    """Turn dataclasses, enums, arrays and tuples into JSON values; NaN and infinities to null.
+
+    Raises:
+        TypeError: a value of a kind that has no JSON form.
+
+    Example:
+        >>> plain({"a": (1, float("nan"))})
+        {'a': [1, None]}
+    """
+    if value is None or isinstance(value, str | bool | int):
+        return value
+    if isinstance(value, float | np.floating):
+        return float(value) if math.isfinite(value) else None
+    if isinstance(value, Enum):
+        return value.value
+    if isinstance(value, np.ndarray):
+        return plain(value.tolist())
+    if isinstance(value, Mapping):
+        return {str(key): plain(item) for key, item in value.items()}
+    if isinstance(value, list | tuple):
+        return [plain(item) for item in value]
+    if dataclasses.is_dataclass(value) and not isinstance(value, type):
+        return {f.name: plain(getattr(value, f.name)) for f in dataclasses.fields(value)}
+    msg = f"no JSON form for {type(value).__name__}"
+    raise TypeError(msg)
+
+
+def digest(value: Any) -> str:  # noqa: ANN401 - whatever plain accepts
+    """SHA-256 of the canonical JSON form, in hex."""
+    text = json.dumps(plain(value), sort_keys=True, separators=(",", ":"), ensure_ascii=False)
+    return hashlib.sha256(text.encode()).hexdigest()

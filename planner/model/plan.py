@@ -1,0 +1,261 @@
+"""The intended run: site, schedule and papers, and the segments that the schedule walks."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from typing import TYPE_CHECKING, Literal
+
+if TYPE_CHECKING:
+    from planner.model.rotor import Rotor
+    from planner.model.rules import RuleBook
+    from planner.model.stand import Stand
+
+SegmentKind = Literal["hold", "ramp", "stop"]
+"""``stop`` is the run-down at the end: a ramp that may be without power."""
+
+BlockKind = Literal["first of day", "track and balance", "pitch sweep", "endurance", "hot restart"]
+
+
+@dataclass(frozen=True)
+class Site:
+    """Air and wind for which the run is planned."""
+
+    elevation_m: float | None
+    pressure_Pa: float | None
+    temperature_K: float
+    temperature_spread_K: float
+    """Half width of the temperature range that the card covers."""
+    relative_humidity: float
+    wind_mean_m_s: float
+    wind_gust_m_s: float
+    averaging_time_s: float
+    anemometer_height_m: float
+    anemometer_error_m_s: float
+    shear_exponent: float
+
+
+@dataclass(frozen=True)
+class Cyclic:
+    """Cyclic pitch: fixed, or trimmed to zero once-per-revolution flapping."""
+
+    trimmed: bool
+    cosine_rad: float = 0.0
+    sine_rad: float = 0.0
+
+
+@dataclass(frozen=True)
+class Window:
+    """Half widths within which a hold is kept."""
+
+    speed_rad_s: float
+    collective_rad: float
+
+
+@dataclass(frozen=True)
+class Step:
+    """Go to a speed and pitch, then hold."""
+
+    speed_rad_s: float
+    collective_rad: float
+    cyclic: Cyclic
+    ramp_time_s: float
+    hold_time_s: float
+    window: Window
+    note: str
+
+
+@dataclass(frozen=True)
+class Block:
+    """Steps run as one part of the card."""
+
+    name: str
+    kind: BlockKind
+    repeat: int
+    steps: tuple[Step, ...]
+
+
+@dataclass(frozen=True)
+class Shutdown:
+    """The way from the last hold to zero speed."""
+
+    time_s: float
+    collective_rad: float
+    powered: bool
+    brake: bool
+    brake_from_rad_s: float
+
+
+@dataclass(frozen=True)
+class KeepOut:
+    """A speed band that is passed without stopping."""
+
+    id: str
+    from_rad_s: float
+    to_rad_s: float
+    why: str
+
+
+@dataclass(frozen=True)
+class OutsideDocument:
+    """An approved document that closes a hazard class which this tool did not assess."""
+
+    hazard_class: str
+    where: tuple[str, ...]
+    title: str
+    number: str
+    revision: str
+    approver: str
+    date: str
+    wind_limit_m_s: float
+    speed_limit_rad_s: float
+
+
+@dataclass(frozen=True)
+class Role:
+    """A person's part in the run; the name may be left for ink."""
+
+    role: str
+    name: str
+    duties: str
+    may_abort: bool
+
+
+@dataclass(frozen=True)
+class AbortActions:
+    """What the crew does on an abort, as the plan orders it."""
+
+    collective_rad: float
+    cyclic: str
+    actions: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class Plan:
+    """Everything a card is made from."""
+
+    title: str
+    card: str
+    revision: str
+    issued: str
+    objective: str
+    planned_start: str
+    planned_finish: str
+    roles: tuple[Role, ...]
+    site: Site
+    blocks: tuple[Block, ...]
+    shutdown: Shutdown
+    keep_outs: tuple[KeepOut, ...]
+    documents: tuple[OutsideDocument, ...]
+    extra_classes: tuple[str, ...]
+    abort: AbortActions
+    rotor: Rotor
+    stand: Stand
+    rule_book: RuleBook
+
+
+@dataclass(frozen=True)
+class Segment:
+    """One stretch of the run: a hold, a ramp, or the final stop."""
+
+    id: str
+    kind: SegmentKind
+    block: int
+    """Index of the block it belongs to; the final stop has the last block's."""
+    step: int
+    from_rad_s: float
+    to_rad_s: float
+    from_collective_rad: float
+    to_collective_rad: float
+    from_cyclic: Cyclic
+    cyclic: Cyclic
+    duration_s: float
+    window: Window
+    times: int
+    """How often the run passes this segment, repeats counted."""
+
+    @property
+    def lowest_rad_s(self) -> float:
+        """Lower end of the speeds that this segment covers, hold window included."""
+        return max(0.0, min(self.from_rad_s, self.to_rad_s) - self.window.speed_rad_s)
+
+    @property
+    def highest_rad_s(self) -> float:
+        """Upper end of the speeds that this segment covers, hold window included."""
+        return max(self.from_rad_s, self.to_rad_s) + self.window.speed_rad_s
+
+
+def segments(plan: Plan) -> tuple[Segment, ...]:
+    """Walk the schedule once, from rest to rest, as ramps, holds and the final stop.
+
+    Segment ids are ``block.step`` counted from one, with ``r`` for the ramp into a step, ``h``
+    for its hold, ``b`` for the way back to a repeated block's first step, and ``stop``.
+    """
+    walk: list[Segment] = []
+    at = replace(_state(plan.blocks[0].steps[0]), speed_rad_s=0.0)
+    for b, block in enumerate(plan.blocks):
+        for s, step in enumerate(block.steps):
+            times = 1 if s == 0 else block.repeat
+            to = _state(step)
+            if at != to:
+                walk.append(_ramp(f"{b + 1}.{s + 1}r", (b, s), at, to, step.ramp_time_s, times))
+            walk.append(_hold(f"{b + 1}.{s + 1}h", (b, s), step, block.repeat))
+            at = to
+        first = block.steps[0]
+        if block.repeat > 1 and at != _state(first):
+            walk.append(
+                _ramp(
+                    f"{b + 1}.1b", (b, 0), at, _state(first), first.ramp_time_s, block.repeat - 1
+                )
+            )
+    end = _State(0.0, plan.shutdown.collective_rad, at.cyclic)
+    last = _ramp("stop", (len(plan.blocks) - 1, 0), at, end, plan.shutdown.time_s, 1)
+    return (*walk, replace(last, kind="stop"))
+
+
+@dataclass(frozen=True)
+class _State:
+    speed_rad_s: float
+    collective_rad: float
+    cyclic: Cyclic
+
+
+def _state(step: Step) -> _State:
+    return _State(step.speed_rad_s, step.collective_rad, step.cyclic)
+
+
+def _ramp(
+    label: str, place: tuple[int, int], start: _State, end: _State, time_s: float, times: int
+) -> Segment:
+    return Segment(
+        id=label,
+        kind="ramp",
+        block=place[0],
+        step=place[1],
+        from_rad_s=start.speed_rad_s,
+        to_rad_s=end.speed_rad_s,
+        from_collective_rad=start.collective_rad,
+        to_collective_rad=end.collective_rad,
+        from_cyclic=start.cyclic,
+        cyclic=end.cyclic,
+        duration_s=time_s,
+        window=Window(0.0, 0.0),
+        times=times,
+    )
+
+
+def _hold(label: str, place: tuple[int, int], step: Step, times: int) -> Segment:
+    return Segment(
+        id=label,
+        kind="hold",
+        block=place[0],
+        step=place[1],
+        from_rad_s=step.speed_rad_s,
+        to_rad_s=step.speed_rad_s,
+        from_collective_rad=step.collective_rad,
+        to_collective_rad=step.collective_rad,
+        from_cyclic=step.cyclic,
+        cyclic=step.cyclic,
+        duration_s=step.hold_time_s,
+        window=step.window,
+        times=times,
+    )

@@ -1,0 +1,71 @@
+"""The stand: mounting, modes, drive, brake, ratings, surroundings. SI, frozen, no I/O."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+Mounting = Literal["upright", "inverted", "axis level"]
+
+
+@dataclass(frozen=True)
+class GivenMode:
+    """A stand or shaft mode as measured or calculated elsewhere."""
+
+    name: str
+    family: Literal["stand", "shaft"]
+    frequency_rad_s: float
+    damping_ratio: float
+    direction: str
+    rotor_fitted: bool | None
+    """Was the rotor's mass fitted? None: not stated, so the mode cannot be judged."""
+    source: str
+
+
+@dataclass(frozen=True)
+class Drive:
+    """Motor and gearing, referred to the rotor shaft."""
+
+    name: str
+    gear_ratio: float
+    """Motor turns for one rotor turn."""
+    torque_rating_N_m: float
+    power_rating_W: float
+    maximum_rad_s: float
+    overspeed_trip_rad_s: float | None
+
+
+@dataclass(frozen=True)
+class Ratings:
+    """What the stand carries at the hub."""
+
+    thrust_N: float
+    hub_moment_N_m: float
+
+
+@dataclass(frozen=True)
+class Obstruction:
+    """Something within reach of a blade, or a place where people stay."""
+
+    name: str
+    bearing_rad: float
+    distance_m: float
+    height_m: float
+
+
+@dataclass(frozen=True)
+class Stand:
+    """The whirl stand as it is built."""
+
+    name: str
+    hub_height_m: float
+    mounting: Mounting
+    full_speed_rad_s: float
+    """Rotor speed that reads 100 % rpm."""
+    speed_gauge_error_rad_s: float
+    modes: tuple[GivenMode, ...]
+    drive: Drive
+    brake_below_rad_s: float | None
+    ratings: Ratings
+    obstructions: tuple[Obstruction, ...]
+    positions: tuple[Obstruction, ...]
