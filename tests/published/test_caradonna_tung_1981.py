@@ -27,8 +27,18 @@ from functools import cache
 import numpy as np
 import pytest
 
-from planner.methods.hover import HoverBlade, hover_coefficients, hover_inflow, midpoint_stations
-from planner.methods.section_lookup import station_coefficients, station_tables
+from planner.methods.hover import (
+    HoverBlade,
+    SectionLaw,
+    hover_coefficients,
+    hover_inflow,
+    midpoint_stations,
+)
+from planner.methods.section_lookup import (
+    StationSections,
+    station_coefficients,
+    station_tables,
+)
 from planner.methods.sections import (
     NACA_0012_DIVERGENCE_MACH,
     NACA_0012_STALL_FALL_RAD_PER_MACH,
@@ -53,7 +63,7 @@ def built_in_section(alpha, mach):
 
 
 @cache
-def built_in_tables():
+def built_in_tables() -> StationSections:
     law = SymmetricLaw(
         5.73,
         0.0087,
@@ -66,7 +76,7 @@ def built_in_tables():
     return station_tables([table], np.ones((STATIONS, 1)))
 
 
-def percent_above(section, degrees, tip_mach, measured):
+def percent_above(section: SectionLaw, degrees: float, tip_mach: float, measured: float) -> float:
     root = 0.1905 / 1.143
     radius, width = midpoint_stations(root, STATIONS)
     solidity = np.full(STATIONS, 2 * 0.1905 / (np.pi * 1.143))
@@ -75,7 +85,7 @@ def percent_above(section, degrees, tip_mach, measured):
     )
     found = hover_coefficients(blade, section, hover_inflow(blade, section))
     assert found.converged.all()
-    return 100.0 * (found.thrust_coefficient[0] / measured - 1.0)
+    return float(100.0 * (found.thrust_coefficient[0] / measured - 1.0))
 
 
 @pytest.mark.parametrize(

@@ -6,6 +6,7 @@ below Mach 0.725 and 0.677 - 0.744 M above; lift curve straight up to 15 - 16 M 
 """
 
 import numpy as np
+import numpy.typing as npt
 import pytest
 
 from planner.methods.section_lookup import coefficients
@@ -20,7 +21,7 @@ from planner.methods.stall import Continuation
 pytestmark = pytest.mark.published
 
 
-def built_in_slope_per_deg(mach):
+def built_in_slope_per_deg(mach: npt.ArrayLike) -> npt.NDArray[np.float64]:
     law = SymmetricLaw(
         float(np.degrees(0.1)),
         0.0087,

@@ -17,7 +17,13 @@ The bands are two-sided: a better agreement would be as suspect as a worse one.
 import numpy as np
 import pytest
 
-from planner.methods.hover import HoverBlade, hover_coefficients, hover_inflow, midpoint_stations
+from planner.methods.hover import (
+    HoverBlade,
+    HoverCoefficients,
+    hover_coefficients,
+    hover_inflow,
+    midpoint_stations,
+)
 
 pytestmark = pytest.mark.published
 
@@ -27,7 +33,7 @@ def quoted_section(alpha, mach):
     return 5.75 * alpha, 0.0113 + 1.25 * alpha**2
 
 
-def theory(degrees):
+def theory(degrees: float) -> HoverCoefficients:
     root = 0.127 / 0.762
     radius, width = midpoint_stations(root, 400)
     solidity = np.full(400, 5 * 0.0508 / (np.pi * 0.762))
