@@ -94,6 +94,7 @@ class UnitError(ValueError):
     """
 
     def __init__(self, message: str, mend: str = "") -> None:
+        """Join the message and the mend."""
         super().__init__(f"{message}; {mend}" if mend else message)
         self.mend = mend
 
@@ -190,4 +191,5 @@ def _unit_fault(text: str, name: str, dimensions: tuple[str, ...]) -> UnitError:
         return UnitError(f"must carry a unit of {wanted} ({allowed}), got {text!r}")
     close = difflib.get_close_matches(name, unit_names(*dimensions), n=1)
     mend = f"did you mean {close[0]!r}?" if close else ""
-    return UnitError(f"must be a {wanted} in one of: {allowed}; got unit {name!r} in {text!r}", mend)
+    message = f"must be a {wanted} in one of: {allowed}; got unit {name!r} in {text!r}"
+    return UnitError(message, mend)

@@ -4,14 +4,16 @@ from pathlib import Path
 import numpy as np
 import pytest
 
-from planner.methods import hand_checks, hand_checks_flap
+from planner.methods import hand_checks, hand_checks_flap, hand_checks_hover
+from planner.methods.hand_checks_hover import (
+    hover_power_coefficient,
+    momentum_hover_thrust_coefficient,
+)
 from planner.methods.hand_checks import (
     FlapHinge,
     flap_frequency_ratio,
-    hover_power_coefficient,
     lift_off_speed_rad_s,
     lock_number,
-    momentum_hover_thrust_coefficient,
     resting_stop_moment_n_m,
     steady_flap_moment,
     tip_speed_m_s,
@@ -28,7 +30,7 @@ def uniform_hinge(offset: float, spring: float = 0.0, neutral: float = 0.0) -> F
     return FlapHinge(inertia, moment, offset, spring, neutral)
 
 
-@pytest.mark.parametrize("module", [hand_checks, hand_checks_flap])
+@pytest.mark.parametrize("module", [hand_checks, hand_checks_flap, hand_checks_hover])
 def test_hand_checks_import_nothing_of_the_main_calculation(module):
     tree = ast.parse(Path(module.__file__).read_text(encoding="utf-8"))
     names = {

@@ -1,0 +1,10 @@
+"""The command ``whirlcard``."""
+
+from __future__ import annotations
+
+
+def run() -> None:
+    """Entry point of the installed command."""
+    from planner.cli.app import main  # noqa: PLC0415 - keeps the import of the package light
+
+    main()

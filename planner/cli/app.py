@@ -1,0 +1,168 @@
+"""Commands: parse, call, print, exit. Heavy imports stay inside the commands."""
+
+from __future__ import annotations
+
+import sys
+from enum import Enum
+from pathlib import Path
+from typing import Annotated, Any
+
+import typer
+
+import planner
+
+app = typer.Typer(
+    name="whirlcard",
+    no_args_is_help=True,
+    rich_markup_mode=None,
+    pretty_exceptions_enable=False,
+    help="Plan and safety-check a whirl-stand run, and print its test card. A planning aid: it "
+    "never clears anyone to run.",
+    context_settings={"help_option_names": ["-h", "--help"]},
+)
+
+
+class Paper(str, Enum):
+    """Page sizes."""
+
+    a4 = "a4"
+    letter = "letter"
+
+
+PlanArgument = Annotated[
+    Path, typer.Argument(help="Plan folder, its plan.toml, or a record (.json).", metavar="PLAN")
+]
+
+
+def main() -> None:
+    """Run the command line; output that the terminal cannot show is escaped, never a crash."""
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):
+            stream.reconfigure(errors="backslashreplace")
+    app()
+
+
+def _show_version(value: bool) -> None:
+    if value:
+        print(f"whirlcard {planner.__version__}")
+        raise typer.Exit
+
+
+@app.callback()
+def _common(
+    version: Annotated[  # noqa: ARG001 - typer calls back with it
+        bool,
+        typer.Option("--version", callback=_show_version, is_eager=True, help="Show the version."),
+    ] = False,
+) -> None:
+    """Plan and safety-check a whirl-stand run, and print its test card."""
+
+
+@app.command()
+def start(
+    folder: Annotated[Path, typer.Argument(help="New or empty folder.", metavar="DIR")],
+) -> None:
+    """Write a commented starter plan folder that runs as it is."""
+    from planner.cli.sources import stop_on_fault
+    from planner.files.start import write_starter
+
+    with stop_on_fault():
+        written = write_starter(folder)
+    print(f"Wrote {len(written)} files to {folder}:")
+    for path in written:
+        print(f"  {path.name}")
+    print(f"Next: whirlcard check {folder}")
+
+
+@app.command()
+def check(
+    plan: PlanArgument,
+    as_json: Annotated[
+        bool, typer.Option("--json", help="Print the whole record as JSON instead.")
+    ] = False,
+) -> None:
+    """Predict, judge against the rule book, and print the findings."""
+    from planner.cli.sources import load_record
+    from planner.cli.summary import summary
+    from planner.record.layout import to_bytes
+
+    record = load_record(plan)
+    print(to_bytes(record).decode() if as_json else summary(record), end="" if as_json else "\n")
+    _finish(record)
+
+
+@app.command()
+def card(
+    plan: PlanArgument,
+    out: Annotated[
+        Path | None, typer.Option("--out", "-o", help="PDF to write [CARD.pdf].")
+    ] = None,
+    paper: Annotated[Paper, typer.Option(help="Page size.")] = Paper.a4,
+) -> None:
+    """Print the test card as PDF, with its JSON record beside it."""
+    from planner.cli.sources import load_record, write
+    from planner.cli.summary import headline
+    from planner.paper.card import card_pdf
+    from planner.record.layout import to_bytes
+
+    record = load_record(plan)
+    target = out or Path(f"{safe_name(record)}.pdf")
+    beside = target.with_suffix(".json")
+    data = card_pdf(record, paper.value)
+    write(target, data)
+    print(f"Wrote {target}")
+    if beside.resolve() != plan.resolve():
+        write(beside, to_bytes(record))
+        print(f"Wrote {beside}")
+    print(headline(record))
+    _finish(record)
+
+
+@app.command()
+def fan(
+    plan: PlanArgument,
+    out: Annotated[
+        Path | None, typer.Option("--out", "-o", help="File ending in .pdf, .svg or .csv.")
+    ] = None,
+    paper: Annotated[Paper, typer.Option(help="Page size of a PDF.")] = Paper.a4,
+) -> None:
+    """Draw natural frequencies over rotor speed with harmonics and the run's speeds."""
+    from planner.cli.sources import fail, load_record, write
+    from planner.paper.fan import fan_csv, fan_pdf, fan_svg
+
+    record = load_record(plan)
+    target = out or Path(f"{safe_name(record)}-fan.pdf")
+    kind = target.suffix.lower()
+    if kind not in {".pdf", ".svg", ".csv"}:
+        fail(f"--out: expected a name ending in .pdf, .svg or .csv, found {target.name!r}")
+    if kind == ".pdf":
+        data = fan_pdf(record, paper.value)
+    else:
+        data = (fan_svg(record) if kind == ".svg" else fan_csv(record)).encode()
+    write(target, data)
+    print(f"Wrote {target}")
+
+
+@app.command()
+def method(
+    quantity: Annotated[
+        str | None, typer.Argument(help="Id of a quantity; leave out for the list.")
+    ] = None,
+) -> None:
+    """Show how a number is computed: method, validity, source and hand check."""
+    from planner.cli.methods import describe, listing
+
+    print(listing() if quantity is None else describe(quantity))
+
+
+def safe_name(record: dict[str, Any]) -> str:
+    """File name from the card number: letters, digits, dot, dash and underscore only."""
+    name = "".join(c if c.isalnum() or c in "._-" else "-" for c in record["plan"]["card"])
+    return name.strip(".") or "card"
+
+
+def _finish(record: dict[str, Any]) -> None:
+    from planner.judge.status import exit_status
+    from planner.model.results import Verdict
+
+    raise typer.Exit(int(exit_status(Verdict(record["verdict"]))))

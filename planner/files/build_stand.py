@@ -1,0 +1,88 @@
+"""The stand: checks between its values, and the way into the model."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from planner.model.stand import Drive, GivenMode, Obstruction, Ratings, Stand
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from planner.files.schema_stand import (
+        DriveTable,
+        ModeTable,
+        PlaceTable,
+        StandFile,
+    )
+    from planner.files.schema_values import Measured
+    from planner.files.source import Document
+
+
+def check_stand(document: Document, file: StandFile) -> None:
+    """Add the faults between values of the stand file."""
+    _check_names(document, "mode", file.mode)
+    _check_names(document, "obstruction", file.obstruction)
+    _check_names(document, "position", file.position)
+    trip = file.drive.overspeed_trip
+    if trip is not None and trip.resolved(file.full_speed) > file.drive.maximum_speed.resolved(
+        file.full_speed
+    ):
+        expected = "a trip at or below the drive's maximum_speed"
+        document.fault(("drive", "overspeed_trip"), expected, "correct one of the two")
+
+
+def _check_names(
+    document: Document, key: str, entries: Sequence[ModeTable] | Sequence[PlaceTable]
+) -> None:
+    names = [entry.name for entry in entries]
+    for i, name in enumerate(names):
+        if name and name in names[:i]:
+            document.fault((key, i, "name"), "a name of its own", "rename one of the two")
+
+
+def build_stand(file: StandFile) -> Stand:
+    """Build the model from a file without faults."""
+    return Stand(
+        name=file.name,
+        hub_height_m=file.hub_height,
+        mounting=file.mounting,
+        full_speed_rad_s=file.full_speed,
+        speed_gauge_error_rad_s=file.speed_gauge_error.resolved(file.full_speed),
+        modes=tuple(
+            GivenMode(
+                name=mode.name,
+                family=mode.family,
+                frequency_rad_s=mode.frequency,
+                damping_ratio=mode.damping,
+                direction=mode.direction,
+                rotor_fitted=mode.rotor_fitted,
+                source=mode.source,
+            )
+            for mode in file.mode
+        ),
+        drive=_drive(file.drive, file.full_speed),
+        brake_below_rad_s=_optional(file.brake.below if file.brake else None, file.full_speed),
+        ratings=Ratings(file.ratings.thrust, file.ratings.hub_moment),
+        obstructions=_places(file.obstruction),
+        positions=_places(file.position),
+    )
+
+
+def _drive(drive: DriveTable, full_speed: float) -> Drive:
+    return Drive(
+        name=drive.name,
+        gear_ratio=drive.gear_ratio,
+        torque_rating_N_m=drive.torque_rating,
+        power_rating_W=drive.power_rating,
+        maximum_rad_s=drive.maximum_speed.resolved(full_speed),
+        overspeed_trip_rad_s=_optional(drive.overspeed_trip, full_speed),
+    )
+
+
+def _optional(speed: Measured | None, full_speed: float) -> float | None:
+    return None if speed is None else speed.resolved(full_speed)
+
+
+def _places(places: list[PlaceTable]) -> tuple[Obstruction, ...]:
+    return tuple(Obstruction(p.name, p.bearing, p.distance, p.height) for p in places)

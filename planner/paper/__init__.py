@@ -1,0 +1,1 @@
+"""Printed pages and charts: pure functions of the record, which compute nothing."""

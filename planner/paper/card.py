@@ -1,0 +1,86 @@
+"""The console test card: a pure function of the record."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from planner.paper.abort_sheet import abort_boxes, notes_boxes
+from planner.paper.banner import banner_of
+from planner.paper.boxes import Box, Picture, gap, heading, new_page, paragraph
+from planner.paper.closing import as_run_boxes, coast_boxes, reentry_boxes, signature_boxes
+from planner.paper.fan import fan_boxes
+from planner.paper.flap_chart import flap_drawing
+from planner.paper.front import (
+    configuration_boxes,
+    prerequisite_boxes,
+    run_boxes,
+    weather_boxes,
+)
+from planner.paper.limits import finding_boxes, limit_boxes
+from planner.paper.pages import frame_for, paginate, render
+from planner.paper.reading import Json, Reading
+from planner.paper.steps import rule_boxes, step_boxes
+
+if TYPE_CHECKING:
+    from planner.paper.pages import Frame, Page
+
+_GAP = 14.0
+
+
+def card_pdf(record: Json, paper: str = "a4") -> bytes:
+    """Print the test card of a record.
+
+    The same record gives the same bytes within one set of locked libraries.
+
+    Args:
+        record: a record of layout 1, as ``planner.record.layout`` describes it.
+        paper: ``a4`` or ``letter``.
+
+    Raises:
+        UnprintableError: text holds characters that paper cannot show.
+        ValueError: an unknown paper, or a verdict that is none.
+    """
+    reading, frame = Reading(record), frame_for(paper)
+    return render(card_pages(reading, frame), frame, banner_of(reading, "Test card"))
+
+
+def card_pages(reading: Reading, frame: Frame) -> list[Page]:
+    """Lay the card out; the ABORT sheet comes last and begins on paper of its own."""
+    pages = paginate(_body(reading, frame), frame.height)
+    if len(pages) % 2:
+        pages += paginate(notes_boxes(frame), frame.height)
+    return pages + paginate(abort_boxes(reading, frame), frame.height)
+
+
+def _body(reading: Reading, frame: Frame) -> list[Box]:
+    parts = (
+        run_boxes(reading, frame),
+        configuration_boxes(reading, frame),
+        prerequisite_boxes(reading, frame),
+        weather_boxes(reading, frame),
+        limit_boxes(reading, frame),
+        finding_boxes(reading, frame),
+        rule_boxes(frame),
+        step_boxes(reading, frame),
+        coast_boxes(reading, frame),
+        reentry_boxes(frame),
+        as_run_boxes(frame),
+        fan_boxes(reading, frame, "12  Fan chart"),
+        _flap_boxes(reading, frame),
+        [new_page(), *signature_boxes(reading, frame)],
+    )
+    return [box for part in parts for box in (*part, gap(_GAP))]
+
+
+def _flap_boxes(reading: Reading, frame: Frame) -> list[Box]:
+    said = (
+        "Lowest and highest flap over each hold's window and the model allowance. Along ramps "
+        "the answer is quasi-static and for information only."
+    )
+    drawing = flap_drawing(reading, frame.width, frame.height - 60.0)
+    return [
+        new_page(),
+        heading("Flap range against the stops", frame.width, level=1),
+        paragraph(said, frame.width, keep_next=True),
+        Picture(keep_next=False, drawing=drawing),
+    ]

@@ -1,0 +1,263 @@
+"""Looking things up in a record: what the pages ask for, by name; nothing is computed here."""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cached_property
+from typing import Any
+
+from planner.model.results import Status, Verdict
+from planner.model.rules import HAZARD_CLASSES
+from planner.paper import texts
+
+Json = Mapping[str, Any]
+
+SYMBOLS = {
+    Verdict.GO: "○",
+    Verdict.CAUTION: "△",
+    Verdict.NOT_ASSESSED: "◇",
+    Verdict.NO_GO: "■",
+}
+"""Printed with the word, so that neither colour nor the word alone carries a verdict."""
+
+_ENDS = ("low", "high")
+
+_BANNERS = {
+    Verdict.GO: "PLAN GO, not clearance to run",
+    Verdict.CAUTION: "CAUTION, not clearance to run",
+    Verdict.NOT_ASSESSED: "NOT ASSESSED — do not run",
+    Verdict.NO_GO: "NO-GO — do not run",
+}
+
+
+def verdict_of(word: str) -> Verdict:
+    """Read a verdict's word.
+
+    Raises:
+        ValueError: the word is not a verdict; paper prints no verdict that it does not know.
+    """
+    try:
+        return Verdict(word)
+    except ValueError:
+        known = ", ".join(verdict.value for verdict in Verdict)
+        msg = f"a verdict must be one of {known}; the record has {word!r}"
+        raise ValueError(msg) from None
+
+
+def with_symbol(word: str) -> str:
+    """Put a verdict's symbol before its word."""
+    verdict = verdict_of(word)
+    return f"{SYMBOLS[verdict]} {verdict.value}"
+
+
+def banner_text(word: str) -> str:
+    """Give the sentence that every page carries for a verdict."""
+    verdict = verdict_of(word)
+    return f"{SYMBOLS[verdict]} {_BANNERS[verdict]}"
+
+
+@dataclass(frozen=True)
+class Shown:
+    """A prediction ready for paper: its number and range, or the status in their place."""
+
+    text: str
+    value: float = 0.0
+    low: float = 0.0
+    high: float = 0.0
+    is_number: bool = False
+    why: str = ""
+    """Why there is no number."""
+
+
+@dataclass(frozen=True)
+class Reading:
+    """A record with its indexes."""
+
+    record: Json
+
+    @property
+    def plan(self) -> Json:
+        """The model that the record was made from."""
+        plan: Json = self.record["plan"]
+        return plan
+
+    @property
+    def book(self) -> Json:
+        """The rule book that judged."""
+        book: Json = self.plan["rule_book"]
+        return book
+
+    @cached_property
+    def vocabulary(self) -> dict[str, Json]:
+        """Quantity id to its entry."""
+        return {entry["id"]: entry for entry in self.record["vocabulary"]}
+
+    @cached_property
+    def rules(self) -> dict[str, Json]:
+        """Rule id to the rule."""
+        return {rule["id"]: rule for rule in self.book["rules"]}
+
+    @cached_property
+    def findings(self) -> tuple[Json, ...]:
+        """All findings, worst first; those of one verdict in the book's order."""
+        found = self.record["findings"]
+        return tuple(sorted(found, key=lambda f: -verdict_of(f["verdict"]).rank))
+
+    @cached_property
+    def findings_by_rule(self) -> dict[str, list[Json]]:
+        """Rule id to its findings, worst first."""
+        grouped: dict[str, list[Json]] = defaultdict(list)
+        for finding in self.findings:
+            grouped[finding["rule"]].append(finding)
+        return dict(grouped)
+
+    def rules_of_kind(self, *kinds: str) -> list[Json]:
+        """Rules of some kinds, in the book's order."""
+        return [rule for rule in self.book["rules"] if rule["kind"] in kinds]
+
+    def title_of(self, rule_id: str) -> str:
+        """A rule's title; its id where the book has no such rule."""
+        rule = self.rules.get(rule_id)
+        return str(rule["title"]) if rule else rule_id
+
+    def class_title(self, hazard_class: str) -> str:
+        """A hazard class in words."""
+        if hazard_class in HAZARD_CLASSES:
+            return HAZARD_CLASSES[hazard_class][0]
+        return str(dict(self.book["extra_classes"]).get(hazard_class, hazard_class))
+
+    def unit_of(self, rule: Json) -> str:
+        """Unit in which a rule's numbers are printed."""
+        quantity = self.vocabulary.get(rule["quantity"], {})
+        return str(rule["unit"] or quantity.get("unit", ""))
+
+    def segment_verdict(self, segment_id: str) -> str:
+        """Verdict of a stretch of the run; NOT ASSESSED where the record has none."""
+        words: Mapping[str, str] = self.record["segment_verdicts"]
+        return words.get(segment_id, Verdict.NOT_ASSESSED.value)
+
+    def row(self, quantity: str, segment: str = "", band: str = "") -> Json | None:
+        """The prediction for a place: its own, or the one that stands for the whole study."""
+        own: Json | None = self._rows.get((quantity, segment, band))
+        if own is not None:
+            return own
+        for key in ((segment, ""), ("", band), ("", "")):
+            found: Json | None = self._rows.get((quantity, *key))
+            if found is not None and found["status"] != Status.OK.value:
+                return found
+        return None
+
+    def shown(self, quantity: str, segment: str = "", band: str = "") -> Shown:
+        """Print a prediction, or the status that stands in its place; never nothing."""
+        entry = self.vocabulary.get(quantity)
+        row = self.row(quantity, segment, band)
+        if entry is None or row is None:
+            return Shown(texts.NOT_ASSESSED, why=Status.NOT_COMPUTED.value)
+        if row["status"] == Status.NOT_APPLICABLE.value:
+            return Shown(texts.DOES_NOT_APPLY, why="—")
+        fault = self._fault(entry, row)
+        if fault:
+            return Shown(texts.NOT_ASSESSED, why=fault)
+        worst = row[entry["danger"] if entry["danger"] in _ENDS else "value"]
+        text = texts.toward_danger(worst, entry["unit"], entry["danger"])
+        return Shown(text, row["value"], row["low"], row["high"], is_number=True)
+
+    def _fault(self, entry: Json, row: Json) -> str:
+        """Say why a row holds no number that may be printed; empty where it does."""
+        if row["status"] != Status.OK.value:
+            return str(row["status"])
+        if None in (row["value"], row["low"], row["high"]):
+            return Status.NOT_COMPUTED.value
+        wanted = entry["allowance"]
+        if wanted and all(a["id"] != wanted for a in self.book["allowances"]):
+            return f"no allowance {wanted}"
+        return ""
+
+    def applies(self, quantity: str) -> bool:
+        """Say whether the article has such a thing at all."""
+        rows = self.record["predictions"].get(quantity, {"rows": []})["rows"]
+        return not rows or any(row["status"] != Status.NOT_APPLICABLE.value for row in rows)
+
+    def margin(self, quantity: str, segment_id: str) -> str:
+        """Smallest distance to a limit on a quantity in a stretch of the run.
+
+        A finding holds the margin of its own segment, and may hold those of others under
+        ``segment_margins``; a margin that the record does not hold is not made up.
+        """
+        margins: list[float] = []
+        said = "no limit"
+        for finding in self._findings_by_quantity.get(quantity, ()):
+            word = finding["segment_verdicts"].get(segment_id)
+            if word == Verdict.NOT_ASSESSED.value:
+                return texts.NOT_ASSESSED
+            if word is None:
+                continue
+            margin = finding.get("segment_margins", {}).get(segment_id)
+            if margin is None and finding["segment"] == segment_id:
+                margin = finding["margin"]
+            if margin is None:
+                said = "see limits"
+                continue
+            margins.append(margin)
+        if not margins:
+            return said
+        return texts.number(min(margins), self.vocabulary[quantity]["unit"], "down")
+
+    def documents_for(self, quantities: tuple[str, ...], segment_id: str) -> list[str]:
+        """Outside documents that stand in for numbers which are not there, in this stretch."""
+        return [
+            number
+            for quantity in quantities
+            if not self.shown(quantity, segment_id).is_number
+            for finding in self._findings_by_quantity.get(quantity, ())
+            if finding["segment_verdicts"].get(segment_id) == Verdict.GO.value
+            for number in finding["closed_by"].split(", ")
+            if number
+        ]
+
+    def reasons_against(self, segment_id: str) -> list[tuple[str, str]]:
+        """Verdict and title of every rule or open hazard class that keeps a stretch from GO.
+
+        Worst first; hazard classes that nothing closes in this part of the run come last.
+        """
+        kind = self._kinds.get(segment_id, "")
+        opened = [
+            (covered["verdict"], f"nothing closes {self.class_title(covered['hazard_class'])}")
+            for covered in self.record["coverage"]
+            if covered["where"] == kind and not covered["closed_by"]
+        ]
+        return [*self._against.get(segment_id, []), *opened]
+
+    @cached_property
+    def _kinds(self) -> dict[str, str]:
+        return {segment["id"]: segment["kind"] for segment in self.record["segments"]}
+
+    @cached_property
+    def _against(self) -> dict[str, list[tuple[str, str]]]:
+        against: dict[str, list[tuple[str, str]]] = defaultdict(list)
+        for verdict in reversed(Verdict):
+            for finding in self.findings:
+                for segment_id, word in finding["segment_verdicts"].items():
+                    if verdict is not Verdict.GO and verdict_of(word) is verdict:
+                        title = self.title_of(finding["rule"])
+                        against[segment_id].append((verdict.value, title))
+        return dict(against)
+
+    @cached_property
+    def _rows(self) -> dict[tuple[str, str, str], Json]:
+        rows: dict[tuple[str, str, str], Json] = {}
+        for quantity, prediction in self.record["predictions"].items():
+            for row in prediction["rows"]:
+                rows.setdefault((quantity, row["segment"], row["band"]), row)
+        return rows
+
+    @cached_property
+    def _findings_by_quantity(self) -> dict[str, list[Json]]:
+        grouped: dict[str, list[Json]] = defaultdict(list)
+        for finding in self.findings:
+            rule = self.rules.get(finding["rule"])
+            if rule is not None and rule["quantity"]:
+                grouped[rule["quantity"]].append(finding)
+        return dict(grouped)

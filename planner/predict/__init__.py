@@ -1,0 +1,1 @@
+"""The studies and the register of quantities: from a plan to predictions."""

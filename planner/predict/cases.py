@@ -1,0 +1,164 @@
+"""From segments to the states that the rotor is solved in.
+
+Each hold is solved at its target (nominal), and at the corners of its window: speed with gauge
+error, collective, calm and gust, and both ends of the air load allowance together with the
+thinnest and densest air. Each ramp is solved at points along it, at each of them nominal, and
+calm and gust with both ends of the allowance. Where a step trims the cyclic, it is found at the
+nominal state in the mean wind; the corners keep that cyclic: a gust is not trimmed out.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from itertools import product
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from planner.rotor.case import Cases, gravity_vector_m_s2, make_cases
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from planner.model.plan import Cyclic, Segment
+    from planner.model.rotor import Stop
+    from planner.model.stand import Mounting
+    from planner.predict.study import Inputs
+
+RAMP_POINTS = 9
+"""Points along a change of rotor speed, both ends included."""
+PITCH_POINTS = 3
+"""Points along a change of pitch at constant speed."""
+
+
+@dataclass(frozen=True)
+class Air:
+    """Air and wind of a run: nominal, and the ends that corners take."""
+
+    density_kg_m3: tuple[float, float, float]
+    """Nominal, thinnest, densest."""
+    sound_m_s: float
+    slowest_sound_m_s: float
+    wind_m_s: float
+    gust_m_s: float
+    load_factor: tuple[float, float]
+
+
+@dataclass(frozen=True)
+class Point:
+    """One state of one segment."""
+
+    segment: int
+    speed_rad_s: float
+    collective_rad: float
+    cyclic: Cyclic
+    wind_m_s: float
+    density_kg_m3: float
+    load_factor: float
+
+
+def air_of(inputs: Inputs) -> Air:
+    """Collect the air and wind from the studies before.
+
+    Raises:
+        ValueError: air or wind were not assessed, or the book states no air load allowance.
+    """
+    factor = inputs.requests.allowances.get("air_load")
+    if factor is None:
+        msg = "the rule book states no allowance 'air_load'"
+        raise ValueError(msg)
+    sound, slow, _ = inputs.bounds("speed_of_sound")
+    mean, _, gust = inputs.bounds("wind_at_hub")
+    return Air(inputs.bounds("air_density"), sound, slow, mean, gust, factor)
+
+
+def nominal_points(segments: Sequence[Segment], air: Air) -> list[Point]:
+    """The states that segments are meant to pass, in the mean wind."""
+    return [
+        Point(index, speed, collective, cyclic, air.wind_m_s, air.density_kg_m3[0], 1.0)
+        for index, segment in enumerate(segments)
+        for speed, collective, cyclic in _along(segment)
+    ]
+
+
+def corner_points(point: Point, segment: Segment, air: Air, gauge_error_rad_s: float) -> list[Point]:
+    """The corners around a nominal state whose cyclic is fixed."""
+    speeds, pitches = [point.speed_rad_s], [point.collective_rad]
+    if segment.kind == "hold":
+        half = segment.window.speed_rad_s + gauge_error_rad_s
+        if point.speed_rad_s > 0.0:
+            speeds = [max(0.0, point.speed_rad_s - half), point.speed_rad_s + half]
+        pitches = sorted({
+            point.collective_rad - segment.window.collective_rad,
+            point.collective_rad + segment.window.collective_rad,
+        })
+    winds = sorted({0.0, air.gust_m_s})
+    loads = ((air.density_kg_m3[1], air.load_factor[0]), (air.density_kg_m3[2], air.load_factor[1]))
+    return [
+        replace(point, speed_rad_s=speed, collective_rad=pitch, wind_m_s=wind,
+                density_kg_m3=density, load_factor=factor)
+        for speed, pitch, wind, (density, factor) in product(speeds, pitches, winds, loads)
+    ]
+
+
+def gust_trim_points(points: Sequence[Point], air: Air) -> list[Point]:
+    """Trimmed states once more in the gust: what the cyclic would have to be there."""
+    return [replace(p, wind_m_s=air.gust_m_s) for p in points if p.cyclic.trimmed]
+
+
+def to_cases(
+    points: Sequence[Point],
+    stops: tuple[Stop | None, Stop | None],
+    mounting: Mounting,
+    sound_m_s: float,
+) -> Cases:
+    """Arrays for the rotor; the droop stop's angle is the one in force at each speed."""
+    droop, up = stops
+    missing = float("nan")
+    return make_cases(
+        speed_rad_s=[p.speed_rad_s for p in points],
+        collective_rad=[p.collective_rad for p in points],
+        cyclic_cosine_rad=[p.cyclic.cosine_rad for p in points],
+        cyclic_sine_rad=[p.cyclic.sine_rad for p in points],
+        trimmed=[p.cyclic.trimmed and p.speed_rad_s > 0.0 for p in points],
+        wind_m_s=[p.wind_m_s for p in points],
+        air_density_kg_m3=[p.density_kg_m3 for p in points],
+        speed_of_sound_m_s=sound_m_s,
+        load_factor=[p.load_factor for p in points],
+        gravity_m_s2=gravity_vector_m_s2(mounting),
+        droop_angle_rad=[
+            missing if droop is None else droop.lowest_angle_rad(p.speed_rad_s) for p in points
+        ],
+        up_angle_rad=missing if up is None else up.angle_rad,
+    )
+
+
+def _along(segment: Segment) -> list[tuple[float, float, Cyclic]]:
+    """Speed, collective and cyclic at the nominal points of a segment."""
+    if segment.kind == "hold":
+        return [(segment.to_rad_s, segment.to_collective_rad, segment.cyclic)]
+    count = PITCH_POINTS if segment.from_rad_s == segment.to_rad_s else RAMP_POINTS
+    return [
+        (
+            segment.from_rad_s + share * (segment.to_rad_s - segment.from_rad_s),
+            segment.from_collective_rad
+            + share * (segment.to_collective_rad - segment.from_collective_rad),
+            cyclic,
+        )
+        for share in np.linspace(0.0, 1.0, count).tolist()
+        for cyclic in _cyclics(segment, share)
+    ]
+
+
+def _cyclics(segment: Segment, share: float) -> list[Cyclic]:
+    """Cyclic on the way: between fixed values in proportion, else each end by itself."""
+    start, end = segment.from_cyclic, segment.cyclic
+    if start == end:
+        return [end]
+    if start.trimmed or end.trimmed:
+        return [start, end]
+    return [replace(
+        end,
+        cosine_rad=start.cosine_rad + share * (end.cosine_rad - start.cosine_rad),
+        sine_rad=start.sine_rad + share * (end.sine_rad - start.sine_rad),
+    )]

@@ -1,0 +1,104 @@
+"""Curves for the charts: the run over time, the fan of frequencies, flap against the stops."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from planner.model.results import Status
+from planner.predict.study_modes import GREATEST_HARMONIC, MODES, fan_speeds, tracks
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+
+    from planner.model.plan import Plan, Segment
+    from planner.model.results import Prediction, Requests
+
+
+def series(
+    plan: Plan,
+    segments: tuple[Segment, ...],
+    predictions: Mapping[str, Prediction],
+    requests: Requests,
+) -> dict[str, Any]:
+    """All chart series of a plan."""
+    return {
+        "run": _run(segments),
+        "fan": _fan(plan, segments, predictions, requests),
+        "flap": _flap(plan, segments, predictions),
+    }
+
+
+def _times(segments: tuple[Segment, ...]) -> list[tuple[float, float]]:
+    """Start and end of each segment, one pass of each [s]."""
+    ends = np.cumsum([0.0] + [segment.duration_s for segment in segments])
+    return [(float(a), float(b)) for a, b in zip(ends[:-1], ends[1:], strict=True)]
+
+
+def _run(segments: tuple[Segment, ...]) -> dict[str, Any]:
+    corners = [
+        (time, speed, segment.id)
+        for segment, (start, end) in zip(segments, _times(segments), strict=True)
+        for time, speed in ((start, segment.from_rad_s), (end, segment.to_rad_s))
+    ]
+    return {
+        "time_s": [c[0] for c in corners],
+        "speed_rad_s": [c[1] for c in corners],
+        "segment": [c[2] for c in corners],
+    }
+
+
+def _fan(
+    plan: Plan,
+    segments: tuple[Segment, ...],
+    predictions: Mapping[str, Prediction],
+    requests: Requests,
+) -> dict[str, Any]:
+    inputs = MODES.inputs(plan, segments, requests, predictions)
+    speed = fan_speeds(inputs)
+    try:
+        found = tracks(inputs, speed)
+    except ValueError:
+        found = []  # the study itself is flagged OUTSIDE VALIDITY
+    return {
+        "speed_rad_s": speed,
+        "modes": [
+            {"name": t.name, "family": t.family, "frequency_rad_s": t.frequency_rad_s,
+             "damping": t.damping}
+            for t in found
+        ],
+        "harmonics": list(range(1, GREATEST_HARMONIC + 1)),
+    }
+
+
+def _flap(
+    plan: Plan, segments: tuple[Segment, ...], predictions: Mapping[str, Prediction]
+) -> dict[str, Any]:
+    lowest = _by_segment(predictions["flap_lowest"])
+    highest = _by_segment(predictions["flap_highest"])
+    droop, up = plan.rotor.droop_stop, plan.rotor.up_stop
+    out: dict[str, list[Any]] = {key: [] for key in (
+        "time_s", "segment", "lowest_rad", "highest_rad", "droop_rad", "up_rad", "assessed"
+    )}
+    for segment, (start, end) in zip(segments, _times(segments), strict=True):
+        low, low_known = lowest.get(segment.id, (float("nan"), False))
+        high, high_known = highest.get(segment.id, (float("nan"), False))
+        for time, speed in ((start, segment.from_rad_s), (end, segment.to_rad_s)):
+            out["time_s"].append(time)
+            out["segment"].append(segment.id)
+            out["lowest_rad"].append(low)
+            out["highest_rad"].append(high)
+            out["droop_rad"].append(None if droop is None else droop.lowest_angle_rad(speed))
+            out["up_rad"].append(None if up is None else up.angle_rad)
+            out["assessed"].append(low_known and high_known)
+    return out
+
+
+def _by_segment(prediction: Prediction) -> dict[str, tuple[float, bool]]:
+    """Extreme and whether it was assessed, for each segment."""
+    extreme = prediction.low if prediction.quantity == "flap_lowest" else prediction.high
+    return {
+        label.segment: (float(extreme[i]), prediction.status[i] is Status.OK)
+        for i, label in enumerate(prediction.labels)
+    }

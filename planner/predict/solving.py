@@ -1,0 +1,94 @@
+"""Solving the rotor for all segments of a run at once, and reading one segment's results."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from planner.model.plan import Cyclic
+from planner.predict.cases import (
+    Air,
+    Point,
+    corner_points,
+    gust_trim_points,
+    nominal_points,
+    to_cases,
+)
+from planner.rotor.trim import TrimResult, trim
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from numpy.typing import NDArray
+
+    from planner.model.plan import Segment
+    from planner.model.rotor import Stop
+    from planner.predict.study import Inputs
+    from planner.rotor.setup import RotorArrays
+
+    BoolArray = NDArray[np.bool_]
+    FloatArray = NDArray[np.float64]
+
+
+@dataclass(frozen=True, eq=False)
+class Batch:
+    """States of many segments and what the rotor does in them."""
+
+    points: tuple[Point, ...]
+    result: TrimResult
+    segment: NDArray[np.int64]
+    speed_rad_s: FloatArray
+
+    def of(self, segment: int) -> NDArray[np.int64]:
+        """Positions of one segment's states."""
+        return np.flatnonzero(self.segment == segment)
+
+
+@dataclass(frozen=True, eq=False)
+class Solved:
+    """All states of a run: nominal, corners, and trimmed states once more in the gust."""
+
+    nominal: Batch
+    corners: Batch
+    gust_trim: Batch
+
+
+def solve_run(inputs: Inputs, rotor: RotorArrays, air: Air) -> Solved:
+    """Solve nominal states first, then the corners with the cyclic found there."""
+    segments: Sequence[Segment] = inputs["segments"]
+    error = inputs["stand.speed_gauge_error_rad_s"]
+    nominal = _batch(nominal_points(segments, air), inputs, rotor, air)
+    corners = [
+        corner
+        for i, point in enumerate(nominal.points)
+        for corner in corner_points(
+            replace(point, cyclic=_cyclic_found(nominal.result, i)),
+            segments[point.segment], air, error,
+        )
+    ]
+    again = gust_trim_points([p for p in nominal.points if segments[p.segment].kind == "hold"], air)
+    return Solved(
+        nominal, _batch(corners, inputs, rotor, air), _batch(again, inputs, rotor, air)
+    )
+
+
+def _cyclic_found(result: TrimResult, i: int) -> Cyclic:
+    return Cyclic(
+        trimmed=False,
+        cosine_rad=float(result.cyclic_cosine_rad[i]),
+        sine_rad=float(result.cyclic_sine_rad[i]),
+    )
+
+
+def _batch(points: Sequence[Point], inputs: Inputs, rotor: RotorArrays, air: Air) -> Batch:
+    stops: tuple[Stop | None, Stop | None] = (
+        inputs["rotor"].droop_stop, inputs["rotor"].up_stop
+    )
+    cases = to_cases(points, stops, inputs["stand.mounting"], air.sound_m_s)
+    return Batch(
+        tuple(points), trim(rotor, cases),
+        np.array([p.segment for p in points], dtype=np.int64),
+        np.array([p.speed_rad_s for p in points]),
+    )

@@ -1,0 +1,91 @@
+"""A study: one part of the prediction, with exactly the inputs it declares."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from typing import Any
+
+from planner.model.canonical import digest
+from planner.model.plan import Plan, Segment
+from planner.model.results import Prediction, Requests, Status
+
+PATHS = frozenset({
+    "site", "segments", "keep_outs", "shutdown", "rotor", "rotor.n_blades", "rotor.blade", "rotor.hub",
+    "rotor.droop_stop", "rotor.up_stop", "rotor.control_stiffness_N_m_rad",
+    "rotor.cyclic_authority_rad", "stand.hub_height_m", "stand.mounting",
+    "stand.full_speed_rad_s", "stand.speed_gauge_error_rad_s", "stand.modes",
+})
+"""Model paths that studies may take."""
+
+
+@dataclass(frozen=True)
+class Inputs:
+    """What a study sees: the model paths it takes, the requests, and studies it needs."""
+
+    values: Mapping[str, Any]
+    requests: Requests
+    prior: Mapping[str, Prediction]
+
+    def __getitem__(self, path: str) -> Any:  # noqa: ANN401 - model parts of many types
+        """Look up a model path.
+
+        Raises:
+            KeyError: the study did not declare the path in ``takes``.
+        """
+        return self.values[path]
+
+    def bounds(self, quantity: str) -> tuple[float, float, float]:
+        """Value, low and high of a whole-run quantity of a study that is needed.
+
+        Raises:
+            ValueError: the quantity was not assessed, so that nothing can build on it.
+        """
+        row = self.prior[quantity]
+        if row.status[0] is not Status.OK:
+            msg = f"{quantity} is {row.status[0].value}: {row.reasons[0]}"
+            raise ValueError(msg)
+        return float(row.value[0]), float(row.low[0]), float(row.high[0])
+
+
+@dataclass(frozen=True)
+class Study:
+    """One part of the prediction.
+
+    ``run`` receives exactly the model paths in ``takes`` and the predictions of the studies in
+    ``needs``, so that what a number depends on cannot drift from what is declared.
+    """
+
+    id: str
+    version: int
+    takes: tuple[str, ...]
+    needs: tuple[str, ...]
+    run: Callable[[Inputs], Mapping[str, Prediction]]
+
+    def inputs(
+        self,
+        plan: Plan,
+        segments: tuple[Segment, ...],
+        requests: Requests,
+        prior: Mapping[str, Prediction],
+    ) -> Inputs:
+        """Cut out of a plan what this study takes."""
+        values = {path: _resolve(plan, segments, path) for path in self.takes}
+        needed = {key: p for key, p in prior.items() if p.study in self.needs}
+        return Inputs(values, requests, needed)
+
+    def key(self, inputs: Inputs) -> str:
+        """Digest of study, version and inputs: equal keys mean equal results."""
+        return digest({"study": self.id, "version": self.version, "inputs": inputs})
+
+
+def _resolve(plan: Plan, segments: tuple[Segment, ...], path: str) -> Any:  # noqa: ANN401
+    if path not in PATHS:
+        msg = f"study takes unknown path {path!r}; known: {', '.join(sorted(PATHS))}"
+        raise KeyError(msg)
+    if path == "segments":
+        return segments
+    value: Any = plan
+    for part in path.split("."):
+        value = getattr(value, part)
+    return value

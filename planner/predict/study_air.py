@@ -1,0 +1,72 @@
+"""Air and wind at the hub."""
+
+from __future__ import annotations
+
+import math
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from planner.methods.atmosphere import (
+    moist_air_density_kg_m3,
+    speed_of_sound_m_s,
+    standard_pressure_pa,
+)
+from planner.methods.wind import wind_at_height_m_s
+from planner.predict.rows import single
+from planner.predict.study import Inputs, Study
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+
+    from planner.model.plan import Site
+    from planner.model.results import Prediction
+
+STILL_HEIGHT_SHARE = 0.1
+"""Anemometer and hub closer in height than this share need no wind profile."""
+
+
+def run(inputs: Inputs) -> Mapping[str, Prediction]:
+    """Density and speed of sound over the temperature range, wind from calm to gust."""
+    site: Site = inputs["site"]
+    pressure = site_pressure_pa(site)
+    spread = site.temperature_spread_K
+    temperature = site.temperature_K + np.array([0.0, spread, -spread])
+    density = moist_air_density_kg_m3(pressure, temperature, site.relative_humidity)
+    sound = speed_of_sound_m_s(pressure, temperature, site.relative_humidity)
+    mean, greatest = winds_at_hub(site, inputs["stand.hub_height_m"])
+    return {
+        "air_density": single(
+            "air_density", "air", float(density[0]),
+            low=float(density[1]), high=float(density[2]),
+            hand=pressure / (287.05 * site.temperature_K),
+        ),
+        "speed_of_sound": single(
+            "speed_of_sound", "air", float(sound[0]),
+            low=float(sound[2]), high=float(sound[1]),
+            hand=20.05 * math.sqrt(site.temperature_K),
+        ),
+        "wind_at_hub": single("wind_at_hub", "air", mean, low=0.0, high=greatest),
+    }
+
+
+def site_pressure_pa(site: Site) -> float:
+    """Pressure as stated, or of the standard atmosphere at the site's elevation."""
+    if site.pressure_Pa is not None:
+        return site.pressure_Pa
+    if site.elevation_m is None:
+        msg = "site: must state an elevation or a pressure"
+        raise ValueError(msg)
+    return float(standard_pressure_pa(site.elevation_m))
+
+
+def winds_at_hub(site: Site, hub_height_m: float) -> tuple[float, float]:
+    """Mean wind, and gust plus anemometer error, carried to the hub height [m/s]."""
+    measured = np.array([site.wind_mean_m_s, site.wind_gust_m_s + site.anemometer_error_m_s])
+    mean, greatest = wind_at_height_m_s(
+        measured, site.anemometer_height_m, hub_height_m, site.shear_exponent
+    )
+    return float(mean), float(greatest)
+
+
+AIR = Study("air", 1, ("site", "stand.hub_height_m"), (), run)

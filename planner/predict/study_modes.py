@@ -1,0 +1,250 @@
+"""Natural frequencies over rotor speed and their distance from rotor harmonics."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from planner.methods.beam import BladeBeam, Root, flap_matrices, lag_matrices, torsion_matrices
+from planner.methods.beam_modes import frequencies
+from planner.model.results import Labels, Status
+from planner.predict.blade_views import beam, flap_inertia
+from planner.predict.rows import Rows
+from planner.predict.study import Inputs, Study
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
+    from numpy.typing import NDArray
+
+    from planner.methods.beam import BeamMatrices
+    from planner.model.plan import Segment
+    from planner.model.results import Prediction
+    from planner.model.rotor import Blade, Hub
+    from planner.model.stand import GivenMode
+
+    FloatArray = NDArray[np.float64]
+
+_ID = "modes"
+TOP_SHARE = 1.2
+GRID_SPEEDS = 61
+GREATEST_HARMONIC = 8
+"""Blade modes are held against harmonics up to this one."""
+FAMILY_MODES = {"flap": 3, "lag": 2, "torsion": 1}
+
+
+@dataclass(frozen=True)
+class Track:
+    """One mode over rotor speed."""
+
+    name: str
+    family: str
+    frequency_rad_s: FloatArray
+    """Shape (speeds,)."""
+    harmonics: tuple[int, ...]
+    """Harmonics that excite it; empty: all up to the greatest."""
+    damping: float | None
+    given: GivenMode | None = None
+
+
+def run(inputs: Inputs) -> Mapping[str, Prediction]:
+    """Frequencies and spacing at every hold, and crossings up to 120 % rpm."""
+    holds = [s for s in inputs["segments"] if s.kind == "hold"]
+    speeds = hold_speeds(holds, inputs["stand.speed_gauge_error_rad_s"])
+    rows = {q: Rows(q, _ID) for q in (
+        "mode_frequency", "mode_damping", "harmonic_spacing", "crossing_speed"
+    )}
+    allowance = inputs.requests.allowances.get("frequency")
+    for track in tracks(inputs, speeds.reshape(-1)):
+        at_holds = track.frequency_rad_s.reshape(speeds.shape)
+        for hold, speed, frequency in zip(holds, speeds, at_holds, strict=True):
+            label = Labels(segment=hold.id, mode=track.name)
+            fault = _fault(track, allowance)
+            if fault:
+                for quantity in ("mode_frequency", "mode_damping", "harmonic_spacing"):
+                    rows[quantity].flag(label, Status.NOT_COMPUTED, fault,
+                                        speed_rad_s=hold.to_rad_s)
+                continue
+            assert allowance is not None
+            _frequency_row(rows["mode_frequency"], label, (speed, frequency, allowance),
+                           hand_frequency(track.name, inputs, hold.to_rad_s))
+            _damping_row(rows["mode_damping"], track, hold, float(frequency[0]), inputs)
+            _spacing_rows(rows["harmonic_spacing"], track, label, (speed, frequency, allowance))
+    for track in tracks(inputs, fan_speeds(inputs)):
+        _crossing_rows(rows["crossing_speed"], track, fan_speeds(inputs))
+    return {quantity: filled.prediction() for quantity, filled in rows.items()}
+
+
+def fan_speeds(inputs: Inputs) -> FloatArray:
+    """Rotor speeds of the fan chart, from rest to 120 % rpm [rad/s]."""
+    return np.linspace(0.0, TOP_SHARE * inputs["stand.full_speed_rad_s"], GRID_SPEEDS)
+
+
+def hold_speeds(holds: Sequence[Segment], gauge_error_rad_s: float) -> FloatArray:
+    """Target, lowest and highest speed of each hold, shape (holds, 3) [rad/s]."""
+    return np.array([
+        (
+            hold.to_rad_s,
+            max(0.0, hold.lowest_rad_s - gauge_error_rad_s),
+            hold.highest_rad_s + gauge_error_rad_s,
+        )
+        for hold in holds
+    ]).reshape(-1, 3)
+
+
+def tracks(inputs: Inputs, speed_rad_s: FloatArray) -> list[Track]:
+    """All modes over the speeds: blade families by beam elements, the others as given."""
+    blade: Blade = inputs["rotor.blade"]
+    found: list[Track] = []
+    for prefix, suffix, matrices in blade_families(
+        beam(blade), inputs["rotor.hub"], inputs["rotor.control_stiffness_N_m_rad"]
+    ):
+        count = FAMILY_MODES[prefix]
+        per_mode = frequencies(matrices, speed_rad_s, count)
+        for order in range(count):
+            name = f"{prefix} {order + 1}{suffix}"
+            found.append(Track(name, prefix, per_mode[:, order], (), None))
+    n = inputs["rotor.n_blades"]
+    for mode in inputs["stand.modes"]:
+        harmonics = (1, n, 2 * n) if mode.family == "stand" else (n, 2 * n)
+        constant = np.full(speed_rad_s.shape, mode.frequency_rad_s)
+        found.append(Track(f"{mode.family} {mode.name}", mode.family, constant, harmonics,
+                           mode.damping_ratio, mode))
+    return found
+
+
+def blade_families(
+    blade: BladeBeam, hub: Hub, control_stiffness_N_m_rad: float
+) -> list[tuple[str, str, BeamMatrices]]:
+    """Uncoupled families of blade modes for a hub: family, name suffix and matrices."""
+    start = float(blade.radius_m[0])
+    torsion = torsion_matrices(blade, Root(start, control_stiffness_N_m_rad))
+    if hub.kind == "articulated":
+        flap_root = Root(hub.flap_hinge_m, hub.flap_spring_N_m_rad)
+        lag_root = Root(hub.lag_hinge_m, hub.lag_spring_N_m_rad)
+        return [
+            ("flap", "", flap_matrices(blade, flap_root)),
+            ("lag", "", lag_matrices(blade, lag_root)),
+            ("torsion", "", torsion),
+        ]
+    if hub.kind == "hingeless":
+        built_in = Root(hub.root_m)
+        return [
+            ("flap", "", flap_matrices(blade, built_in)),
+            ("lag", "", lag_matrices(blade, built_in)),
+            ("torsion", "", torsion),
+        ]
+    half_spring = 0.5 * hub.teeter_spring_N_m_rad
+    return [
+        ("flap", " cyclic", flap_matrices(blade, Root(start, half_spring))),
+        ("flap", " collective", flap_matrices(blade, Root(start))),
+        ("lag", "", lag_matrices(blade, Root(start))),
+        ("torsion", "", torsion),
+    ]
+
+
+def _fault(track: Track, allowance: tuple[float, float] | None) -> str:
+    if track.given is not None and track.given.rotor_fitted is None:
+        return ("the stand file does not say whether the rotor's mass was fitted when this mode "
+                "was found (rotor_fitted)")
+    if track.given is not None and not track.given.rotor_fitted:
+        return ("the mode was found without the rotor's mass and is not corrected for it; give "
+                "the mode with the rotor fitted")
+    if allowance is None:
+        return "the rule book states no allowance 'frequency'"
+    return ""
+
+
+_Window = tuple["FloatArray", "FloatArray", tuple[float, float]]
+"""Speeds (target, lowest, highest), frequencies there, and the allowance."""
+
+
+def _frequency_row(rows: Rows, label: Labels, window: _Window, hand: float) -> None:
+    speed, frequency, allowance = window
+    rows.add(label, float(frequency[0]), low=float(frequency.min()) * allowance[0],
+             high=float(frequency.max()) * allowance[1], speed_rad_s=float(speed[0]), hand=hand)
+
+
+def _damping_row(
+    rows: Rows, track: Track, hold: Segment, frequency_rad_s: float, inputs: Inputs
+) -> None:
+    label = Labels(segment=hold.id, mode=track.name)
+    if track.damping is not None:
+        rows.add(label, track.damping, speed_rad_s=hold.to_rad_s)
+    elif track.name in {"flap 1", "flap 1 cyclic", "flap 1 collective"}:
+        _flap_damping(rows, label, hold, inputs)
+    elif track.name == "lag 1" and inputs["rotor.hub"].kind == "articulated" and frequency_rad_s:
+        hub = inputs["rotor.hub"]
+        body = flap_inertia(inputs["rotor.blade"], hub.lag_hinge_m)
+        critical = 2.0 * float(body.second_moment_kg_m2) * frequency_rad_s
+        rows.add(label, hub.lag_damper_N_m_s_rad / critical, speed_rad_s=hold.to_rad_s)
+    else:
+        rows.flag(label, Status.NOT_COMPUTED, "damping of this mode is not computed",
+                  speed_rad_s=hold.to_rad_s)
+
+
+def _flap_damping(rows: Rows, label: Labels, hold: Segment, inputs: Inputs) -> None:
+    air = inputs.prior["flap_damping_ratio"]
+    at = [i for i, row in enumerate(air.labels) if row.segment == hold.id]
+    if at and air.status[at[0]] is Status.OK:
+        i = at[0]
+        rows.add(label, float(air.value[i]), low=float(air.low[i]), high=float(air.high[i]),
+                 speed_rad_s=hold.to_rad_s)
+    else:
+        rows.flag(label, Status.NOT_COMPUTED, "flap damping from the air is not known here",
+                  speed_rad_s=hold.to_rad_s)
+
+
+def _spacing_rows(rows: Rows, track: Track, label: Labels, window: _Window) -> None:
+    speed, frequency, allowance = window
+    if speed.min() <= 0.0:
+        rows.flag(label, Status.NOT_APPLICABLE, "no harmonics at rest",
+                  speed_rad_s=float(speed[0]))
+        return
+    per_turn = frequency / speed
+    lowest = float(per_turn.min()) * allowance[0]
+    highest = float(per_turn.max()) * allowance[1]
+    for n in track.harmonics or range(1, GREATEST_HARMONIC + 1):
+        ends = (abs(lowest / n - 1.0), abs(highest / n - 1.0))
+        rows.add(
+            Labels(label.segment, label.mode, str(n)), abs(float(per_turn[0]) / n - 1.0),
+            low=0.0 if lowest <= n <= highest else min(ends), high=max(ends),
+            speed_rad_s=float(speed[0]),
+        )
+
+
+def _crossing_rows(rows: Rows, track: Track, speed: FloatArray) -> None:
+    for n in track.harmonics or range(1, GREATEST_HARMONIC + 1):
+        gap = track.frequency_rad_s - n * speed
+        for i in np.flatnonzero((gap[:-1] > 0.0) != (gap[1:] > 0.0)):
+            if speed[i] == 0.0 and gap[0] <= 0.0:
+                continue  # a free hinge starts at zero on every harmonic
+            share = gap[i] / (gap[i] - gap[i + 1])
+            at = float(speed[i] + share * (speed[i + 1] - speed[i]))
+            rows.add(Labels(mode=track.name, harmonic=str(n)), at, speed_rad_s=at)
+
+
+def hand_frequency(mode: str, inputs: Inputs, speed_rad_s: float) -> float:
+    """First flap and lag frequency of a rigid blade about its hinge; NaN for other modes."""
+    hub = inputs["rotor.hub"]
+    if hub.kind != "articulated" or mode not in {"flap 1", "lag 1"} or speed_rad_s <= 0.0:
+        return math.nan
+    in_flap = mode == "flap 1"
+    hinge = hub.flap_hinge_m if in_flap else hub.lag_hinge_m
+    spring = hub.flap_spring_N_m_rad if in_flap else hub.lag_spring_N_m_rad
+    body = flap_inertia(inputs["rotor.blade"], hinge)
+    inertia, first = float(body.second_moment_kg_m2), float(body.first_moment_kg_m)
+    ratio = hinge * first / inertia + spring / (inertia * speed_rad_s**2) + (1.0 if in_flap else 0.0)
+    return speed_rad_s * math.sqrt(ratio)
+
+
+MODES = Study(
+    _ID, 1,
+    ("segments", "rotor.blade", "rotor.hub", "rotor.n_blades",
+     "rotor.control_stiffness_N_m_rad", "stand.modes", "stand.full_speed_rad_s",
+     "stand.speed_gauge_error_rad_s"),
+    ("holds",), run,
+)

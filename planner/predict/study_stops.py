@@ -1,0 +1,130 @@
+"""The droop stop at rest, and the speeds at which blades leave it."""
+
+from __future__ import annotations
+
+import math
+from itertools import product
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from planner.methods.hand_checks import FlapHinge, resting_stop_moment_n_m
+from planner.model.plan import Cyclic
+from planner.model.results import Labels, Status
+from planner.predict.cases import Point, air_of, to_cases
+from planner.predict.rows import Rows
+from planner.predict.study import Inputs, Study
+from planner.rotor.lift_off import lift_off_in_wind, still_air_lift_off
+from planner.rotor.setup import RotorArrays, rotor_arrays
+from planner.rotor.trim import FlapState, trim
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
+    from planner.model.plan import Segment
+    from planner.model.results import Prediction
+    from planner.model.rotor import Rotor
+    from planner.predict.cases import Air
+    from planner.rotor.case import Cases
+
+_ID = "stops"
+_QUANTITIES = ("lift_off_speed_still_air", "lift_off_speed_in_wind", "droop_stop_rest_moment")
+_LEVEL = "wind on a rotor with a level axis also blows through the disc, which is not modelled"
+
+
+def run(inputs: Inputs) -> Mapping[str, Prediction]:
+    """Rest moment and lift-off speeds, or that the hub has no stop."""
+    rotor: Rotor = inputs["rotor"]
+    rows = {quantity: Rows(quantity, _ID) for quantity in _QUANTITIES}
+    if rotor.droop_stop is None:
+        for filled in rows.values():
+            filled.flag(Labels(), Status.NOT_APPLICABLE, "the hub has no droop stop")
+    else:
+        air, arrays = air_of(inputs), rotor_arrays(rotor)
+        _rest_moment(rows["droop_stop_rest_moment"], inputs, arrays, air)
+        _lift_off(rows, inputs, arrays, air)
+    return {quantity: filled.prediction() for quantity, filled in rows.items()}
+
+
+def _cases(points: Sequence[Point], inputs: Inputs, air: Air) -> Cases:
+    """Cases at the static stop angle, whatever their speed."""
+    rotor: Rotor = inputs["rotor"]
+    cases = to_cases(points, (rotor.droop_stop, rotor.up_stop), inputs["stand.mounting"],
+                     air.sound_m_s)
+    assert rotor.droop_stop is not None, "only called for hubs with a droop stop"
+    cases.droop_angle_rad[:] = rotor.droop_stop.angle_rad
+    return cases
+
+
+def _points(pitches: Sequence[float], winds: Sequence[float], air: Air) -> list[Point]:
+    """Nominal first, then both ends of the load allowance, for each pitch and wind."""
+    loads = ((air.density_kg_m3[0], 1.0), (air.density_kg_m3[1], air.load_factor[0]),
+             (air.density_kg_m3[2], air.load_factor[1]))
+    return [
+        Point(0, 0.0, pitch, Cyclic(trimmed=False), wind, density, factor)
+        for pitch, wind, (density, factor) in product(pitches, winds, loads)
+    ]
+
+
+def pitches_at_rest(segments: Sequence[Segment]) -> list[float]:
+    """Collectives with which the run leaves or reaches rest."""
+    starting = {s.from_collective_rad for s in segments if s.from_rad_s == 0.0}
+    ending = {s.to_collective_rad for s in segments if s.to_rad_s == 0.0}
+    return sorted(starting | ending)
+
+
+def _rest_moment(rows: Rows, inputs: Inputs, arrays: RotorArrays, air: Air) -> None:
+    pitches = pitches_at_rest(inputs["segments"])
+    winds = sorted({0.0, air.wind_m_s, air.gust_m_s})
+    result = trim(arrays, _cases(_points(pitches, winds, air), inputs, air))
+    moments = result.stop_moment_N_m
+    numbers = (float(moments[0]), float(np.min(moments)), float(np.max(moments)))
+    if inputs["stand.mounting"] == "axis level" and air.gust_m_s > 0.0:
+        rows.flag(Labels(), Status.OUTSIDE_VALIDITY, _LEVEL, numbers=numbers)
+    elif not np.all(result.converged):
+        rows.flag(Labels(), Status.NOT_CONVERGED, "no rest position of the parked blades found")
+    elif not arrays.hub.pair and np.any(result.state != FlapState.RESTING):
+        rows.flag(Labels(), Status.OUTSIDE_VALIDITY, "this wind lifts a parked blade off its "
+                  "droop stop; how it falls back is not predicted", numbers=numbers)
+    else:
+        rows.add(Labels(), numbers[0], low=numbers[1], high=numbers[2],
+                 hand=_hand_rest_moment(inputs, arrays))
+
+
+def _hand_rest_moment(inputs: Inputs, arrays: RotorArrays) -> float:
+    rotor: Rotor = inputs["rotor"]
+    if arrays.hub.pair or inputs["stand.mounting"] != "upright" or rotor.droop_stop is None:
+        return math.nan
+    hinge = FlapHinge(arrays.flap_inertia_kg_m2, arrays.first_moment_kg_m, arrays.hub.hinge_m,
+                      arrays.hub.spring_N_m_rad, arrays.hub.spring_neutral_rad)
+    return float(resting_stop_moment_n_m(hinge, rotor.droop_stop.angle_rad))
+
+
+def _lift_off(
+    rows: Mapping[str, Rows], inputs: Inputs, arrays: RotorArrays, air: Air
+) -> None:
+    segments: Sequence[Segment] = inputs["segments"]
+    top = max(s.highest_rad_s for s in segments) + inputs["stand.speed_gauge_error_rad_s"]
+    pitches = pitches_at_rest(segments)
+    for quantity, winds, search in (
+        ("lift_off_speed_still_air", [0.0], still_air_lift_off),
+        ("lift_off_speed_in_wind", [air.gust_m_s], lift_off_in_wind),
+    ):
+        cases = _cases(_points(pitches, winds, air), inputs, air)
+        found = search(arrays, cases, np.full(cases.count, top))
+        speeds = found.speed_rad_s
+        if inputs["stand.mounting"] == "axis level" and winds[0] > 0.0:
+            rows[quantity].flag(Labels(), Status.OUTSIDE_VALIDITY, _LEVEL)
+        elif not np.all(found.is_found):
+            rows[quantity].flag(Labels(), Status.NOT_CONVERGED, "no speed was found up to the "
+                                "card's highest at which the blades leave the droop stop")
+        else:
+            rows[quantity].add(Labels(), float(speeds[0]), low=float(speeds.min()),
+                               high=float(speeds.max()))
+
+
+STOPS = Study(
+    _ID, 1,
+    ("segments", "rotor", "stand.mounting", "stand.speed_gauge_error_rad_s"),
+    ("air",), run,
+)

@@ -1,0 +1,150 @@
+"""Building the record of a plan, and reading one back.
+
+The layout is an integer. Layout 1 is a JSON object with the keys below; numbers are SI, angles
+radians, NaN is null. A reader refuses a layout that it does not know.
+
+    layout            1
+    made_by           versions of whirlcard, Python, numpy and scipy
+    files             [{name, sha256}] of every file that was read; files_digest over them all
+    meaning_digest    digest of the plan in SI: unchanged by a comment or another unit
+    plan              the model
+    segments          the schedule walked once
+    vocabulary        the register entries
+    predictions       quantity -> {study, study_key, rows: [{segment, mode, harmonic, band, value,
+                      low, high, status, reason, speed_rad_s, hand}]}
+    references        reference id -> value at 100 % rpm
+    series            run, fan and flap charts
+    findings, coverage, verdict, segment_verdicts
+"""
+
+from __future__ import annotations
+
+import json
+import platform
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+import scipy
+
+import planner
+from planner.judge.judge import judge
+from planner.judge.references import reference_table
+from planner.judge.requests import requests
+from planner.model.canonical import digest, plain
+from planner.model.plan import segments
+from planner.predict.register import REGISTER
+from planner.predict.run import predict
+from planner.predict.series import series
+
+if TYPE_CHECKING:
+    from collections.abc import Callable, Mapping, Sequence
+
+    from planner.model.plan import Plan
+    from planner.model.results import Prediction
+
+LAYOUT = 1
+REQUIRED = (
+    "layout", "made_by", "files", "files_digest", "meaning_digest", "plan", "segments",
+    "vocabulary", "predictions", "references", "series", "findings", "coverage", "verdict",
+    "segment_verdicts",
+)
+
+
+class RecordError(ValueError):
+    """A file is not a record that this version can read."""
+
+
+def build(
+    plan: Plan,
+    files: Sequence[tuple[str, str]],
+    progress: Callable[[str], None] = lambda _: None,
+) -> dict[str, Any]:
+    """Predict and judge a plan and put everything into one record.
+
+    Args:
+        plan: the model.
+        files: (name, sha256) of every file that was read.
+        progress: called with the name of each part as it starts.
+    """
+    walk = segments(plan)
+    wanted = requests(plan.rule_book)
+    predictions = predict(plan, walk, wanted, progress)
+    progress("judging")
+    judgement = judge(plan, walk, REGISTER, predictions)
+    listed = [{"name": name, "sha256": sha256} for name, sha256 in files]
+    return {
+        "layout": LAYOUT,
+        "made_by": versions(),
+        "files": listed,
+        "files_digest": digest(listed),
+        "meaning_digest": digest(plan),
+        "plan": plain(plan),
+        "segments": plain(walk),
+        "vocabulary": plain(list(REGISTER.values())),
+        "predictions": {key: rows_of(prediction) for key, prediction in predictions.items()},
+        "references": plain(
+            reference_table(plan, predictions, plan.stand.full_speed_rad_s)
+        ),
+        "series": plain(series(plan, walk, predictions, wanted)),
+        "findings": plain(judgement.findings),
+        "coverage": plain(judgement.coverage),
+        "verdict": judgement.verdict.value,
+        "segment_verdicts": plain(judgement.segment_verdicts),
+    }
+
+
+def versions() -> dict[str, str]:
+    """Versions that the numbers depend on."""
+    return {
+        "whirlcard": planner.__version__,
+        "python": platform.python_version(),
+        "numpy": np.__version__,
+        "scipy": scipy.__version__,
+    }
+
+
+def rows_of(prediction: Prediction) -> dict[str, Any]:
+    """One prediction in the record's form."""
+    rows = [
+        {
+            "segment": label.segment, "mode": label.mode, "harmonic": label.harmonic,
+            "band": label.band, "value": value, "low": low, "high": high,
+            "status": status.value, "reason": reason, "speed_rad_s": speed, "hand": hand,
+        }
+        for label, value, low, high, status, reason, speed, hand in zip(
+            prediction.labels, prediction.value, prediction.low, prediction.high,
+            prediction.status, prediction.reasons, prediction.speed_rad_s, prediction.hand,
+            strict=True,
+        )
+    ]
+    return {"study": prediction.study, "rows": plain(rows)}
+
+
+def to_bytes(record: Mapping[str, Any]) -> bytes:
+    """Write a record: the same record gives the same bytes."""
+    text = json.dumps(record, indent=1, sort_keys=True, ensure_ascii=False, allow_nan=False)
+    return (text + "\n").encode()
+
+
+def from_bytes(data: bytes, name: str) -> dict[str, Any]:
+    """Read a record back.
+
+    Raises:
+        RecordError: not JSON, not a record, another layout, or a plan that was edited by hand.
+    """
+    try:
+        record = json.loads(data.decode("utf-8"))
+    except (UnicodeDecodeError, json.JSONDecodeError, RecursionError) as fault:
+        msg = f"{name}: expected a whirlcard record in JSON, found {fault}; build it with `card`"
+        raise RecordError(msg) from fault
+    if not isinstance(record, dict) or "layout" not in record:
+        msg = f"{name}: expected a whirlcard record, found JSON without a layout number"
+        raise RecordError(msg)
+    if record["layout"] != LAYOUT:
+        msg = f"{name}: expected record layout {LAYOUT}, found {record['layout']!r}"
+        raise RecordError(msg)
+    missing = [key for key in REQUIRED if key not in record]
+    if missing:
+        msg = f"{name}: expected a whole record, found none of: {', '.join(missing)}"
+        raise RecordError(msg)
+    return record

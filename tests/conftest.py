@@ -1,0 +1,61 @@
+"""Shared fixtures: the sample plans, read and predicted once."""
+
+from __future__ import annotations
+
+import functools
+import pathlib
+from typing import TYPE_CHECKING
+
+import pytest
+
+from planner.files.read import read_plan
+from planner.judge.requests import requests
+from planner.model.plan import segments
+from planner.predict.register import REFERENCES, REGISTER
+from planner.predict.run import predict
+
+if TYPE_CHECKING:
+    from collections.abc import Callable, Mapping
+
+    from planner.model.plan import Plan
+    from planner.model.results import Prediction
+
+SAMPLES = pathlib.Path(__file__).parent.parent / "sample_plans"
+SAMPLE_NAMES = (
+    "articulated-run-up", "articulated-gusty", "hingeless-model", "teetering-pair",
+)
+
+
+@functools.cache
+def _sample(name: str) -> Plan:
+    vocabulary = {entry.id: (entry.unit, entry.axes) for entry in REGISTER.values()}
+    return read_plan(SAMPLES / name, vocabulary, REFERENCES).plan
+
+
+def predict_plan(plan: Plan) -> Mapping[str, Prediction]:
+    return predict(plan, segments(plan), requests(plan.rule_book))
+
+
+@functools.cache
+def _predicted(name: str) -> Mapping[str, Prediction]:
+    return predict_plan(_sample(name))
+
+
+@pytest.fixture
+def sample() -> Callable[[str], Plan]:
+    return _sample
+
+
+@pytest.fixture
+def predicted() -> Callable[[str], Mapping[str, Prediction]]:
+    return _predicted
+
+
+@pytest.fixture
+def run_predict() -> Callable[[Plan], Mapping[str, Prediction]]:
+    return predict_plan
+
+
+@pytest.fixture
+def articulated() -> Plan:
+    return _sample("articulated-run-up")
