@@ -142,6 +142,7 @@ def _predicted(document: Document, path: KeyPath, rule: PredictedTable, library:
         speed_range=speed_range(document, path, (rule.from_, rule.to), speeds),
         mode_family=rule.family or "",
         mode_orders=tuple(rule.orders),
+        harmonics=tuple(rule.harmonics),
         exempt_damping=rule.exempt_damping,
         caution_acceptor=rule.caution_acceptor or "",
         channel=rule.channel or "",
@@ -155,11 +156,15 @@ def _check_modes(
     given = [
         *(["family"] if rule.family else []),
         *(["orders"] if rule.orders else []),
+        *(["harmonics"] if rule.harmonics and "harmonic" not in axes else []),
         *(["exempt_damping"] if rule.exempt_damping is not None else []),
     ]
-    if "mode" not in axes:
+    if "mode" in axes:
+        given = [key for key in given if key == "harmonics"]
+    if given:
         for key in given:
-            expected = f"no {key}, because {rule.quantity} has no modes"
+            has_no = "harmonics" if key == "harmonics" else "modes"
+            expected = f"no {key}, because {rule.quantity} has no {has_no}"
             document.fault_at_key((*path, key), expected, "remove it", f"key {shown(key)}")
     elif rule.orders and rule.family not in {*_BLADE_FAMILIES, ""}:
         expected = f"orders only with the families {listed(_BLADE_FAMILIES)}"

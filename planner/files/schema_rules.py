@@ -110,6 +110,9 @@ class PredictedTable(RuleTable):
     orders: list[Annotated[int, Whole(1, 20)]] = Field(
         default=[], description="Modes of the family, counted from one; left out: all."
     )
+    harmonics: list[Annotated[int, Whole(1, 20)]] = Field(
+        default=[], description="Rotor harmonics that the rule covers; left out: all."
+    )
     exempt_damping: Share | None = Field(
         default=None, description="Modes damped at least this much are exempt."
     )

@@ -15,6 +15,8 @@ radians, NaN is null. A reader refuses a layout that it does not know.
     references        reference id -> value at 100 % rpm
     series            run, fan and flap charts
     findings, coverage, verdict, segment_verdicts
+    content_digest    digest of everything above: an edit by hand is noticed when read back. It
+                      shows change, not who made it
 """
 
 from __future__ import annotations
@@ -46,7 +48,7 @@ LAYOUT = 1
 REQUIRED = (
     "layout", "made_by", "files", "files_digest", "meaning_digest", "plan", "segments",
     "vocabulary", "predictions", "references", "series", "findings", "coverage", "verdict",
-    "segment_verdicts",
+    "segment_verdicts", "content_digest",
 )
 
 
@@ -72,7 +74,7 @@ def build(
     progress("judging")
     judgement = judge(plan, walk, REGISTER, predictions)
     listed = [{"name": name, "sha256": sha256} for name, sha256 in files]
-    return {
+    record = {
         "layout": LAYOUT,
         "made_by": versions(),
         "files": listed,
@@ -91,6 +93,7 @@ def build(
         "verdict": judgement.verdict.value,
         "segment_verdicts": plain(judgement.segment_verdicts),
     }
+    return {**record, "content_digest": digest(record)}
 
 
 def versions() -> dict[str, str]:
@@ -147,4 +150,16 @@ def from_bytes(data: bytes, name: str) -> dict[str, Any]:
     if missing:
         msg = f"{name}: expected a whole record, found none of: {', '.join(missing)}"
         raise RecordError(msg)
+    _check_digests(record, name)
     return record
+
+
+def _check_digests(record: Mapping[str, Any], name: str) -> None:
+    content = {key: value for key, value in record.items() if key != "content_digest"}
+    for key, value in (("meaning", record["plan"]), ("content", content)):
+        if digest(value) != record[f"{key}_digest"]:
+            msg = (
+                f"{name}: expected the {key} digest {record[f'{key}_digest']!s:.12}..., found "
+                f"{digest(value):.12}...; the record was edited, build it again from the plan"
+            )
+            raise RecordError(msg)

@@ -1,0 +1,1 @@
+"""Predictions held against a rule book: findings, coverage and the verdict."""

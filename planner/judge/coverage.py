@@ -1,0 +1,122 @@
+"""Every hazard class, in every part of the run, is closed by something or NOT ASSESSED."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from planner.judge.case import WHOLE_RUN
+from planner.judge.documents import closing_document, parts_of
+from planner.judge.evidence import Group, faces_danger, wanted
+from planner.judge.rows import family_of
+from planner.model.results import Coverage, Verdict
+from planner.model.rules import HAZARD_CLASSES
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from planner.judge.case import Case
+    from planner.judge.findings import Judged
+    from planner.judge.outcomes import Outcome
+    from planner.model.plan import Segment
+    from planner.model.rules import Rule
+
+_Said = tuple["Rule", "Outcome"]
+
+
+def coverage(case: Case, judged: Sequence[Judged]) -> tuple[Coverage, ...]:
+    """Close each class of the tool, the book and the plan, part by part.
+
+    A part is closed by rules where in each of its segments the numbers that the class asks for
+    were judged or shown not to apply, at least one of them was judged (or closed by a document),
+    and nothing was left open; else by a document that reaches the whole part, unless something
+    was left open that no document may close.
+    """
+    classes = [
+        *HAZARD_CLASSES,
+        *(name for name, _ in case.plan.rule_book.extra_classes),
+        *case.plan.extra_classes,
+    ]
+    return tuple(
+        _part(hazard_class, part, case, [j for j in judged if j.rule.hazard_class == hazard_class])
+        for hazard_class in dict.fromkeys(classes)
+        for part in parts_of(hazard_class)
+    )
+
+
+def _part(hazard_class: str, part: str, case: Case, judged: Sequence[Judged]) -> Coverage:
+    said = [(j.rule, o) for j in judged for o in j.outcomes if part in {o.row.kind, WHOLE_RUN}]
+    verdicts = [outcome.verdict for _, outcome in said]
+    opened = _left_open(part, said, judged)
+    holes = _holes(hazard_class, part, case, said)
+    by_rules = _closers(said, case)
+    if not opened and not holes and by_rules:
+        return Coverage(hazard_class, part, ", ".join(by_rules), Verdict.worst(verdicts))
+    number, why = closing_document(hazard_class, part, _highest(part, case), case)
+    if number and not opened:
+        closers = dict.fromkeys((*by_rules, number))
+        worst = Verdict.worst([*verdicts, Verdict.GO])
+        return Coverage(hazard_class, part, ", ".join(closers), worst)
+    reason = opened or holes or "no judged rule and no outside document closes it"
+    worst = Verdict.worst([*verdicts, Verdict.NOT_ASSESSED])
+    return Coverage(hazard_class, part, "", worst, f"{reason}; {why}" if why else reason)
+
+
+def _left_open(part: str, said: Sequence[_Said], judged: Sequence[Judged]) -> str:
+    for rule, outcome in said:
+        if outcome.left_open:
+            return f"{rule.id} left {outcome.row.place} not assessed: {outcome.reason}"
+    for one in judged:
+        if not one.outcomes and (part in one.rule.where or WHOLE_RUN in {part, *one.rule.where}):
+            return f"{one.rule.id}: {one.finding.reason}"
+    return ""
+
+
+def _holes(hazard_class: str, part: str, case: Case, said: Sequence[_Said]) -> str:
+    """Name the first number that the class asks for and that no rule looked at."""
+    segments: list[Segment | None] = [s for s in case.segments.values() if s.kind == part]
+    facing: dict[str, list[_Said]] = {}
+    for rule, outcome in said:
+        if faces_danger(rule, case.vocabulary[rule.quantity]):
+            place = "" if part == WHOLE_RUN else outcome.row.labels.segment
+            facing.setdefault(place, []).append((rule, outcome))
+    for segment in segments if part != WHOLE_RUN else [None]:
+        groups = wanted(hazard_class, segment, case)
+        if groups is None:
+            return "no quantity of this tool closes it"
+        here = facing.get("" if segment is None else segment.id, [])
+        for group in groups:
+            if not any(_serves(group, rule, outcome) for rule, outcome in here):
+                place = segment.id if segment else "the run"
+                return f"no rule of the class judges {_words(group)} at {place}"
+    return ""
+
+
+def _serves(group: Group, rule: Rule, outcome: Outcome) -> bool:
+    mode = outcome.row.labels.mode
+    return any(
+        rule.quantity == quantity
+        and (not family or (family_of(mode) if mode else rule.mode_family) == family)
+        for quantity, family in group
+    )
+
+
+def _words(group: Group) -> str:
+    return " or ".join(
+        f"{quantity} of {family} modes" if family else quantity for quantity, family in group
+    )
+
+
+def _closers(said: Sequence[_Said], case: Case) -> list[str]:
+    """Rules that judged something on its dangerous side, then documents that stood in."""
+    rules = [
+        rule.id
+        for rule, outcome in said
+        if outcome.kind == "assessed" and faces_danger(rule, case.vocabulary[rule.quantity])
+    ]
+    documents = [outcome.closed_by for _, outcome in said if outcome.closed_by]
+    return list(dict.fromkeys((*rules, *documents)))
+
+
+def _highest(part: str, case: Case) -> float:
+    inside = [case.spans[s.id].highest_rad_s for s in case.segments.values() if s.kind == part]
+    return max(inside, default=case.whole_run.highest_rad_s)

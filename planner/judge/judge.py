@@ -1,0 +1,105 @@
+"""Predictions held against the plan's rule book: findings, coverage and the verdict.
+
+A wrong GO can hurt someone. These are the ways in which one could come out, and what stops each;
+``tests/judge/test_wrong_go.py`` tries every one of them.
+
+1. A number is NaN or infinite: comparisons are written so that only a finite number inside passes.
+2. A number was not computed, did not converge or lies outside validity: the status is read before
+   the number; such a row is NOT ASSESSED even where its number looks harmless. It is not NO-GO
+   either where its number looks bad: the number is unproven, so it is told in the reason only.
+3. Only the nominal value is inside: "at most" reads the greatest of value, low and high, "at
+   least" the least.
+4. Rounding: nothing is rounded before judging.
+5. A quantity is not predicted, or a rule names one that does not exist: NOT ASSESSED.
+6. A rule matches no row, because of its part of the run, speed range or mode family: NOT ASSESSED.
+7. Prediction left out a segment, mode or keep-out band, or labelled it wrongly: the expected
+   places are listed from the plan and each missing one is NOT ASSESSED.
+8. A hold's window or a ramp reaches into a rule's speed range with one end only: it is judged
+   whole, gauge error included.
+9. A limit over speed is read outside its table, or at the mild end of a ramp: no extrapolation;
+   the strictest value over the whole range of speeds counts.
+10. A reference value is missing, not positive, or rests on a prediction that is not OK: NOT
+    ASSESSED.
+11. A limit is in another dimension than the quantity, or refers to a value of another: NOT
+    ASSESSED.
+12. The model allowance is missing from the book: rows that need it lose their OK.
+13. A mode is exempt by damping that was not assessed: only assessed damping, at its least, counts.
+14. A part does not apply or everything is exempt: the rule gives GO but closes no hazard class.
+15. A thin rule book: every class is listed here, and each asks for numbers that speak of its
+    hazard; a rule that guards the harmless side does not count.
+16. One hold is judged, another is outside every rule's range: each segment is asked by itself.
+17. An outside document is for less wind or speed, another part or class, or names no approver: it
+    does not close. It never closes what did not converge, a missing limit, a gap, or NO-GO.
+18. The plan's wind is above the book's cap, or there is no cap.
+19. The main path has a slip: an independent hand check that disagrees is a finding.
+20. A step looks good although its class is open: a class that is not closed in holds, ramps or
+    the stop marks all of those segments.
+21. No rule, no segment, no prediction at all: the worst of nothing is NOT ASSESSED.
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from planner.judge.case import Case
+from planner.judge.coverage import coverage
+from planner.judge.findings import judge_rules
+from planner.judge.hand_checks import hand_check_findings
+from planner.judge.weather import wind_cap_findings
+from planner.model.results import Judgement, Verdict
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
+    from planner.model.plan import Plan, Segment
+    from planner.model.results import Coverage, Finding, Predictions, Quantity
+
+
+def judge(
+    plan: Plan,
+    segments: Sequence[Segment],
+    vocabulary: Mapping[str, Quantity],
+    predictions: Predictions,
+) -> Judgement:
+    """Judge a run against its rule book.
+
+    Args:
+        plan: the plan with its merged rule book.
+        segments: the walk of the schedule, as ``planner.model.plan.segments`` gives it.
+        vocabulary: the register of quantities.
+        predictions: every predicted quantity by id.
+
+    Returns:
+        Findings of the predicted rules in the book's order, then of the wind cap, then hand
+        checks that disagree; coverage of every hazard class; the verdict of each segment (its
+        worst row, or NOT ASSESSED where a class is open in its kind) and of the run (the worst of
+        all).
+
+    Raises:
+        ValueError: a prediction whose columns differ in length or that is filed under another id.
+    """
+    case = Case(plan, {segment.id: segment for segment in segments}, vocabulary, predictions)
+    judged = judge_rules(case)
+    findings = (
+        *(one.finding for one in judged),
+        *wind_cap_findings(plan),
+        *hand_check_findings(vocabulary, predictions),
+    )
+    covered = coverage(case, judged)
+    verdicts = [f.verdict for f in findings] + [c.verdict for c in covered]
+    by_segment = {s.id: _segment(s, findings, covered) for s in segments}
+    return Judgement(
+        findings, covered, Verdict.worst([*verdicts, *by_segment.values()]), by_segment
+    )
+
+
+def _segment(
+    segment: Segment, findings: Sequence[Finding], covered: Sequence[Coverage]
+) -> Verdict:
+    said = [
+        Verdict(finding.segment_verdicts[segment.id])
+        for finding in findings
+        if segment.id in finding.segment_verdicts
+    ]
+    open_class = any(c.where == segment.kind and not c.closed_by for c in covered)
+    return Verdict.worst([*said, Verdict.NOT_ASSESSED] if open_class else said)
