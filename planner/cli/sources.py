@@ -11,6 +11,7 @@ import typer
 
 from planner.files.faults import PlanFaults
 from planner.files.read import read_plan
+from planner.files.start import StarterRefusedError
 from planner.files.write import write_whole
 from planner.paper.texts import unprintable
 from planner.predict.register import REFERENCES, REGISTER
@@ -35,9 +36,7 @@ def stop_on_fault() -> Iterator[None]:
     """Turn faults of input and output into messages and exit status 2."""
     try:
         yield
-    except PlanFaults as faults:
-        fail(str(faults))
-    except RecordError as fault:
+    except (PlanFaults, RecordError, StarterRefusedError) as fault:
         fail(str(fault))
     except OSError as fault:
         fail(f"{fault.filename or 'file'}: {fault.strerror or fault}")

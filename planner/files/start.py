@@ -17,8 +17,15 @@ from planner.files.write import write_whole
 if TYPE_CHECKING:
     from planner.files.schema_values import Table
 
-_TEMPLATES = Path(__file__).parent / "starter"
+_MODEL_PLAN = "sample_plans/articulated-run-up"
 _BOOK = "rules/example_book.toml"
+_NOTE = """\
+# INVENTED DATA: the rotor, the stand, the people and the documents of this folder do not exist.
+# Put your own in their place, then run "whirlcard check" in this folder.
+#
+# Values with a unit are text: "12 deg", "245 rpm", "62 % rpm", "8 kt". A number without its unit
+# is refused. All radii count from the shaft axis.
+"""
 
 
 class StarterRefusedError(Exception):
@@ -77,18 +84,20 @@ def commented(text: str, model: type[Table]) -> str:
 
 
 def _contents() -> dict[str, str]:
-    contents = {
-        f"{kind}.toml": commented((_TEMPLATES / f"{kind}.toml").read_text("utf-8"), MODELS[kind])
-        for kind in ("plan", "rotor", "stand")
-    }
-    contents["blade.csv"] = (_TEMPLATES / "blade.csv").read_text("utf-8")
-    book = shipped(_BOOK).read_text("utf-8")
-    schema_line = "#:schema ./rules.schema.json\n"
-    first, _, rest = book.partition("\n")
-    contents["rules.toml"] = schema_line + (rest if first.startswith("#:schema") else book)
+    contents = {f"{kind}.toml": _commented_sample(kind) for kind in ("plan", "rotor", "stand")}
+    contents["blade.csv"] = shipped(f"{_MODEL_PLAN}/blade.csv").read_text("utf-8")
+    contents["rules.toml"] = "#:schema ./rules.schema.json\n" + shipped(_BOOK).read_text("utf-8")
     for name, schema in json_schemas().items():
         contents[name] = json.dumps(schema, indent=2, ensure_ascii=False) + "\n"
     return contents
+
+
+def _commented_sample(kind: str) -> str:
+    """A file of the shipped sample plan, pointed at the starter's own rule book."""
+    text = shipped(f"{_MODEL_PLAN}/{kind}.toml").read_text("utf-8")
+    text = text.replace("../../rules/example_book.toml", "rules.toml")
+    body = text[text.index("\n\n") + 2 :]
+    return f"#:schema ./{kind}.schema.json\n#\n{_NOTE}\n{commented(body, MODELS[kind])}"
 
 
 def _refuse_unless_free(folder: Path) -> None:

@@ -70,6 +70,7 @@ def gather(rule: Rule, outcomes: Sequence[Outcome], fault: str = "") -> Finding:
         not_assessed=sum(outcome.kind == "not assessed" for outcome in outcomes),
         closed_by=", ".join(dict.fromkeys(o.closed_by for o in outcomes if o.closed_by)),
         segment_verdicts=_by_segment(outcomes),
+        segment_margins=_margins(outcomes),
     )
 
 
@@ -150,6 +151,16 @@ def _by_segment(outcomes: Sequence[Outcome]) -> dict[str, str]:
         if segment:
             worst[segment] = Verdict.worst([outcome.verdict, worst.get(segment, Verdict.GO)])
     return {segment: verdict.value for segment, verdict in worst.items()}
+
+
+def _margins(outcomes: Sequence[Outcome]) -> dict[str, float]:
+    """Least margin of the assessed rows of each segment."""
+    least: dict[str, float] = {}
+    for outcome in outcomes:
+        segment = outcome.row.labels.segment
+        if segment and outcome.kind == "assessed":
+            least[segment] = min(outcome.margin, least.get(segment, math.inf))
+    return least
 
 
 def _unmatched(rule: Rule, fault: str) -> Finding:

@@ -132,6 +132,8 @@ class Finding:
     closed_by: str = ""
     """Number of the outside document that stands in for what was not assessed."""
     segment_verdicts: Mapping[str, str] = field(default_factory=dict)
+    segment_margins: Mapping[str, float] = field(default_factory=dict)
+    """Least margin of the assessed rows of each segment, SI."""
 
 
 @dataclass(frozen=True)

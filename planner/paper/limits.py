@@ -133,11 +133,10 @@ def finding_boxes(reading: Reading, frame: Frame) -> list[Box]:
         frame.shares(18, 30, 18, 17, 17), ("Verdict", "Rule", "Predicted", "Limit", "Margin")
     )
     rows = [_finding_row(reading, finding) for finding in open_findings]
-    said = (
-        f"{passed} further findings came to GO in every part that they cover: see the limits."
-        if rows
-        else f"All {passed} findings came to GO in every part that they cover: see the limits."
-    )
+    said = f"{passed} {'further ' if rows else ''}findings came to GO: see the limits."
+    resting = sum(bool(f["closed_by"]) for f in reading.findings if not _is_open(f))
+    if resting:
+        said += f" {resting} of them rest in some rows on an outside document, named there."
     return [
         heading("6  Findings, worst first", frame.width),
         *table_boxes(table, rows),
@@ -150,8 +149,7 @@ def finding_boxes(reading: Reading, frame: Frame) -> list[Box]:
 
 
 def _is_open(finding: Json) -> bool:
-    left_out = bool(finding["not_assessed"] or finding["closed_by"])
-    return finding["verdict"] != Verdict.GO.value or left_out
+    return bool(finding["verdict"] != Verdict.GO.value)
 
 
 def _finding_row(reading: Reading, finding: Json) -> Row:
@@ -212,7 +210,12 @@ def _coverage_boxes(reading: Reading, frame: Frame) -> list[Box]:
 
 
 def _closers(reading: Reading, closed_by: str) -> str:
-    return "; ".join(reading.title_of(part) for part in closed_by.split(", ") if part)
+    """Number of rules judged, then the outside documents by number."""
+    parts = [part for part in closed_by.split(", ") if part]
+    judged = sum(part in reading.rules for part in parts)
+    rules = [f"{judged} rule{'s' if judged > 1 else ''} judged"] if judged else []
+    documents = [f"outside document {part}" for part in parts if part not in reading.rules]
+    return "; ".join([*rules, *documents])
 
 
 def _document_boxes(reading: Reading, frame: Frame) -> list[Box]:

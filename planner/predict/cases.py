@@ -25,10 +25,11 @@ if TYPE_CHECKING:
     from planner.model.stand import Mounting
     from planner.predict.study import Inputs
 
-RAMP_POINTS = 9
+RAMP_POINTS = 7
 """Points along a change of rotor speed, both ends included."""
 PITCH_POINTS = 3
 """Points along a change of pitch at constant speed."""
+ROUNDING = 1e-9
 
 
 @dataclass(frozen=True)
@@ -72,12 +73,18 @@ def air_of(inputs: Inputs) -> Air:
     return Air(inputs.bounds("air_density"), sound, slow, mean, gust, factor)
 
 
-def nominal_points(segments: Sequence[Segment], air: Air) -> list[Point]:
-    """The states that segments are meant to pass, in the mean wind."""
+def nominal_points(
+    segments: Sequence[Segment], air: Air, counts_from_rad_s: float
+) -> list[Point]:
+    """The states that segments are meant to pass, in the mean wind.
+
+    A hold counts at any speed; of a ramp, the points at and above the speed where the stops are
+    left behind count, with one at just that speed where the ramp passes it.
+    """
     return [
         Point(index, speed, collective, cyclic, air.wind_m_s, air.density_kg_m3[0], 1.0)
         for index, segment in enumerate(segments)
-        for speed, collective, cyclic in _along(segment)
+        for speed, collective, cyclic in _along(segment, counts_from_rad_s)
     ]
 
 
@@ -133,19 +140,19 @@ def to_cases(
     )
 
 
-def _along(segment: Segment) -> list[tuple[float, float, Cyclic]]:
+def _along(segment: Segment, counts_from_rad_s: float) -> list[tuple[float, float, Cyclic]]:
     """Speed, collective and cyclic at the nominal points of a segment."""
     if segment.kind == "hold":
         return [(segment.to_rad_s, segment.to_collective_rad, segment.cyclic)]
-    count = PITCH_POINTS if segment.from_rad_s == segment.to_rad_s else RAMP_POINTS
+    start, change = segment.from_rad_s, segment.to_rad_s - segment.from_rad_s
+    shares = np.linspace(0.0, 1.0, RAMP_POINTS if change else PITCH_POINTS).tolist()
+    if change and 0.0 < (counts_from_rad_s - start) / change < 1.0:
+        shares = sorted({*shares, (counts_from_rad_s - start) / change})
+    pitch, more = segment.from_collective_rad, segment.to_collective_rad - segment.from_collective_rad
     return [
-        (
-            segment.from_rad_s + share * (segment.to_rad_s - segment.from_rad_s),
-            segment.from_collective_rad
-            + share * (segment.to_collective_rad - segment.from_collective_rad),
-            cyclic,
-        )
-        for share in np.linspace(0.0, 1.0, count).tolist()
+        (start + share * change, pitch + share * more, cyclic)
+        for share in shares
+        if start + share * change >= counts_from_rad_s * (1.0 - ROUNDING)
         for cyclic in _cyclics(segment, share)
     ]
 

@@ -19,6 +19,8 @@ if TYPE_CHECKING:
 
 GREATEST_ADVANCE_RATIO = 0.1
 LEAST_SPEED_SHARE = 0.5
+LEAST_BLADE_LOADING = 0.02
+"""Below this CT/σ the sum of lifting and down-pulling parts is too small to compare in percent."""
 TIP_ITERATIONS = 5
 INDUCED_FACTOR = 1.15
 """Induced power factor: 1.10 to 1.20 (from memory)."""
@@ -61,17 +63,21 @@ def hover_hand(rotor: RotorArrays, blade: Blade, point: Point, air: Air) -> Hove
     )
     force = point.density_kg_m3 * math.pi * blade.radius_m**2 * tip**2
     form = _flap_blade(rotor, blade, point, (slope, tip_fraction))
+    damping = float(hand_checks_flap.flap_damping_ratio(form))
+    frequency = float(hand_checks.flap_frequency_ratio(_hinge(rotor), speed))
     coning = float(hand_checks_flap.coning_rad(form, hand_checks_flap.FlapLoading(
         pitch, 4.0 * (_twist(blade, blade.radius_m) - _twist(blade, at)), 0.0, 0.0, inflow, 0.0,
         0.0, float(hand_checks.steady_flap_moment(_hinge(rotor), speed)),
     )))
+    if abs(thrust) < LEAST_BLADE_LOADING * solidity:
+        return HoverHand(damping_ratio=damping, frequency_ratio=frequency)
     return HoverHand(
         flap_mean_rad=math.nan if rotor.hub.pair else coning,
         thrust_N=thrust * force,
         torque_N_m=power * force * blade.radius_m,
         power_W=power * force * tip,
-        damping_ratio=float(hand_checks_flap.flap_damping_ratio(form)),
-        frequency_ratio=float(hand_checks.flap_frequency_ratio(_hinge(rotor), speed)),
+        damping_ratio=damping,
+        frequency_ratio=frequency,
     )
 
 

@@ -119,8 +119,5 @@ def segment_results(
 ) -> SegmentResults:
     """Pick the states of one segment that count."""
     nominal, corners = solved.nominal.of(index), solved.corners.of(index)
-    if segment.kind != "hold":
-        nominal = nominal[solved.nominal.speed_rad_s[nominal] >= counts_from_rad_s]
-        corners = corners[solved.corners.speed_rad_s[corners] >= counts_from_rad_s]
     below = segment.kind != "hold" and min(segment.from_rad_s, segment.to_rad_s) < counts_from_rad_s
     return SegmentResults(segment, rotor, nominal, corners, solved, below)

@@ -14,6 +14,7 @@ if TYPE_CHECKING:
 
     from planner.model.plan import Plan, Segment
     from planner.model.results import Prediction, Requests
+    from planner.model.rotor import Stop
 
 
 def series(
@@ -84,15 +85,32 @@ def _flap(
     for segment, (start, end) in zip(segments, _times(segments), strict=True):
         low, low_known = lowest.get(segment.id, (float("nan"), False))
         high, high_known = highest.get(segment.id, (float("nan"), False))
-        for time, speed in ((start, segment.from_rad_s), (end, segment.to_rad_s)):
+        for time, angle in _droop_points(segment, (start, end), droop):
             out["time_s"].append(time)
             out["segment"].append(segment.id)
             out["lowest_rad"].append(low)
             out["highest_rad"].append(high)
-            out["droop_rad"].append(None if droop is None else droop.lowest_angle_rad(speed))
+            out["droop_rad"].append(angle)
             out["up_rad"].append(None if up is None else up.angle_rad)
             out["assessed"].append(low_known and high_known)
     return out
+
+
+def _droop_points(
+    segment: Segment, times: tuple[float, float], droop: Stop | None
+) -> list[tuple[float, float | None]]:
+    """Time and droop stop angle in force at both ends, and where the stop swings."""
+    if droop is None:
+        return [(times[0], None), (times[1], None)]
+    first = droop.lowest_angle_rad(segment.from_rad_s)
+    last = droop.lowest_angle_rad(segment.to_rad_s)
+    points: list[tuple[float, float | None]] = [(times[0], first), (times[1], last)]
+    if first != last and droop.retraction is not None:
+        change = segment.to_rad_s - segment.from_rad_s
+        share = (droop.retraction.release_rad_s - segment.from_rad_s) / change
+        at = times[0] + share * (times[1] - times[0])
+        points[1:1] = [(at, first), (at, last)]
+    return points
 
 
 def _by_segment(prediction: Prediction) -> dict[str, tuple[float, bool]]:

@@ -55,11 +55,13 @@ class Solved:
     gust_trim: Batch
 
 
-def solve_run(inputs: Inputs, rotor: RotorArrays, air: Air) -> Solved:
+def solve_run(
+    inputs: Inputs, rotor: RotorArrays, air: Air, counts_from_rad_s: float
+) -> Solved:
     """Solve nominal states first, then the corners with the cyclic found there."""
     segments: Sequence[Segment] = inputs["segments"]
     error = inputs["stand.speed_gauge_error_rad_s"]
-    nominal = _batch(nominal_points(segments, air), inputs, rotor, air)
+    nominal = _batch(nominal_points(segments, air, counts_from_rad_s), inputs, rotor, air)
     corners = [
         corner
         for i, point in enumerate(nominal.points)

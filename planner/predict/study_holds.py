@@ -43,7 +43,7 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     air = air_of(inputs)
     arrays = rotor_arrays(rotor)
     counts_from = stop_free_speed_rad_s(inputs, rotor) if air.gust_m_s > 0.0 else 0.0
-    solved = solve_run(inputs, arrays, air)
+    solved = solve_run(inputs, arrays, air, counts_from)
     rows = {quantity.id: Rows(quantity.id, _ID) for quantity in ROTOR}
     for index, segment in enumerate(segments):
         found = segment_results(index, segment, rotor, solved, counts_from)

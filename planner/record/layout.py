@@ -23,10 +23,9 @@ from __future__ import annotations
 
 import json
 import platform
+from importlib.metadata import version
 from typing import TYPE_CHECKING, Any
 
-import numpy as np
-import scipy
 
 import planner
 from planner.judge.judge import judge
@@ -101,8 +100,8 @@ def versions() -> dict[str, str]:
     return {
         "whirlcard": planner.__version__,
         "python": platform.python_version(),
-        "numpy": np.__version__,
-        "scipy": scipy.__version__,
+        "numpy": version("numpy"),
+        "scipy": version("scipy"),
     }
 
 

@@ -35,7 +35,7 @@ def test_a_starter_reads_without_faults(tmp_path, folder):
     folder.edit("plan.toml", "rule_books =", 'extra_classes = ["noise"]\nrule_books =')
     plan = folder.write("rules.toml", rules).read().plan
     assert plan.rotor.n_blades == 4
-    assert plan.rotor.blade.radius_m == 5.5
+    assert plan.rotor.blade.radius_m == 5.6
     assert plan.rotor.droop_stop.retraction is not None
     assert not plan.rule_book.approved
     closed = {document.hazard_class for document in plan.documents}
