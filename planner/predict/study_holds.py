@@ -74,6 +74,9 @@ def _rotor_rows(
         label = Labels(segment=found.segment.id)
         top = max(found.segment.from_rad_s, found.segment.to_rad_s)
         status, reason = _fault(quantity, found, inputs)
+        if status is Status.NOT_APPLICABLE:
+            rows[quantity].flag(label, status, reason, speed_rad_s=top)
+            continue
         numbers = _numbers(quantity, found, inputs)
         if status is Status.OK:
             rows[quantity].add(label, numbers[0], low=numbers[1], high=numbers[2],
