@@ -50,7 +50,7 @@ def _show_version(value: bool) -> None:
 
 @app.callback()
 def _common(
-    version: Annotated[  # noqa: ARG001 - typer calls back with it
+    version: Annotated[
         bool,
         typer.Option("--version", callback=_show_version, is_eager=True, help="Show the version."),
     ] = False,

@@ -155,7 +155,7 @@ class AllowanceTable(Table):
 
 
 class WindCapTable(Table):
-    """Highest wind at hub height in which a run may begin."""
+    """Highest wind at the anemometer in which a run may begin."""
 
     mean: WindSpeed = Field(description="Cap of the mean wind.")
     gust: WindSpeed = Field(description="Cap of the gusts.")

@@ -148,7 +148,9 @@ def _by_segment(outcomes: Sequence[Outcome]) -> dict[str, str]:
     worst: dict[str, Verdict] = {}
     for outcome in outcomes:
         segment = outcome.row.labels.segment
-        if segment:
+        if segment and outcome.verdict is Verdict.GO:
+            worst.setdefault(segment, Verdict.GO)
+        elif segment:
             worst[segment] = Verdict.worst([outcome.verdict, worst.get(segment, Verdict.GO)])
     return {segment: verdict.value for segment, verdict in worst.items()}
 

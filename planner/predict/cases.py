@@ -1,9 +1,10 @@
 """From segments to the states that the rotor is solved in.
 
 Each hold is solved at its target (nominal), and at the corners of its window: speed with gauge
-error, collective, calm and gust, and both ends of the air load allowance together with the
-thinnest and densest air. Each ramp is solved at points along it, at each of them nominal, and
-calm and gust with both ends of the allowance. Where a step trims the cyclic, it is found at the
+error, collective, calm, mean wind and gust, and both ends of the air load allowance together with
+the thinnest and densest air. Each ramp is solved at points along it, at each of them nominal, and
+in calm, mean wind and gust with both ends of the allowance. The mean wind counts by itself: side
+flapping is strongest in light wind, where the wake leans back but is still strong. Where a step trims the cyclic, it is found at the
 nominal state in the mean wind; the corners keep that cyclic: a gust is not trimmed out.
 """
 
@@ -25,7 +26,7 @@ if TYPE_CHECKING:
     from planner.model.stand import Mounting
     from planner.predict.study import Inputs
 
-RAMP_POINTS = 7
+RAMP_POINTS = 5
 """Points along a change of rotor speed, both ends included."""
 PITCH_POINTS = 3
 """Points along a change of pitch at constant speed."""
@@ -99,7 +100,7 @@ def corner_points(point: Point, segment: Segment, air: Air, gauge_error_rad_s: f
             point.collective_rad - segment.window.collective_rad,
             point.collective_rad + segment.window.collective_rad,
         })
-    winds = sorted({0.0, air.gust_m_s})
+    winds = sorted({0.0, air.wind_m_s, air.gust_m_s})
     loads = ((air.density_kg_m3[1], air.load_factor[0]), (air.density_kg_m3[2], air.load_factor[1]))
     return [
         replace(point, speed_rad_s=speed, collective_rad=pitch, wind_m_s=wind,
@@ -149,10 +150,12 @@ def _along(segment: Segment, counts_from_rad_s: float) -> list[tuple[float, floa
     if change and 0.0 < (counts_from_rad_s - start) / change < 1.0:
         shares = sorted({*shares, (counts_from_rad_s - start) / change})
     pitch, more = segment.from_collective_rad, segment.to_collective_rad - segment.from_collective_rad
+    places = [(share, start + share * change, pitch + share * more) for share in shares]
+    places[-1] = (1.0, segment.to_rad_s, segment.to_collective_rad)
     return [
-        (start + share * change, pitch + share * more, cyclic)
-        for share in shares
-        if start + share * change >= counts_from_rad_s * (1.0 - ROUNDING)
+        (speed, collective, cyclic)
+        for share, speed, collective in places
+        if speed >= counts_from_rad_s * (1.0 - ROUNDING)
         for cyclic in _cyclics(segment, share)
     ]
 

@@ -12,7 +12,9 @@ THEORY_BAND = (
 )
 _VALIDITY = (
     "rigid blades, steady wind in the disc plane, section tables over the full circle, "
-    "quasi-steady air loads, out of ground effect, no blade motion in lag or twist. Along ramps "
+    "quasi-steady air loads, out of ground effect, no blade motion in lag or twist; turning, no "
+    "more than 5 % of the loads from beyond the section data, and parked from its continuation "
+    "over the full circle (Viterna & Corrigan, NASA CP-2230, 1981, from memory). Along ramps "
     "quasi-static: for information only where blades may touch their stops in wind. "
 )
 _SOURCE = (
@@ -95,7 +97,8 @@ ROTOR = (
            "Ω² times the integral of mass times radius outboard of the flap hinge.",
            "trapezoidal sum over the stations", 0.03, ""),
     _rotor("hub_moment", "Hub moment", "N m", "M", "high",
-           "First-harmonic moment at the shaft from hinge offset shear and hinge spring.",
+           "Largest moment of all blades at the rotor centre over a turn, from hinge offset shear and "
+           "hinge spring, with what shakes at multiples of the blade number.",
            "none: zero for a central hinge without spring (tested)"),
     _rotor("root_flap_moment", "Flap moment at the blade root spring", "N m", "M", "high",
            "Largest moment carried by the hinge spring or the equivalent root spring of a "

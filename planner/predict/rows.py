@@ -20,7 +20,7 @@ class Rows:
         default_factory=list
     )
 
-    def add(  # noqa: PLR0913 - the fields of one row, by keyword
+    def add(
         self,
         labels: Labels,
         value: float,
@@ -40,7 +40,7 @@ class Rows:
         low, high = min(low, value), max(high, value)
         self._rows.append((labels, value, low, high, Status.OK, "", speed_rad_s, hand))
 
-    def flag(  # noqa: PLR0913 - the fields of one row, by keyword
+    def flag(
         self,
         labels: Labels,
         status: Status,

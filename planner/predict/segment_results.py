@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from planner.rotor.trim import FlapState
+from planner.rotor.result import FlapState
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -17,7 +17,7 @@ if TYPE_CHECKING:
     from planner.model.plan import Segment
     from planner.model.rotor import Rotor
     from planner.predict.solving import Batch, Solved
-    from planner.rotor.trim import TrimResult
+    from planner.rotor.result import TrimResult
 
     FloatArray = NDArray[np.float64]
 
@@ -33,7 +33,7 @@ READ: dict[str, Callable[[TrimResult], FloatArray]] = {
     "power": lambda r: r.power_W,
     "blade_loading": lambda r: r.blade_loading,
     "root_centrifugal_force": lambda r: r.root_centrifugal_force_N,
-    "hub_moment": lambda r: r.loads.hub_moment_N_m,
+    "hub_moment": lambda r: r.loads.hub_moment_peak_N_m,
     "root_flap_moment": lambda r: r.loads.root_flap_moment_N_m,
 }
 """Quantity to its numbers in a trim result, (cases,)."""
@@ -81,8 +81,16 @@ class SegmentResults:
 
     @property
     def works_outside_sections(self) -> bool:
-        """A notable share of a turning blade works beyond its section data."""
-        return bool(np.any(self._both(lambda r: r.outside_sections)))
+        """A notable share of a turning blade works beyond its section data.
+
+        A parked rotor meets the wind from all sides: there the continuation over the full circle
+        is the method, and this is no fault.
+        """
+        turns = np.concatenate([
+            self.solved.nominal.speed_rad_s[self.nominal] > 0.0,
+            self.solved.corners.speed_rad_s[self.corners] > 0.0,
+        ])
+        return bool(np.any(turns & (self._both(lambda r: r.outside_sections) != 0)))
 
     @property
     def knocks(self) -> bool:
@@ -91,8 +99,8 @@ class SegmentResults:
 
     @property
     def reaches_up_stop(self) -> bool:
-        """Free flap would pass the up stop."""
-        return bool(np.any(self.states == FlapState.UP_STOP))
+        """Blades reach the up stop: in flight, or lying on it."""
+        return bool(np.any(np.isin(self.states, (FlapState.UP_STOP, FlapState.RESTING_UP))))
 
     def _both(self, read: Callable[[TrimResult], NDArray[np.generic]]) -> NDArray[np.int64]:
         return np.concatenate([

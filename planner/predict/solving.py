@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, fields, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -16,7 +16,9 @@ from planner.predict.cases import (
     nominal_points,
     to_cases,
 )
-from planner.rotor.trim import TrimResult, trim
+from planner.rotor.loads import Loads
+from planner.rotor.result import TrimResult
+from planner.rotor.trim import trim
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -30,7 +32,6 @@ if TYPE_CHECKING:
 
     BoolArray = NDArray[np.bool_]
     FloatArray = NDArray[np.float64]
-
 
 @dataclass(frozen=True, eq=False)
 class Batch:
@@ -85,12 +86,26 @@ def _cyclic_found(result: TrimResult, i: int) -> Cyclic:
 
 
 def _batch(points: Sequence[Point], inputs: Inputs, rotor: RotorArrays, air: Air) -> Batch:
+    """Solve each different state once; segments that share a state share its numbers."""
     stops: tuple[Stop | None, Stop | None] = (
         inputs["rotor"].droop_stop, inputs["rotor"].up_stop
     )
-    cases = to_cases(points, stops, inputs["stand.mounting"], air.sound_m_s)
+    different: dict[Point, int] = {}
+    where = [different.setdefault(replace(p, segment=0), len(different)) for p in points]
+    cases = to_cases(list(different), stops, inputs["stand.mounting"], air.sound_m_s)
     return Batch(
-        tuple(points), trim(rotor, cases),
+        tuple(points), _taken(trim(rotor, cases), np.array(where, dtype=np.int64)),
         np.array([p.segment for p in points], dtype=np.int64),
         np.array([p.speed_rad_s for p in points]),
     )
+
+
+def _taken(result: TrimResult, where: NDArray[np.int64]) -> TrimResult:
+    """Results by position; a position may come more than once."""
+    rest = {
+        field.name: getattr(result, field.name)[where]
+        for field in fields(TrimResult)
+        if field.name != "loads"
+    }
+    loads = Loads(*(getattr(result.loads, field.name)[where] for field in fields(Loads)))
+    return TrimResult(loads=loads, **rest)

@@ -14,6 +14,7 @@ from planner.predict.register_rotor import ROTOR
 from planner.predict.rows import Rows
 from planner.predict.segment_results import SegmentResults, segment_results
 from planner.predict.solving import Solved, solve_run
+from planner.predict.stations import STATIONS
 from planner.predict.stop_free import stop_free_speed_rad_s
 from planner.predict.study import Inputs, Study
 from planner.predict.study_inertia import lift_slope_per_rad, moment_by_trapezia, section_at
@@ -41,7 +42,7 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     rotor: Rotor = inputs["rotor"]
     segments: Sequence[Segment] = inputs["segments"]
     air = air_of(inputs)
-    arrays = rotor_arrays(rotor)
+    arrays = rotor_arrays(rotor, STATIONS)
     counts_from = stop_free_speed_rad_s(inputs, rotor) if air.gust_m_s > 0.0 else 0.0
     solved = solve_run(inputs, arrays, air, counts_from)
     rows = {quantity.id: Rows(quantity.id, _ID) for quantity in ROTOR}
@@ -117,7 +118,7 @@ def _fault(quantity: str, found: SegmentResults, inputs: Inputs) -> tuple[Status
         return (Status.NOT_CONVERGED, f"{found.unconverged} of {found.states.size} states found "
                 "no periodic solution")
     if found.works_outside_sections:
-        return (Status.OUTSIDE_VALIDITY, "more than 2 % of the blade works beyond the section "
+        return (Status.OUTSIDE_VALIDITY, "more than 5 % of the loads come from beyond the section "
                 "data (stall or Mach number)")
     return _contact(quantity, found)
 

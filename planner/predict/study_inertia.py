@@ -9,6 +9,7 @@ import numpy as np
 from planner.methods.blade_inertia import lock_number, resample
 from planner.model.rotor import SymmetricSection
 from planner.predict.rows import single
+from planner.predict.stations import STATIONS
 from planner.predict.study import Inputs, Study
 from planner.rotor.setup import rotor_arrays
 
@@ -25,7 +26,7 @@ _REFERENCE_SHARE = 0.75
 def run(inputs: Inputs) -> Mapping[str, Prediction]:
     """Flap inertia, first moment and Lock number."""
     blade: Blade = inputs["rotor"].blade
-    arrays = rotor_arrays(inputs["rotor"])
+    arrays = rotor_arrays(inputs["rotor"], STATIONS)
     hinge = arrays.hub.hinge_m
     inertia, first = arrays.flap_inertia_kg_m2, arrays.first_moment_kg_m
     at = _REFERENCE_SHARE * blade.radius_m

@@ -13,10 +13,12 @@ from planner.model.plan import Cyclic
 from planner.model.results import Labels, Status
 from planner.predict.cases import Point, air_of, to_cases
 from planner.predict.rows import Rows
+from planner.predict.stations import STATIONS
 from planner.predict.study import Inputs, Study
 from planner.rotor.lift_off import lift_off_in_wind, still_air_lift_off
+from planner.rotor.result import FlapState
 from planner.rotor.setup import RotorArrays, rotor_arrays
-from planner.rotor.trim import FlapState, trim
+from planner.rotor.trim import trim
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -40,7 +42,7 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
         for filled in rows.values():
             filled.flag(Labels(), Status.NOT_APPLICABLE, "the hub has no droop stop")
     else:
-        air, arrays = air_of(inputs), rotor_arrays(rotor)
+        air, arrays = air_of(inputs), rotor_arrays(rotor, STATIONS)
         _rest_moment(rows["droop_stop_rest_moment"], inputs, arrays, air)
         _lift_off(rows, inputs, arrays, air)
     return {quantity: filled.prediction() for quantity, filled in rows.items()}
@@ -57,12 +59,12 @@ def _cases(points: Sequence[Point], inputs: Inputs, air: Air) -> Cases:
 
 
 def _points(pitches: Sequence[float], winds: Sequence[float], air: Air) -> list[Point]:
-    """Nominal first, then both ends of the load allowance, for each pitch and wind."""
-    loads = ((air.density_kg_m3[0], 1.0), (air.density_kg_m3[1], air.load_factor[0]),
-             (air.density_kg_m3[2], air.load_factor[1]))
+    """The nominal state (first pitch, strongest wind), then both ends of the load allowance."""
+    ends = ((air.density_kg_m3[1], air.load_factor[0]), (air.density_kg_m3[2], air.load_factor[1]))
+    nominal = (pitches[0], winds[-1], (air.density_kg_m3[0], 1.0))
     return [
         Point(0, 0.0, pitch, Cyclic(trimmed=False), wind, density, factor)
-        for pitch, wind, (density, factor) in product(pitches, winds, loads)
+        for pitch, wind, (density, factor) in (nominal, *product(pitches, winds, ends))
     ]
 
 
@@ -75,8 +77,9 @@ def pitches_at_rest(segments: Sequence[Segment]) -> list[float]:
 
 def _rest_moment(rows: Rows, inputs: Inputs, arrays: RotorArrays, air: Air) -> None:
     pitches = pitches_at_rest(inputs["segments"])
-    winds = sorted({0.0, air.wind_m_s, air.gust_m_s})
-    result = trim(arrays, _cases(_points(pitches, winds, air), inputs, air))
+    points = _points(pitches[:1], [0.0], air)[:1]
+    points += _points(pitches, sorted({air.wind_m_s, air.gust_m_s}), air)
+    result = trim(arrays, _cases(points, inputs, air))
     moments = result.stop_moment_N_m
     numbers = (float(moments[0]), float(np.min(moments)), float(np.max(moments)))
     if inputs["stand.mounting"] == "axis level" and air.gust_m_s > 0.0:
@@ -108,12 +111,12 @@ def _lift_off(
     pitches = pitches_at_rest(segments)
     for quantity, winds, search in (
         ("lift_off_speed_still_air", [0.0], still_air_lift_off),
-        ("lift_off_speed_in_wind", [air.gust_m_s], lift_off_in_wind),
+        ("lift_off_speed_in_wind", sorted({air.wind_m_s, air.gust_m_s}), lift_off_in_wind),
     ):
         cases = _cases(_points(pitches, winds, air), inputs, air)
         found = search(arrays, cases, np.full(cases.count, top))
         speeds = found.speed_rad_s
-        if inputs["stand.mounting"] == "axis level" and winds[0] > 0.0:
+        if inputs["stand.mounting"] == "axis level" and winds[-1] > 0.0:
             rows[quantity].flag(Labels(), Status.OUTSIDE_VALIDITY, _LEVEL)
         elif not np.all(found.is_found):
             rows[quantity].flag(Labels(), Status.NOT_CONVERGED, "no speed was found up to the "

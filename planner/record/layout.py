@@ -26,7 +26,6 @@ import platform
 from importlib.metadata import version
 from typing import TYPE_CHECKING, Any
 
-
 import planner
 from planner.judge.judge import judge
 from planner.judge.references import reference_table

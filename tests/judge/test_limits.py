@@ -95,3 +95,19 @@ def test_speed_range_that_cannot_be_resolved_is_missing_and_judges_nothing(bench
 def test_dimensions_are_compared(bench, quantity, changes, fault):
     bench.change_rule("stand-thrust", **{"caution": None, "unit": ""} | changes)
     assert bool(mismatch(bench.rule("stand-thrust"), REGISTER[quantity])) is fault
+
+
+@pytest.mark.parametrize(
+    ("other", "meet"),
+    [
+        (Span(5.0, 10.0), True),
+        (Span(20.0, 30.0), True),
+        (Span(12.0, 13.0), True),
+        (Span(0.0, 50.0), True),
+        (Span(0.0, 9.99), False),
+        (Span(20.01, 30.0), False),
+    ],
+)
+def test_ranges_that_touch_at_one_speed_meet(other, meet):
+    assert Span(10.0, 20.0).meets(other) is meet
+    assert other.meets(Span(10.0, 20.0)) is meet

@@ -239,6 +239,17 @@ def test_09_strictest_value_over_a_ramp_counts(bench, rows):
     assert Verdict(bench.finding("stand-thrust").segment_verdicts["stop"]) is NO_GO
 
 
+def test_09_table_has_to_reach_only_where_the_rule_applies(bench):
+    bench.change_rule(
+        "stand-thrust",
+        caution=None,
+        where=("stop",),
+        speed_range=SpeedRange(from_rad_s=20.0),
+        limit=Limit(table=((20.0, 2e4), (40.0, 2e4))),
+    )
+    assert bench.finding("stand-thrust").verdict is GO
+
+
 def test_10_reference_that_rests_on_a_failed_prediction_is_not_assessed(bench):
     bench.flag("lift_off_speed_in_wind", [0], Status.NOT_CONVERGED, "no root")
     finding = bench.finding("droop-clearance-angle")

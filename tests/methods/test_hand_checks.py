@@ -5,10 +5,6 @@ import numpy as np
 import pytest
 
 from planner.methods import hand_checks, hand_checks_flap, hand_checks_hover
-from planner.methods.hand_checks_hover import (
-    hover_power_coefficient,
-    momentum_hover_thrust_coefficient,
-)
 from planner.methods.hand_checks import (
     FlapHinge,
     flap_frequency_ratio,
@@ -20,6 +16,10 @@ from planner.methods.hand_checks import (
     uniform_centrifugal_force_n,
     uniform_flap_inertia,
     uniform_lift_off_speed_rad_s,
+)
+from planner.methods.hand_checks_hover import (
+    hover_power_coefficient,
+    momentum_hover_thrust_coefficient,
 )
 
 RPM = np.pi / 30.0

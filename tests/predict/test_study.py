@@ -8,10 +8,9 @@ import pytest
 
 from planner.judge.requests import requests
 from planner.model.plan import segments
-from planner.model.results import Status
+from planner.model.results import Labels, Status
 from planner.predict import run
 from planner.predict.rows import Rows
-from planner.model.results import Labels
 from planner.predict.study import Study
 from planner.predict.study_air import AIR
 
