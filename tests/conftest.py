@@ -22,7 +22,10 @@ if TYPE_CHECKING:
 
 SAMPLES = pathlib.Path(__file__).parent.parent / "sample_plans"
 SAMPLE_NAMES = (
-    "articulated-run-up", "articulated-gusty", "hingeless-model", "teetering-pair",
+    "articulated-run-up",
+    "articulated-gusty",
+    "hingeless-model",
+    "teetering-pair",
 )
 
 

@@ -47,7 +47,12 @@ def run(words: str, folder: pathlib.Path) -> str:
         command = [sys.executable, "-c", "from planner.cli import run; run()", *arguments]
         shown = f"$ whirlcard {' '.join(arguments)}\n"
     done = subprocess.run(
-        command, capture_output=True, text=True, cwd=folder, env=environment, check=False,
+        command,
+        capture_output=True,
+        text=True,
+        cwd=folder,
+        env=environment,
+        check=False,
         encoding="utf-8",
     )
     assert "Traceback" not in done.stderr, done.stderr

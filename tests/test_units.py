@@ -45,7 +45,11 @@ def test_parse_reads_text_as_si(text: str, dimension: str, expected: float) -> N
         ("12 degrees", ("angle",), r"got unit 'degrees' in '12 degrees'; did you mean 'deg'\?"),
         ("1,5 m", ("length",), r"must be a length in one of: m, .*; got unit ',5 m'"),
         ("12 kg", ("length",), r"must be a length .*; got unit 'kg'"),
-        ("fast", ("speed",), r'must start with a number, got \'fast\'; write for example "12 m/s"'),
+        (
+            "fast",
+            ("speed",),
+            r'must start with a number, got \'fast\'; write for example "12 m/s"',
+        ),
         ("nan m", ("length",), r"must start with a number"),
         ("9**9**9 m", ("length",), r"got unit '\*\*9\*\*9 m'"),
         ("40 % rpm", ("rotor speed",), r"must be a rotor speed"),
@@ -69,7 +73,7 @@ def test_every_unit_converts_both_ways(unit: str) -> None:
 
 def test_a_unit_name_means_one_factor_wherever_it_appears() -> None:
     for name in {u for t in units.DIMENSIONS.values() for u in t}:
-        homes = [t[name] for d, t in units.DIMENSIONS.items() if name in t]
+        homes = [t[name] for t in units.DIMENSIONS.values() if name in t]
         factors = {unit.factor for unit in homes}
         assert len(factors) == 1, name
 

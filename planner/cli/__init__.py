@@ -5,6 +5,6 @@ from __future__ import annotations
 
 def run() -> None:
     """Entry point of the installed command."""
-    from planner.cli.app import main  # noqa: PLC0415 - keeps the import of the package light
+    from planner.cli.app import main
 
     main()

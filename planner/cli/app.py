@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import sys
-from enum import Enum
+from enum import StrEnum
 from pathlib import Path
 from typing import Annotated, Any
 
@@ -22,7 +22,7 @@ app = typer.Typer(
 )
 
 
-class Paper(str, Enum):
+class Paper(StrEnum):
     """Page sizes."""
 
     a4 = "a4"

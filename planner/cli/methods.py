@@ -14,7 +14,8 @@ def listing() -> str:
     """All quantity ids with their names and units."""
     width = max(len(quantity) for quantity in REGISTER)
     lines = [
-        f"{quantity.id:<{width}}  {quantity.name}" + (f" [{quantity.unit}]" if quantity.unit else "")
+        f"{quantity.id:<{width}}  {quantity.name}"
+        + (f" [{quantity.unit}]" if quantity.unit else "")
         for quantity in REGISTER.values()
     ]
     return "\n".join(lines)
@@ -30,11 +31,15 @@ def describe(quantity_id: str) -> str:
     band = f" (agreement within {quantity.hand_band * 100:g} %)" if quantity.hand_band else ""
     allowance = quantity.allowance or "none: exact arithmetic on the inputs"
     parts = [
-        ("symbol", quantity.symbol), ("unit", quantity.unit or "none (a ratio)"),
+        ("symbol", quantity.symbol),
+        ("unit", quantity.unit or "none (a ratio)"),
         ("for each", ", ".join(quantity.axes) or "whole run"),
-        ("dangerous", quantity.danger), ("method", quantity.method),
-        ("validity", quantity.validity), ("source", quantity.source),
-        ("hand check", quantity.hand_check + band), ("allowance", allowance),
+        ("dangerous", quantity.danger),
+        ("method", quantity.method),
+        ("validity", quantity.validity),
+        ("source", quantity.source),
+        ("hand check", quantity.hand_check + band),
+        ("allowance", allowance),
     ]
     width = min(100, shutil.get_terminal_size((80, 24)).columns)
     body = [

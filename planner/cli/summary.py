@@ -41,10 +41,14 @@ def summary(record: Mapping[str, Any]) -> str:
     for cell in record["coverage"]:
         text = f"{cell['hazard_class']}, {cell['where']}: {cell['closed_by'] or 'open'}"
         lines += _entry(cell["verdict"], text, width)
-    lines += ["", *textwrap.wrap(
-        "A planning aid. It does not replace the facility's approved procedures, local codes or "
-        "licensed practice, and gives nobody clearance to run.", width,
-    )]
+    lines += [
+        "",
+        *textwrap.wrap(
+            "A planning aid. It does not replace the facility's approved procedures, local codes "
+            "or licensed practice, and gives nobody clearance to run.",
+            width,
+        ),
+    ]
     return "\n".join(lines)
 
 
@@ -68,9 +72,7 @@ def _finding(
     return lines
 
 
-def _numbers(
-    finding: Mapping[str, Any], rule: Mapping[str, Any], entry: Mapping[str, Any]
-) -> str:
+def _numbers(finding: Mapping[str, Any], rule: Mapping[str, Any], entry: Mapping[str, Any]) -> str:
     most = rule["sense"] == "at most"
     worst = finding["high"] if most else finding["low"]
     shown = toward_danger(worst, entry["unit"], "high" if most else "low")

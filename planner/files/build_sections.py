@@ -61,9 +61,7 @@ def _polar_ends(table: CsvTable, degrees: FloatArray, rows: tuple[int, int]) -> 
     return faults
 
 
-def build_section(
-    span: SymmetricTable | PolarTable, polars: dict[str, CsvTable]
-) -> Section:
+def build_section(span: SymmetricTable | PolarTable, polars: dict[str, CsvTable]) -> Section:
     """The section of a span: the built-in symmetric law, or a polar that was read."""
     if isinstance(span, PolarTable):
         return _polar(span.name, polars[span.polar])

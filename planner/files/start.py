@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import json
 import tomllib
-from pathlib import Path
 from typing import TYPE_CHECKING
 
 from planner.files.faults import visible
@@ -15,6 +14,8 @@ from planner.files.validate import documentation
 from planner.files.write import write_whole
 
 if TYPE_CHECKING:
+    from pathlib import Path
+
     from planner.files.schema_values import Table
 
 _MODEL_PLAN = "sample_plans/articulated-run-up"

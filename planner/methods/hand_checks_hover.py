@@ -113,7 +113,7 @@ def momentum_thrust_in_wind(
     mu2 = np.square(np.asarray(advance_ratio, dtype=np.float64))
     lift = np.asarray(pitch_rad, dtype=np.float64) * (B**3 / 3.0 + mu2 * B / 2.0)
     low = np.full(np.broadcast_shapes(sa.shape, B.shape, lift.shape), -1.0)
-    high = -low
+    high, inflow = -low, low
     for _ in range(60):
         inflow = 0.5 * (low + high)
         wanted = sa / 2.0 * (lift - inflow * B**2 / 2.0)

@@ -62,7 +62,7 @@ class Quantity:
     allowance: str = ""
     """Id of the rule book's allowance that widens it; empty: exact arithmetic of inputs."""
     hand_band: float = 0.0
-    """Relative difference from the hand check beyond which the two disagree; zero: not compared."""
+    """Relative difference from the hand check beyond which the two disagree."""
     hand_floor: float = 0.0
     """Difference in SI below which the two agree in any case."""
     method: str = ""

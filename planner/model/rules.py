@@ -77,8 +77,6 @@ class Rule:
     mode_orders: tuple[int, ...] = ()
     """Modes of the family that the rule covers, counted from one; empty: all."""
     harmonics: tuple[int, ...] = ()
-    """Rotor harmonics that the rule covers; empty: all that the quantity has."""
-    harmonics: tuple[int, ...] = ()
     """Rotor harmonics that the rule covers; empty: all."""
     exempt_damping: float | None = None
     """Modes damped at least this much are exempt (ratio of critical)."""

@@ -4,8 +4,10 @@ Each hold is solved at its target (nominal), and at the corners of its window: s
 error, collective, calm, mean wind and gust, and both ends of the air load allowance together with
 the thinnest and densest air. Each ramp is solved at points along it, at each of them nominal, and
 in calm, mean wind and gust with both ends of the allowance. The mean wind counts by itself: side
-flapping is strongest in light wind, where the wake leans back but is still strong. Where a step trims the cyclic, it is found at the
-nominal state in the mean wind; the corners keep that cyclic: a gust is not trimmed out.
+flapping is strongest in light wind, where the wake leans back but is still strong.
+
+Where a step trims the cyclic, it is found at the nominal state in the mean wind; the corners keep
+that cyclic: a gust is not trimmed out.
 """
 
 from __future__ import annotations
@@ -74,9 +76,7 @@ def air_of(inputs: Inputs) -> Air:
     return Air(inputs.bounds("air_density"), sound, slow, mean, gust, factor)
 
 
-def nominal_points(
-    segments: Sequence[Segment], air: Air, counts_from_rad_s: float
-) -> list[Point]:
+def nominal_points(segments: Sequence[Segment], air: Air, counts_from_rad_s: float) -> list[Point]:
     """The states that segments are meant to pass, in the mean wind.
 
     A hold counts at any speed; of a ramp, the points at and above the speed where the stops are
@@ -89,22 +89,35 @@ def nominal_points(
     ]
 
 
-def corner_points(point: Point, segment: Segment, air: Air, gauge_error_rad_s: float) -> list[Point]:
+def corner_points(
+    point: Point, segment: Segment, air: Air, gauge_error_rad_s: float
+) -> list[Point]:
     """The corners around a nominal state whose cyclic is fixed."""
     speeds, pitches = [point.speed_rad_s], [point.collective_rad]
     if segment.kind == "hold":
         half = segment.window.speed_rad_s + gauge_error_rad_s
         if point.speed_rad_s > 0.0:
             speeds = [max(0.0, point.speed_rad_s - half), point.speed_rad_s + half]
-        pitches = sorted({
-            point.collective_rad - segment.window.collective_rad,
-            point.collective_rad + segment.window.collective_rad,
-        })
+        pitches = sorted(
+            {
+                point.collective_rad - segment.window.collective_rad,
+                point.collective_rad + segment.window.collective_rad,
+            }
+        )
     winds = sorted({0.0, air.wind_m_s, air.gust_m_s})
-    loads = ((air.density_kg_m3[1], air.load_factor[0]), (air.density_kg_m3[2], air.load_factor[1]))
+    loads = (
+        (air.density_kg_m3[1], air.load_factor[0]),
+        (air.density_kg_m3[2], air.load_factor[1]),
+    )
     return [
-        replace(point, speed_rad_s=speed, collective_rad=pitch, wind_m_s=wind,
-                density_kg_m3=density, load_factor=factor)
+        replace(
+            point,
+            speed_rad_s=speed,
+            collective_rad=pitch,
+            wind_m_s=wind,
+            density_kg_m3=density,
+            load_factor=factor,
+        )
         for speed, pitch, wind, (density, factor) in product(speeds, pitches, winds, loads)
     ]
 
@@ -149,7 +162,10 @@ def _along(segment: Segment, counts_from_rad_s: float) -> list[tuple[float, floa
     shares = np.linspace(0.0, 1.0, RAMP_POINTS if change else PITCH_POINTS).tolist()
     if change and 0.0 < (counts_from_rad_s - start) / change < 1.0:
         shares = sorted({*shares, (counts_from_rad_s - start) / change})
-    pitch, more = segment.from_collective_rad, segment.to_collective_rad - segment.from_collective_rad
+    pitch, more = (
+        segment.from_collective_rad,
+        segment.to_collective_rad - segment.from_collective_rad,
+    )
     places = [(share, start + share * change, pitch + share * more) for share in shares]
     places[-1] = (1.0, segment.to_rad_s, segment.to_collective_rad)
     return [
@@ -167,8 +183,10 @@ def _cyclics(segment: Segment, share: float) -> list[Cyclic]:
         return [end]
     if start.trimmed or end.trimmed:
         return [start, end]
-    return [replace(
-        end,
-        cosine_rad=start.cosine_rad + share * (end.cosine_rad - start.cosine_rad),
-        sine_rad=start.sine_rad + share * (end.sine_rad - start.sine_rad),
-    )]
+    return [
+        replace(
+            end,
+            cosine_rad=start.cosine_rad + share * (end.cosine_rad - start.cosine_rad),
+            sine_rad=start.sine_rad + share * (end.sine_rad - start.sine_rad),
+        )
+    ]

@@ -50,7 +50,9 @@ def hover_hand(rotor: RotorArrays, blade: Blade, point: Point, air: Air) -> Hove
     speed, tip = point.speed_rad_s, point.speed_rad_s * blade.radius_m
     at = 0.75 * blade.radius_m
     section = section_at(blade, at)
-    slope = lift_slope_per_rad(section) / math.sqrt(1.0 - min(0.7, 0.75 * tip / air.sound_m_s) ** 2)
+    slope = lift_slope_per_rad(section) / math.sqrt(
+        1.0 - min(0.7, 0.75 * tip / air.sound_m_s) ** 2
+    )
     solidity = rotor.blade_area_m2 / (math.pi * blade.radius_m**2)
     pitch = point.collective_rad + _twist(blade, at) - _twist(blade, blade.collective_radius_m)
     thrust, inflow, tip_fraction = _thrust(
@@ -58,17 +60,26 @@ def hover_hand(rotor: RotorArrays, blade: Blade, point: Point, air: Air) -> Hove
     )
     mean_angle = 6.0 * thrust / (solidity * slope)
     drag = _drag(section, mean_angle)
-    power = float(
-        hand_checks_hover.power_in_wind(thrust, inflow, INDUCED_FACTOR, solidity * drag)
-    )
+    power = float(hand_checks_hover.power_in_wind(thrust, inflow, INDUCED_FACTOR, solidity * drag))
     force = point.density_kg_m3 * math.pi * blade.radius_m**2 * tip**2
     form = _flap_blade(rotor, blade, point, (slope, tip_fraction))
     damping = float(hand_checks_flap.flap_damping_ratio(form))
     frequency = float(hand_checks.flap_frequency_ratio(_hinge(rotor), speed))
-    coning = float(hand_checks_flap.coning_rad(form, hand_checks_flap.FlapLoading(
-        pitch, 4.0 * (_twist(blade, blade.radius_m) - _twist(blade, at)), 0.0, 0.0, inflow, 0.0,
-        0.0, float(hand_checks.steady_flap_moment(_hinge(rotor), speed)),
-    )))
+    coning = float(
+        hand_checks_flap.coning_rad(
+            form,
+            hand_checks_flap.FlapLoading(
+                pitch,
+                4.0 * (_twist(blade, blade.radius_m) - _twist(blade, at)),
+                0.0,
+                0.0,
+                inflow,
+                0.0,
+                0.0,
+                float(hand_checks.steady_flap_moment(_hinge(rotor), speed)),
+            ),
+        )
+    )
     if abs(thrust) < LEAST_BLADE_LOADING * solidity:
         return HoverHand(damping_ratio=damping, frequency_ratio=frequency)
     return HoverHand(
@@ -98,7 +109,10 @@ def _thrust(
 def _hinge(rotor: RotorArrays) -> hand_checks.FlapHinge:
     hub = rotor.hub
     return hand_checks.FlapHinge(
-        rotor.flap_inertia_kg_m2, rotor.first_moment_kg_m, hub.hinge_m, hub.spring_N_m_rad,
+        rotor.flap_inertia_kg_m2,
+        rotor.first_moment_kg_m,
+        hub.hinge_m,
+        hub.spring_N_m_rad,
         hub.spring_neutral_rad,
     )
 
@@ -113,8 +127,12 @@ def _flap_blade(
     )
     ratio = hand_checks.flap_frequency_ratio(_hinge(rotor), point.speed_rad_s)
     return hand_checks_flap.FlapBlade(
-        lock, np.square(ratio), rotor.hub.hinge_m / blade.radius_m,
-        blade.aero_root_m / blade.radius_m, tip_fraction, rotor.hub.pitch_flap,
+        lock,
+        np.square(ratio),
+        rotor.hub.hinge_m / blade.radius_m,
+        blade.aero_root_m / blade.radius_m,
+        tip_fraction,
+        rotor.hub.pitch_flap,
     )
 
 

@@ -18,27 +18,29 @@ if TYPE_CHECKING:
 
     from planner.model.results import Quantity
 
-REGISTER: Mapping[str, Quantity] = MappingProxyType({
-    quantity.id: quantity for quantity in (*GENERAL, *ROTOR, *RESONANCE)
-})
+REGISTER: Mapping[str, Quantity] = MappingProxyType(
+    {quantity.id: quantity for quantity in (*GENERAL, *ROTOR, *RESONANCE)}
+)
 
-REFERENCES: Mapping[str, str] = MappingProxyType({
-    "design_maximum_speed": "rpm",
-    "proven_speed": "rpm",
-    "lowest_design_or_proven_speed": "rpm",
-    "full_speed": "rpm",
-    "card_speed": "rpm",
-    "stop_free_speed": "rpm",
-    "drive_maximum_speed": "rpm",
-    "drive_torque_rating": "N m",
-    "drive_power_rating": "kW",
-    "stand_thrust_rating": "N",
-    "stand_hub_moment_rating": "N m",
-    "root_force_rating": "kN",
-    "root_moment_rating": "N m",
-    "droop_stop_moment_rating": "N m",
-    "up_stop_moment_rating": "N m",
-    "flap_travel": "deg",
-    "cyclic_authority": "deg",
-})
+REFERENCES: Mapping[str, str] = MappingProxyType(
+    {
+        "design_maximum_speed": "rpm",
+        "proven_speed": "rpm",
+        "lowest_design_or_proven_speed": "rpm",
+        "full_speed": "rpm",
+        "card_speed": "rpm",
+        "stop_free_speed": "rpm",
+        "drive_maximum_speed": "rpm",
+        "drive_torque_rating": "N m",
+        "drive_power_rating": "kW",
+        "stand_thrust_rating": "N",
+        "stand_hub_moment_rating": "N m",
+        "root_force_rating": "kN",
+        "root_moment_rating": "N m",
+        "droop_stop_moment_rating": "N m",
+        "up_stop_moment_rating": "N m",
+        "flap_travel": "deg",
+        "cyclic_authority": "deg",
+    }
+)
 """Reference values that a rule's limit may be a share of: id to display unit."""

@@ -34,8 +34,12 @@ class Rows:
         low = value if low is None else low
         high = value if high is None else high
         if not (math.isfinite(value) and math.isfinite(low) and math.isfinite(high)):
-            self.flag(labels, Status.NOT_COMPUTED, "the result is not a finite number",
-                      speed_rad_s=speed_rad_s)
+            self.flag(
+                labels,
+                Status.NOT_COMPUTED,
+                "the result is not a finite number",
+                speed_rad_s=speed_rad_s,
+            )
             return
         low, high = min(low, value), max(high, value)
         self._rows.append((labels, value, low, high, Status.OK, "", speed_rad_s, hand))
@@ -58,10 +62,16 @@ class Rows:
         columns = list(zip(*self._rows, strict=True)) or [()] * 8
         numbers = [np.array(columns[i], dtype=np.float64) for i in (1, 2, 3, 6, 7)]
         return Prediction(
-            quantity=self.quantity, study=self.study, labels=tuple(columns[0]),
-            value=numbers[0], low=numbers[1], high=numbers[2],
-            status=tuple(columns[4]), reasons=tuple(columns[5]),
-            speed_rad_s=numbers[3], hand=numbers[4],
+            quantity=self.quantity,
+            study=self.study,
+            labels=tuple(columns[0]),
+            value=numbers[0],
+            low=numbers[1],
+            high=numbers[2],
+            status=tuple(columns[4]),
+            reasons=tuple(columns[5]),
+            speed_rad_s=numbers[3],
+            hand=numbers[4],
         )
 
 

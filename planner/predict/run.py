@@ -46,8 +46,9 @@ def predict(
             found |= _refused(study, str(refusal))
     for quantity in REGISTER.values():
         if quantity.id not in found:
-            found[quantity.id] = _flagged(quantity.id, quantity.study, Status.NOT_COMPUTED,
-                                          "no study computed it")
+            found[quantity.id] = _flagged(
+                quantity.id, quantity.study, Status.NOT_COMPUTED, "no study computed it"
+            )
     return {quantity: found[quantity] for quantity in REGISTER}
 
 

@@ -86,10 +86,12 @@ class SegmentResults:
         A parked rotor meets the wind from all sides: there the continuation over the full circle
         is the method, and this is no fault.
         """
-        turns = np.concatenate([
-            self.solved.nominal.speed_rad_s[self.nominal] > 0.0,
-            self.solved.corners.speed_rad_s[self.corners] > 0.0,
-        ])
+        turns = np.concatenate(
+            [
+                self.solved.nominal.speed_rad_s[self.nominal] > 0.0,
+                self.solved.corners.speed_rad_s[self.corners] > 0.0,
+            ]
+        )
         return bool(np.any(turns & (self._both(lambda r: r.outside_sections) != 0)))
 
     @property
@@ -103,10 +105,12 @@ class SegmentResults:
         return bool(np.any(np.isin(self.states, (FlapState.UP_STOP, FlapState.RESTING_UP))))
 
     def _both(self, read: Callable[[TrimResult], NDArray[np.generic]]) -> NDArray[np.int64]:
-        return np.concatenate([
-            read(self.solved.nominal.result)[self.nominal],
-            read(self.solved.corners.result)[self.corners],
-        ])
+        return np.concatenate(
+            [
+                read(self.solved.nominal.result)[self.nominal],
+                read(self.solved.corners.result)[self.corners],
+            ]
+        )
 
     def _read(self, quantity: str, batch: Batch, where: NDArray[np.int64]) -> FloatArray:
         if quantity == "droop_stop_clearance":
@@ -114,12 +118,14 @@ class SegmentResults:
             if stop is None:
                 return np.full(where.size, np.nan)
             angle = np.array([stop.lowest_angle_rad(v) for v in batch.speed_rad_s[where]])
-            return batch.result.loads.flap_lowest_rad[where] - angle
+            margin: FloatArray = batch.result.loads.flap_lowest_rad[where] - angle
+            return margin
         if quantity == "up_stop_clearance":
             up = self.rotor.up_stop
             angle_up = np.nan if up is None else up.angle_rad
             return angle_up - batch.result.loads.flap_highest_rad[where]
-        return READ[quantity](batch.result)[where]
+        numbers: FloatArray = READ[quantity](batch.result)[where]
+        return numbers
 
 
 def segment_results(
@@ -127,5 +133,7 @@ def segment_results(
 ) -> SegmentResults:
     """Pick the states of one segment that count."""
     nominal, corners = solved.nominal.of(index), solved.corners.of(index)
-    below = segment.kind != "hold" and min(segment.from_rad_s, segment.to_rad_s) < counts_from_rad_s
+    below = (
+        segment.kind != "hold" and min(segment.from_rad_s, segment.to_rad_s) < counts_from_rad_s
+    )
     return SegmentResults(segment, rotor, nominal, corners, solved, below)

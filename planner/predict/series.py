@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -34,7 +35,7 @@ def series(
 def _times(segments: tuple[Segment, ...]) -> list[tuple[float, float]]:
     """Start and end of each segment, one pass of each [s]."""
     ends = np.cumsum([0.0] + [segment.duration_s for segment in segments])
-    return [(float(a), float(b)) for a, b in zip(ends[:-1], ends[1:], strict=True)]
+    return [(float(a), float(b)) for a, b in itertools.pairwise(ends)]
 
 
 def _run(segments: tuple[Segment, ...]) -> dict[str, Any]:
@@ -65,8 +66,12 @@ def _fan(
     return {
         "speed_rad_s": speed,
         "modes": [
-            {"name": t.name, "family": t.family, "frequency_rad_s": t.frequency_rad_s,
-             "damping": t.damping}
+            {
+                "name": t.name,
+                "family": t.family,
+                "frequency_rad_s": t.frequency_rad_s,
+                "damping": t.damping,
+            }
             for t in found
         ],
         "harmonics": list(range(1, GREATEST_HARMONIC + 1)),
@@ -79,9 +84,18 @@ def _flap(
     lowest = _by_segment(predictions["flap_lowest"])
     highest = _by_segment(predictions["flap_highest"])
     droop, up = plan.rotor.droop_stop, plan.rotor.up_stop
-    out: dict[str, list[Any]] = {key: [] for key in (
-        "time_s", "segment", "lowest_rad", "highest_rad", "droop_rad", "up_rad", "assessed"
-    )}
+    out: dict[str, list[Any]] = {
+        key: []
+        for key in (
+            "time_s",
+            "segment",
+            "lowest_rad",
+            "highest_rad",
+            "droop_rad",
+            "up_rad",
+            "assessed",
+        )
+    }
     for segment, (start, end) in zip(segments, _times(segments), strict=True):
         low, low_known = lowest.get(segment.id, (float("nan"), False))
         high, high_known = highest.get(segment.id, (float("nan"), False))

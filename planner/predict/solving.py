@@ -33,6 +33,7 @@ if TYPE_CHECKING:
     BoolArray = NDArray[np.bool_]
     FloatArray = NDArray[np.float64]
 
+
 @dataclass(frozen=True, eq=False)
 class Batch:
     """States of many segments and what the rotor does in them."""
@@ -56,9 +57,7 @@ class Solved:
     gust_trim: Batch
 
 
-def solve_run(
-    inputs: Inputs, rotor: RotorArrays, air: Air, counts_from_rad_s: float
-) -> Solved:
+def solve_run(inputs: Inputs, rotor: RotorArrays, air: Air, counts_from_rad_s: float) -> Solved:
     """Solve nominal states first, then the corners with the cyclic found there."""
     segments: Sequence[Segment] = inputs["segments"]
     error = inputs["stand.speed_gauge_error_rad_s"]
@@ -68,13 +67,15 @@ def solve_run(
         for i, point in enumerate(nominal.points)
         for corner in corner_points(
             replace(point, cyclic=_cyclic_found(nominal.result, i)),
-            segments[point.segment], air, error,
+            segments[point.segment],
+            air,
+            error,
         )
     ]
-    again = gust_trim_points([p for p in nominal.points if segments[p.segment].kind == "hold"], air)
-    return Solved(
-        nominal, _batch(corners, inputs, rotor, air), _batch(again, inputs, rotor, air)
+    again = gust_trim_points(
+        [p for p in nominal.points if segments[p.segment].kind == "hold"], air
     )
+    return Solved(nominal, _batch(corners, inputs, rotor, air), _batch(again, inputs, rotor, air))
 
 
 def _cyclic_found(result: TrimResult, i: int) -> Cyclic:
@@ -87,14 +88,13 @@ def _cyclic_found(result: TrimResult, i: int) -> Cyclic:
 
 def _batch(points: Sequence[Point], inputs: Inputs, rotor: RotorArrays, air: Air) -> Batch:
     """Solve each different state once; segments that share a state share its numbers."""
-    stops: tuple[Stop | None, Stop | None] = (
-        inputs["rotor"].droop_stop, inputs["rotor"].up_stop
-    )
+    stops: tuple[Stop | None, Stop | None] = (inputs["rotor"].droop_stop, inputs["rotor"].up_stop)
     different: dict[Point, int] = {}
     where = [different.setdefault(replace(p, segment=0), len(different)) for p in points]
     cases = to_cases(list(different), stops, inputs["stand.mounting"], air.sound_m_s)
     return Batch(
-        tuple(points), _taken(trim(rotor, cases), np.array(where, dtype=np.int64)),
+        tuple(points),
+        _taken(trim(rotor, cases), np.array(where, dtype=np.int64)),
         np.array([p.segment for p in points], dtype=np.int64),
         np.array([p.speed_rad_s for p in points]),
     )

@@ -2,20 +2,39 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from planner.model.canonical import digest
-from planner.model.plan import Plan, Segment
-from planner.model.results import Prediction, Requests, Status
+from planner.model.results import Status
 
-PATHS = frozenset({
-    "site", "segments", "keep_outs", "shutdown", "rotor", "rotor.n_blades", "rotor.blade", "rotor.hub",
-    "rotor.droop_stop", "rotor.up_stop", "rotor.control_stiffness_N_m_rad",
-    "rotor.cyclic_authority_rad", "stand.hub_height_m", "stand.mounting",
-    "stand.full_speed_rad_s", "stand.speed_gauge_error_rad_s", "stand.modes",
-})
+if TYPE_CHECKING:
+    from collections.abc import Callable, Mapping
+
+    from planner.model.plan import Plan, Segment
+    from planner.model.results import Prediction, Requests
+
+PATHS = frozenset(
+    {
+        "site",
+        "segments",
+        "keep_outs",
+        "shutdown",
+        "rotor",
+        "rotor.n_blades",
+        "rotor.blade",
+        "rotor.hub",
+        "rotor.droop_stop",
+        "rotor.up_stop",
+        "rotor.control_stiffness_N_m_rad",
+        "rotor.cyclic_authority_rad",
+        "stand.hub_height_m",
+        "stand.mounting",
+        "stand.full_speed_rad_s",
+        "stand.speed_gauge_error_rad_s",
+        "stand.modes",
+    }
+)
 """Model paths that studies may take."""
 
 

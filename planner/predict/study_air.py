@@ -37,13 +37,19 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     mean, greatest = winds_at_hub(site, inputs["stand.hub_height_m"])
     return {
         "air_density": single(
-            "air_density", "air", float(density[0]),
-            low=float(density[1]), high=float(density[2]),
+            "air_density",
+            "air",
+            float(density[0]),
+            low=float(density[1]),
+            high=float(density[2]),
             hand=pressure / (287.05 * site.temperature_K),
         ),
         "speed_of_sound": single(
-            "speed_of_sound", "air", float(sound[0]),
-            low=float(sound[2]), high=float(sound[1]),
+            "speed_of_sound",
+            "air",
+            float(sound[0]),
+            low=float(sound[2]),
+            high=float(sound[1]),
             hand=20.05 * math.sqrt(site.temperature_K),
         ),
         "wind_at_hub": single("wind_at_hub", "air", mean, low=0.0, high=greatest),

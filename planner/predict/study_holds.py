@@ -14,6 +14,7 @@ from planner.predict.register_rotor import ROTOR
 from planner.predict.rows import Rows
 from planner.predict.segment_results import SegmentResults, segment_results
 from planner.predict.solving import Solved, solve_run
+from planner.predict.state_faults import AIR_LOADS, STOPS, Scope, state_fault
 from planner.predict.stations import STATIONS
 from planner.predict.stop_free import stop_free_speed_rad_s
 from planner.predict.study import Inputs, Study
@@ -29,11 +30,14 @@ if TYPE_CHECKING:
     from planner.predict.cases import Air
 
 _ID = "holds"
-_AIR_LOADS = ("thrust", "torque", "power", "blade_loading")
 _FLAP = (
-    "flap_mean", "flap_cosine", "flap_sine", "flap_highest", "flap_lowest", "hub_moment",
+    "flap_mean",
+    "flap_cosine",
+    "flap_sine",
+    "flap_highest",
+    "flap_lowest",
+    "hub_moment",
 )
-_STOPS = ("droop_stop_clearance", "up_stop_clearance", "droop_stop_moment")
 _DANGER = {quantity.id: quantity.danger for quantity in ROTOR}
 
 
@@ -69,26 +73,39 @@ def _hand(found: SegmentResults, arrays: RotorArrays, inputs: Inputs, air: Air) 
 def _rotor_rows(
     rows: Mapping[str, Rows], found: SegmentResults, hand: HoverHand, inputs: Inputs
 ) -> None:
-    hands = {"flap_mean": hand.flap_mean_rad, "thrust": hand.thrust_N,
-             "torque": hand.torque_N_m, "power": hand.power_W}
-    for quantity in (*_AIR_LOADS, *_FLAP, *_STOPS, "root_flap_moment"):
+    scope = Scope(
+        mounting=inputs["stand.mounting"],
+        gust_m_s=inputs.bounds("wind_at_hub")[2],
+        has_torque_allowance="torque" in inputs.requests.allowances,
+    )
+    hands = {
+        "flap_mean": hand.flap_mean_rad,
+        "thrust": hand.thrust_N,
+        "torque": hand.torque_N_m,
+        "power": hand.power_W,
+    }
+    for quantity in (*AIR_LOADS, *_FLAP, *STOPS, "root_flap_moment"):
         label = Labels(segment=found.segment.id)
         top = max(found.segment.from_rad_s, found.segment.to_rad_s)
-        status, reason = _fault(quantity, found, inputs)
+        status, reason = state_fault(quantity, found, scope)
         if status is Status.NOT_APPLICABLE:
             rows[quantity].flag(label, status, reason, speed_rad_s=top)
             continue
         numbers = _numbers(quantity, found, inputs)
         if status is Status.OK:
-            rows[quantity].add(label, numbers[0], low=numbers[1], high=numbers[2],
-                               speed_rad_s=top, hand=hands.get(quantity, math.nan))
+            rows[quantity].add(
+                label,
+                numbers[0],
+                low=numbers[1],
+                high=numbers[2],
+                speed_rad_s=top,
+                hand=hands.get(quantity, math.nan),
+            )
         else:
             rows[quantity].flag(label, status, reason, numbers=numbers, speed_rad_s=top)
 
 
-def _numbers(
-    quantity: str, found: SegmentResults, inputs: Inputs
-) -> tuple[float, float, float]:
+def _numbers(quantity: str, found: SegmentResults, inputs: Inputs) -> tuple[float, float, float]:
     """Value, low and high over the states that count."""
     if found.is_empty:
         return math.nan, math.nan, math.nan
@@ -101,52 +118,6 @@ def _numbers(
     return value, low, high
 
 
-def _fault(quantity: str, found: SegmentResults, inputs: Inputs) -> tuple[Status, str]:
-    """Why a quantity does not count in this segment; OK where it does."""
-    without = _does_not_apply(quantity, inputs["rotor"])
-    if without:
-        return Status.NOT_APPLICABLE, without
-    if inputs["stand.mounting"] == "axis level" and inputs.bounds("wind_at_hub")[2] > 0.0:
-        return (Status.OUTSIDE_VALIDITY, "wind on a rotor with a level axis also blows through "
-                "the disc, which is not modelled")
-    if found.is_empty:
-        return (Status.OUTSIDE_VALIDITY, "the whole ramp lies in the region of the stops, where "
-                "gusts throw blades about and quasi-static states are no prediction")
-    if quantity in {"torque", "power"} and "torque" not in inputs.requests.allowances:
-        return Status.NOT_COMPUTED, "the rule book states no allowance 'torque'"
-    if found.unconverged:
-        return (Status.NOT_CONVERGED, f"{found.unconverged} of {found.states.size} states found "
-                "no periodic solution")
-    if found.works_outside_sections:
-        return (Status.OUTSIDE_VALIDITY, "more than 5 % of the loads come from beyond the section "
-                "data (stall or Mach number)")
-    return _contact(quantity, found)
-
-
-def _contact(quantity: str, found: SegmentResults) -> tuple[Status, str]:
-    """Whether stop contact spoils a quantity."""
-    if quantity in _AIR_LOADS:
-        return Status.OK, ""
-    if found.reaches_below:
-        return (Status.OUTSIDE_VALIDITY, "the ramp passes the region of the stops in wind; its "
-                "quasi-static states are information only until the ramp is marched in gusts")
-    if found.knocks and quantity != "droop_stop_clearance":
-        return (Status.OUTSIDE_VALIDITY, "a blade touches its droop stop in part of each turn; "
-                "what the impact does is not predicted by a periodic solution")
-    if found.reaches_up_stop and quantity != "up_stop_clearance":
-        return (Status.OUTSIDE_VALIDITY, "a blade reaches its up stop; what the impact does is "
-                "not predicted by a periodic solution")
-    return Status.OK, ""
-
-
-def _does_not_apply(quantity: str, rotor: Rotor) -> str:
-    if quantity in _STOPS and rotor.droop_stop is None:
-        return "the hub has no flap stops; its root moment is judged instead"
-    if quantity == "root_flap_moment" and rotor.hub.kind != "hingeless":
-        return "the hub has a flap hinge; its stops are judged instead"
-    return ""
-
-
 def _force_row(rows: Rows, segment: Segment, arrays: RotorArrays, inputs: Inputs) -> None:
     error = inputs["stand.speed_gauge_error_rad_s"]
     top = max(segment.from_rad_s, segment.to_rad_s)
@@ -156,8 +127,14 @@ def _force_row(rows: Rows, segment: Segment, arrays: RotorArrays, inputs: Inputs
     hinge = arrays.hub.hinge_m
     # about the shaft, of what lies outboard of the hinge: S + e times the mass
     factor = moment_by_trapezia(blade, hinge, 1) + hinge * moment_by_trapezia(blade, hinge, 0)
-    rows.add(Labels(segment=segment.id), forces[0], low=forces[1], high=forces[2],
-             speed_rad_s=top, hand=factor * top**2)
+    rows.add(
+        Labels(segment=segment.id),
+        forces[0],
+        low=forces[1],
+        high=forces[2],
+        speed_rad_s=top,
+        hand=factor * top**2,
+    )
 
 
 def _cyclic_row(rows: Rows, found: SegmentResults, solved: Solved) -> None:
@@ -172,8 +149,12 @@ def _cyclic_row(rows: Rows, found: SegmentResults, solved: Solved) -> None:
         np.all(solved.gust_trim.result.cyclic_need_found[again])
     )
     if not known:
-        rows.flag(label, Status.NOT_CONVERGED, "no cyclic was found that trims flapping to zero",
-                  speed_rad_s=top)
+        rows.flag(
+            label,
+            Status.NOT_CONVERGED,
+            "no cyclic was found that trims flapping to zero",
+            speed_rad_s=top,
+        )
         return
     need = float(solved.nominal.result.cyclic_need[i])
     in_gust = solved.gust_trim.result.cyclic_need[again]
@@ -192,33 +173,47 @@ def _flap_constants(
     top = max(segment.from_rad_s, segment.to_rad_s)
     if segment.kind != "hold" or top <= 0.0:
         for quantity in ("flap_frequency_ratio", "flap_damping_ratio"):
-            rows[quantity].flag(label, Status.NOT_APPLICABLE, "given for holds with the rotor "
-                                "turning", speed_rad_s=top)
+            rows[quantity].flag(
+                label,
+                Status.NOT_APPLICABLE,
+                "given for holds with the rotor turning",
+                speed_rad_s=top,
+            )
         return
     hub, inertia = arrays.hub, arrays.flap_inertia_kg_m2
     ratio = math.sqrt(
-        1.0 + hub.hinge_m * arrays.first_moment_kg_m / inertia
+        1.0
+        + hub.hinge_m * arrays.first_moment_kg_m / inertia
         + hub.spring_N_m_rad / (inertia * top**2)
     )
-    slope = np.array([
-        lift_slope_per_rad(section_at(blade, radius)) for radius in arrays.station_radius_m
-    ])
+    slope = np.array(
+        [lift_slope_per_rad(section_at(blade, radius)) for radius in arrays.station_radius_m]
+    )
     span = slope * arrays.chord_m * arrays.station_radius_m * arrays.arm_m**2
     from_air = float(np.sum(span * arrays.station_width_m)) / (4.0 * ratio * inertia)
     damper = hub.damper_N_m_s_rad / (2.0 * ratio * inertia * top)
     density = air.density_kg_m3
     rows["flap_frequency_ratio"].add(label, ratio, speed_rad_s=top, hand=hand.frequency_ratio)
     rows["flap_damping_ratio"].add(
-        label, density[0] * from_air + damper,
+        label,
+        density[0] * from_air + damper,
         low=density[1] * air.load_factor[0] * from_air + damper,
         high=density[2] * air.load_factor[1] * from_air + damper,
-        speed_rad_s=top, hand=hand.damping_ratio + damper,
+        speed_rad_s=top,
+        hand=hand.damping_ratio + damper,
     )
 
 
 HOLDS = Study(
-    _ID, 1,
-    ("segments", "rotor", "stand.mounting", "stand.full_speed_rad_s",
-     "stand.speed_gauge_error_rad_s"),
-    ("air", "stops"), run,
+    _ID,
+    1,
+    (
+        "segments",
+        "rotor",
+        "stand.mounting",
+        "stand.full_speed_rad_s",
+        "stand.speed_gauge_error_rad_s",
+    ),
+    ("air", "stops"),
+    run,
 )

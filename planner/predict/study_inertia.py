@@ -37,10 +37,12 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
         for density in inputs.bounds("air_density")
     ]
     return {
-        "blade_flap_inertia": single("blade_flap_inertia", _ID, inertia,
-                                     hand=moment_by_trapezia(blade, hinge, 2)),
-        "blade_first_moment": single("blade_first_moment", _ID, first,
-                                     hand=moment_by_trapezia(blade, hinge, 1)),
+        "blade_flap_inertia": single(
+            "blade_flap_inertia", _ID, inertia, hand=moment_by_trapezia(blade, hinge, 2)
+        ),
+        "blade_first_moment": single(
+            "blade_first_moment", _ID, first, hand=moment_by_trapezia(blade, hinge, 1)
+        ),
         "lock_number": single("lock_number", _ID, locks[0], low=locks[1], high=locks[2]),
     }
 

@@ -11,9 +11,9 @@ import numpy as np
 from planner.methods.beam import BladeBeam, Root, flap_matrices, lag_matrices, torsion_matrices
 from planner.methods.beam_modes import frequencies
 from planner.model.results import Labels, Status
-from planner.predict.blade_views import beam, flap_inertia
 from planner.predict.rows import Rows
 from planner.predict.study import Inputs, Study
+from planner.rotor.blade_views import beam, flap_inertia
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -54,23 +54,28 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     """Frequencies and spacing at every hold, and crossings up to 120 % rpm."""
     holds = [s for s in inputs["segments"] if s.kind == "hold"]
     speeds = hold_speeds(holds, inputs["stand.speed_gauge_error_rad_s"])
-    rows = {q: Rows(q, _ID) for q in (
-        "mode_frequency", "mode_damping", "harmonic_spacing", "crossing_speed"
-    )}
+    rows = {
+        q: Rows(q, _ID)
+        for q in ("mode_frequency", "mode_damping", "harmonic_spacing", "crossing_speed")
+    }
     allowance = inputs.requests.allowances.get("frequency")
     for track in tracks(inputs, speeds.reshape(-1)):
         at_holds = track.frequency_rad_s.reshape(speeds.shape)
         for hold, speed, frequency in zip(holds, speeds, at_holds, strict=True):
             label = Labels(segment=hold.id, mode=track.name)
             fault = _fault(track, allowance)
-            if fault:
+            if fault or allowance is None:
                 for quantity in ("mode_frequency", "mode_damping", "harmonic_spacing"):
-                    rows[quantity].flag(label, Status.NOT_COMPUTED, fault,
-                                        speed_rad_s=hold.to_rad_s)
+                    rows[quantity].flag(
+                        label, Status.NOT_COMPUTED, fault, speed_rad_s=hold.to_rad_s
+                    )
                 continue
-            assert allowance is not None
-            _frequency_row(rows["mode_frequency"], label, (speed, frequency, allowance),
-                           hand_frequency(track.name, inputs, hold.to_rad_s))
+            _frequency_row(
+                rows["mode_frequency"],
+                label,
+                (speed, frequency, allowance),
+                hand_frequency(track.name, inputs, hold.to_rad_s),
+            )
             _damping_row(rows["mode_damping"], track, hold, float(frequency[0]), inputs)
             _spacing_rows(rows["harmonic_spacing"], track, label, (speed, frequency, allowance))
     for track in tracks(inputs, fan_speeds(inputs)):
@@ -85,14 +90,16 @@ def fan_speeds(inputs: Inputs) -> FloatArray:
 
 def hold_speeds(holds: Sequence[Segment], gauge_error_rad_s: float) -> FloatArray:
     """Target, lowest and highest speed of each hold, shape (holds, 3) [rad/s]."""
-    return np.array([
-        (
-            hold.to_rad_s,
-            max(0.0, hold.lowest_rad_s - gauge_error_rad_s),
-            hold.highest_rad_s + gauge_error_rad_s,
-        )
-        for hold in holds
-    ]).reshape(-1, 3)
+    return np.array(
+        [
+            (
+                hold.to_rad_s,
+                max(0.0, hold.lowest_rad_s - gauge_error_rad_s),
+                hold.highest_rad_s + gauge_error_rad_s,
+            )
+            for hold in holds
+        ]
+    ).reshape(-1, 3)
 
 
 def tracks(inputs: Inputs, speed_rad_s: FloatArray) -> list[Track]:
@@ -111,8 +118,16 @@ def tracks(inputs: Inputs, speed_rad_s: FloatArray) -> list[Track]:
     for mode in inputs["stand.modes"]:
         harmonics = (1, n, 2 * n) if mode.family == "stand" else (n, 2 * n)
         constant = np.full(speed_rad_s.shape, mode.frequency_rad_s)
-        found.append(Track(f"{mode.family} {mode.name}", mode.family, constant, harmonics,
-                           mode.damping_ratio, mode))
+        found.append(
+            Track(
+                f"{mode.family} {mode.name}",
+                mode.family,
+                constant,
+                harmonics,
+                mode.damping_ratio,
+                mode,
+            )
+        )
     return found
 
 
@@ -148,11 +163,15 @@ def blade_families(
 
 def _fault(track: Track, allowance: tuple[float, float] | None) -> str:
     if track.given is not None and track.given.rotor_fitted is None:
-        return ("the stand file does not say whether the rotor's mass was fitted when this mode "
-                "was found (rotor_fitted)")
+        return (
+            "the stand file does not say whether the rotor's mass was fitted when this mode "
+            "was found (rotor_fitted)"
+        )
     if track.given is not None and not track.given.rotor_fitted:
-        return ("the mode was found without the rotor's mass and is not corrected for it; give "
-                "the mode with the rotor fitted")
+        return (
+            "the mode was found without the rotor's mass and is not corrected for it; give "
+            "the mode with the rotor fitted"
+        )
     if allowance is None:
         return "the rule book states no allowance 'frequency'"
     return ""
@@ -164,8 +183,14 @@ _Window = tuple["FloatArray", "FloatArray", tuple[float, float]]
 
 def _frequency_row(rows: Rows, label: Labels, window: _Window, hand: float) -> None:
     speed, frequency, allowance = window
-    rows.add(label, float(frequency[0]), low=float(frequency.min()) * allowance[0],
-             high=float(frequency.max()) * allowance[1], speed_rad_s=float(speed[0]), hand=hand)
+    rows.add(
+        label,
+        float(frequency[0]),
+        low=float(frequency.min()) * allowance[0],
+        high=float(frequency.max()) * allowance[1],
+        speed_rad_s=float(speed[0]),
+        hand=hand,
+    )
 
 
 def _damping_row(
@@ -182,8 +207,12 @@ def _damping_row(
         critical = 2.0 * float(body.second_moment_kg_m2) * frequency_rad_s
         rows.add(label, hub.lag_damper_N_m_s_rad / critical, speed_rad_s=hold.to_rad_s)
     else:
-        rows.flag(label, Status.NOT_COMPUTED, "damping of this mode is not computed",
-                  speed_rad_s=hold.to_rad_s)
+        rows.flag(
+            label,
+            Status.NOT_COMPUTED,
+            "damping of this mode is not computed",
+            speed_rad_s=hold.to_rad_s,
+        )
 
 
 def _flap_damping(rows: Rows, label: Labels, hold: Segment, inputs: Inputs) -> None:
@@ -191,18 +220,28 @@ def _flap_damping(rows: Rows, label: Labels, hold: Segment, inputs: Inputs) -> N
     at = [i for i, row in enumerate(air.labels) if row.segment == hold.id]
     if at and air.status[at[0]] is Status.OK:
         i = at[0]
-        rows.add(label, float(air.value[i]), low=float(air.low[i]), high=float(air.high[i]),
-                 speed_rad_s=hold.to_rad_s)
+        rows.add(
+            label,
+            float(air.value[i]),
+            low=float(air.low[i]),
+            high=float(air.high[i]),
+            speed_rad_s=hold.to_rad_s,
+        )
     else:
-        rows.flag(label, Status.NOT_COMPUTED, "flap damping from the air is not known here",
-                  speed_rad_s=hold.to_rad_s)
+        rows.flag(
+            label,
+            Status.NOT_COMPUTED,
+            "flap damping from the air is not known here",
+            speed_rad_s=hold.to_rad_s,
+        )
 
 
 def _spacing_rows(rows: Rows, track: Track, label: Labels, window: _Window) -> None:
     speed, frequency, allowance = window
     if speed.min() <= 0.0:
-        rows.flag(label, Status.NOT_APPLICABLE, "no harmonics at rest",
-                  speed_rad_s=float(speed[0]))
+        rows.flag(
+            label, Status.NOT_APPLICABLE, "no harmonics at rest", speed_rad_s=float(speed[0])
+        )
         return
     per_turn = frequency / speed
     lowest = float(per_turn.min()) * allowance[0]
@@ -210,8 +249,10 @@ def _spacing_rows(rows: Rows, track: Track, label: Labels, window: _Window) -> N
     for n in track.harmonics or range(1, GREATEST_HARMONIC + 1):
         ends = (abs(lowest / n - 1.0), abs(highest / n - 1.0))
         rows.add(
-            Labels(label.segment, label.mode, str(n)), abs(float(per_turn[0]) / n - 1.0),
-            low=0.0 if lowest <= n <= highest else min(ends), high=max(ends),
+            Labels(label.segment, label.mode, str(n)),
+            abs(float(per_turn[0]) / n - 1.0),
+            low=0.0 if lowest <= n <= highest else min(ends),
+            high=max(ends),
             speed_rad_s=float(speed[0]),
         )
 
@@ -237,14 +278,25 @@ def hand_frequency(mode: str, inputs: Inputs, speed_rad_s: float) -> float:
     spring = hub.flap_spring_N_m_rad if in_flap else hub.lag_spring_N_m_rad
     body = flap_inertia(inputs["rotor.blade"], hinge)
     inertia, first = float(body.second_moment_kg_m2), float(body.first_moment_kg_m)
-    ratio = hinge * first / inertia + spring / (inertia * speed_rad_s**2) + (1.0 if in_flap else 0.0)
+    ratio = (
+        hinge * first / inertia + spring / (inertia * speed_rad_s**2) + (1.0 if in_flap else 0.0)
+    )
     return speed_rad_s * math.sqrt(ratio)
 
 
 MODES = Study(
-    _ID, 1,
-    ("segments", "rotor.blade", "rotor.hub", "rotor.n_blades",
-     "rotor.control_stiffness_N_m_rad", "stand.modes", "stand.full_speed_rad_s",
-     "stand.speed_gauge_error_rad_s"),
-    ("holds",), run,
+    _ID,
+    1,
+    (
+        "segments",
+        "rotor.blade",
+        "rotor.hub",
+        "rotor.n_blades",
+        "rotor.control_stiffness_N_m_rad",
+        "stand.modes",
+        "stand.full_speed_rad_s",
+        "stand.speed_gauge_error_rad_s",
+    ),
+    ("holds",),
+    run,
 )

@@ -18,8 +18,13 @@ if TYPE_CHECKING:
 
 _ID = "schedule"
 _SEGMENT_QUANTITIES = (
-    "tip_speed", "tip_mach", "advancing_tip_mach", "advance_ratio",
-    "speed_step", "collective_step", "ramp_rate",
+    "tip_speed",
+    "tip_mach",
+    "advancing_tip_mach",
+    "advance_ratio",
+    "speed_step",
+    "collective_step",
+    "ramp_rate",
 )
 
 
@@ -60,24 +65,47 @@ def _tip(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
     error = inputs["stand.speed_gauge_error_rad_s"]
     label = Labels(segment=segment.id)
     top = max(segment.from_rad_s, segment.to_rad_s)
-    tips = [blade.radius_m * speed for speed in (
-        top, max(0.0, segment.lowest_rad_s - error), segment.highest_rad_s + error
-    )]
+    tips = [
+        blade.radius_m * speed
+        for speed in (top, max(0.0, segment.lowest_rad_s - error), segment.highest_rad_s + error)
+    ]
     sound, slow_sound, fast_sound = inputs.bounds("speed_of_sound")
     mean, _, gust = inputs.bounds("wind_at_hub")
     dry_sound = 20.05 * math.sqrt(site.temperature_K)
-    rows["tip_speed"].add(label, tips[0], low=tips[1], high=tips[2], speed_rad_s=top,
-                          hand=math.pi * 2.0 * blade.radius_m * (top / (2.0 * math.pi)))
-    rows["tip_mach"].add(label, tips[0] / sound, low=tips[1] / fast_sound,
-                         high=tips[2] / slow_sound, speed_rad_s=top, hand=tips[0] / dry_sound)
-    rows["advancing_tip_mach"].add(label, (tips[0] + mean) / sound, low=tips[1] / fast_sound,
-                                   high=(tips[2] + gust) / slow_sound, speed_rad_s=top)
+    rows["tip_speed"].add(
+        label,
+        tips[0],
+        low=tips[1],
+        high=tips[2],
+        speed_rad_s=top,
+        hand=math.pi * 2.0 * blade.radius_m * (top / (2.0 * math.pi)),
+    )
+    rows["tip_mach"].add(
+        label,
+        tips[0] / sound,
+        low=tips[1] / fast_sound,
+        high=tips[2] / slow_sound,
+        speed_rad_s=top,
+        hand=tips[0] / dry_sound,
+    )
+    rows["advancing_tip_mach"].add(
+        label,
+        (tips[0] + mean) / sound,
+        low=tips[1] / fast_sound,
+        high=(tips[2] + gust) / slow_sound,
+        speed_rad_s=top,
+    )
     if tips[1] > 0.0:
-        rows["advance_ratio"].add(label, mean / tips[0], low=0.0, high=gust / tips[1],
-                                  speed_rad_s=top)
+        rows["advance_ratio"].add(
+            label, mean / tips[0], low=0.0, high=gust / tips[1], speed_rad_s=top
+        )
     else:
-        rows["advance_ratio"].flag(label, Status.NOT_APPLICABLE, "the rotor comes from, goes to "
-                                   "or stays at rest: no advance ratio", speed_rad_s=top)
+        rows["advance_ratio"].flag(
+            label,
+            Status.NOT_APPLICABLE,
+            "the rotor comes from, goes to or stays at rest: no advance ratio",
+            speed_rad_s=top,
+        )
 
 
 def _ramp(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
@@ -90,13 +118,18 @@ def _ramp(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
     rows["speed_step"].add(label, rise, speed_rad_s=top)
     rows["collective_step"].add(label, more, speed_rad_s=top)
     if segment.kind == "stop" and not shutdown.powered:
-        rows["ramp_rate"].flag(label, Status.NOT_APPLICABLE,
-                               "an unpowered stop has no prescribed rate", speed_rad_s=top)
+        rows["ramp_rate"].flag(
+            label,
+            Status.NOT_APPLICABLE,
+            "an unpowered stop has no prescribed rate",
+            speed_rad_s=top,
+        )
     elif segment.duration_s > 0.0:
         rows["ramp_rate"].add(label, rate_rad_s2(segment), speed_rad_s=top)
     else:
-        rows["ramp_rate"].flag(label, Status.NOT_COMPUTED, "the ramp has no duration",
-                               speed_rad_s=top)
+        rows["ramp_rate"].flag(
+            label, Status.NOT_COMPUTED, "the ramp has no duration", speed_rad_s=top
+        )
 
 
 def rate_rad_s2(segment: Segment) -> float:
@@ -129,8 +162,9 @@ def _band(rows: Mapping[str, Rows], band: KeepOut, inputs: Inputs) -> None:
         elif _crosses(segment, band):
             _passage(rows["band_rate"], segment, label, inputs)
     if not any(_crosses(segment, band) for segment in segments if segment.kind != "hold"):
-        rows["band_rate"].flag(Labels(band=band.id), Status.NOT_APPLICABLE,
-                               "no ramp of the card enters this band")
+        rows["band_rate"].flag(
+            Labels(band=band.id), Status.NOT_APPLICABLE, "no ramp of the card enters this band"
+        )
     rows["band_time"].add(Labels(band=band.id), seconds)
 
 
@@ -138,8 +172,12 @@ def _passage(rows: Rows, segment: Segment, label: Labels, inputs: Inputs) -> Non
     shutdown: Shutdown = inputs["shutdown"]
     top = max(segment.from_rad_s, segment.to_rad_s)
     if segment.kind == "stop" and not shutdown.powered:
-        rows.flag(label, Status.NOT_COMPUTED, "an unpowered passage is judged by amplitude and "
-                  "cycles, which are not computed", speed_rad_s=top)
+        rows.flag(
+            label,
+            Status.NOT_COMPUTED,
+            "an unpowered passage is judged by amplitude and cycles, which are not computed",
+            speed_rad_s=top,
+        )
         return
     rows.add(label, rate_rad_s2(segment) / inputs["stand.full_speed_rad_s"], speed_rad_s=top)
 
@@ -165,8 +203,17 @@ def seconds_inside(segment: Segment, band: KeepOut) -> float:
 
 
 SCHEDULE = Study(
-    _ID, 1,
-    ("segments", "keep_outs", "shutdown", "site", "rotor.blade", "stand.full_speed_rad_s",
-     "stand.speed_gauge_error_rad_s"),
-    ("air",), run,
+    _ID,
+    1,
+    (
+        "segments",
+        "keep_outs",
+        "shutdown",
+        "site",
+        "rotor.blade",
+        "stand.full_speed_rad_s",
+        "stand.speed_gauge_error_rad_s",
+    ),
+    ("air",),
+    run,
 )

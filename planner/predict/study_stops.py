@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 from itertools import product
 from typing import TYPE_CHECKING
 
@@ -25,7 +26,7 @@ if TYPE_CHECKING:
 
     from planner.model.plan import Segment
     from planner.model.results import Prediction
-    from planner.model.rotor import Rotor
+    from planner.model.rotor import Rotor, Stop
     from planner.predict.cases import Air
     from planner.rotor.case import Cases
 
@@ -43,19 +44,16 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
             filled.flag(Labels(), Status.NOT_APPLICABLE, "the hub has no droop stop")
     else:
         air, arrays = air_of(inputs), rotor_arrays(rotor, STATIONS)
-        _rest_moment(rows["droop_stop_rest_moment"], inputs, arrays, air)
-        _lift_off(rows, inputs, arrays, air)
+        _rest_moment(rows["droop_stop_rest_moment"], inputs, arrays, (air, rotor.droop_stop))
+        _lift_off(rows, inputs, arrays, (air, rotor.droop_stop))
     return {quantity: filled.prediction() for quantity, filled in rows.items()}
 
 
-def _cases(points: Sequence[Point], inputs: Inputs, air: Air) -> Cases:
+def _cases(points: Sequence[Point], inputs: Inputs, air: Air, droop: Stop) -> Cases:
     """Cases at the static stop angle, whatever their speed."""
     rotor: Rotor = inputs["rotor"]
-    cases = to_cases(points, (rotor.droop_stop, rotor.up_stop), inputs["stand.mounting"],
-                     air.sound_m_s)
-    assert rotor.droop_stop is not None, "only called for hubs with a droop stop"
-    cases.droop_angle_rad[:] = rotor.droop_stop.angle_rad
-    return cases
+    static = replace(droop, retraction=None)
+    return to_cases(points, (static, rotor.up_stop), inputs["stand.mounting"], air.sound_m_s)
 
 
 def _points(pitches: Sequence[float], winds: Sequence[float], air: Air) -> list[Point]:
@@ -75,11 +73,12 @@ def pitches_at_rest(segments: Sequence[Segment]) -> list[float]:
     return sorted(starting | ending)
 
 
-def _rest_moment(rows: Rows, inputs: Inputs, arrays: RotorArrays, air: Air) -> None:
+def _rest_moment(rows: Rows, inputs: Inputs, arrays: RotorArrays, known: tuple[Air, Stop]) -> None:
+    air, droop = known
     pitches = pitches_at_rest(inputs["segments"])
     points = _points(pitches[:1], [0.0], air)[:1]
     points += _points(pitches, sorted({air.wind_m_s, air.gust_m_s}), air)
-    result = trim(arrays, _cases(points, inputs, air))
+    result = trim(arrays, _cases(points, inputs, air, droop))
     moments = result.stop_moment_N_m
     numbers = (float(moments[0]), float(np.min(moments)), float(np.max(moments)))
     if inputs["stand.mounting"] == "axis level" and air.gust_m_s > 0.0:
@@ -87,25 +86,41 @@ def _rest_moment(rows: Rows, inputs: Inputs, arrays: RotorArrays, air: Air) -> N
     elif not np.all(result.converged):
         rows.flag(Labels(), Status.NOT_CONVERGED, "no rest position of the parked blades found")
     elif not arrays.hub.pair and np.any(result.state != FlapState.RESTING):
-        rows.flag(Labels(), Status.OUTSIDE_VALIDITY, "this wind lifts a parked blade off its "
-                  "droop stop; how it falls back is not predicted", numbers=numbers)
+        rows.flag(
+            Labels(),
+            Status.OUTSIDE_VALIDITY,
+            "this wind lifts a parked blade off its "
+            "droop stop; how it falls back is not predicted",
+            numbers=numbers,
+        )
     else:
-        rows.add(Labels(), numbers[0], low=numbers[1], high=numbers[2],
-                 hand=_hand_rest_moment(inputs, arrays))
+        rows.add(
+            Labels(),
+            numbers[0],
+            low=numbers[1],
+            high=numbers[2],
+            hand=_hand_rest_moment(inputs, arrays),
+        )
 
 
 def _hand_rest_moment(inputs: Inputs, arrays: RotorArrays) -> float:
     rotor: Rotor = inputs["rotor"]
     if arrays.hub.pair or inputs["stand.mounting"] != "upright" or rotor.droop_stop is None:
         return math.nan
-    hinge = FlapHinge(arrays.flap_inertia_kg_m2, arrays.first_moment_kg_m, arrays.hub.hinge_m,
-                      arrays.hub.spring_N_m_rad, arrays.hub.spring_neutral_rad)
+    hinge = FlapHinge(
+        arrays.flap_inertia_kg_m2,
+        arrays.first_moment_kg_m,
+        arrays.hub.hinge_m,
+        arrays.hub.spring_N_m_rad,
+        arrays.hub.spring_neutral_rad,
+    )
     return float(resting_stop_moment_n_m(hinge, rotor.droop_stop.angle_rad))
 
 
 def _lift_off(
-    rows: Mapping[str, Rows], inputs: Inputs, arrays: RotorArrays, air: Air
+    rows: Mapping[str, Rows], inputs: Inputs, arrays: RotorArrays, known: tuple[Air, Stop]
 ) -> None:
+    air, droop = known
     segments: Sequence[Segment] = inputs["segments"]
     top = max(s.highest_rad_s for s in segments) + inputs["stand.speed_gauge_error_rad_s"]
     pitches = pitches_at_rest(segments)
@@ -113,21 +128,28 @@ def _lift_off(
         ("lift_off_speed_still_air", [0.0], still_air_lift_off),
         ("lift_off_speed_in_wind", sorted({air.wind_m_s, air.gust_m_s}), lift_off_in_wind),
     ):
-        cases = _cases(_points(pitches, winds, air), inputs, air)
+        cases = _cases(_points(pitches, winds, air), inputs, air, droop)
         found = search(arrays, cases, np.full(cases.count, top))
         speeds = found.speed_rad_s
         if inputs["stand.mounting"] == "axis level" and winds[-1] > 0.0:
             rows[quantity].flag(Labels(), Status.OUTSIDE_VALIDITY, _LEVEL)
         elif not np.all(found.is_found):
-            rows[quantity].flag(Labels(), Status.NOT_CONVERGED, "no speed was found up to the "
-                                "card's highest at which the blades leave the droop stop")
+            rows[quantity].flag(
+                Labels(),
+                Status.NOT_CONVERGED,
+                "no speed was found up to the "
+                "card's highest at which the blades leave the droop stop",
+            )
         else:
-            rows[quantity].add(Labels(), float(speeds[0]), low=float(speeds.min()),
-                               high=float(speeds.max()))
+            rows[quantity].add(
+                Labels(), float(speeds[0]), low=float(speeds.min()), high=float(speeds.max())
+            )
 
 
 STOPS = Study(
-    _ID, 1,
+    _ID,
+    1,
     ("segments", "rotor", "stand.mounting", "stand.speed_gauge_error_rad_s"),
-    ("air",), run,
+    ("air",),
+    run,
 )

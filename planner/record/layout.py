@@ -44,9 +44,22 @@ if TYPE_CHECKING:
 
 LAYOUT = 1
 REQUIRED = (
-    "layout", "made_by", "files", "files_digest", "meaning_digest", "plan", "segments",
-    "vocabulary", "predictions", "references", "series", "findings", "coverage", "verdict",
-    "segment_verdicts", "content_digest",
+    "layout",
+    "made_by",
+    "files",
+    "files_digest",
+    "meaning_digest",
+    "plan",
+    "segments",
+    "vocabulary",
+    "predictions",
+    "references",
+    "series",
+    "findings",
+    "coverage",
+    "verdict",
+    "segment_verdicts",
+    "content_digest",
 )
 
 
@@ -82,9 +95,7 @@ def build(
         "segments": plain(walk),
         "vocabulary": plain(list(REGISTER.values())),
         "predictions": {key: rows_of(prediction) for key, prediction in predictions.items()},
-        "references": plain(
-            reference_table(plan, predictions, plan.stand.full_speed_rad_s)
-        ),
+        "references": plain(reference_table(plan, predictions, plan.stand.full_speed_rad_s)),
         "series": plain(series(plan, walk, predictions, wanted)),
         "findings": plain(judgement.findings),
         "coverage": plain(judgement.coverage),
@@ -108,13 +119,27 @@ def rows_of(prediction: Prediction) -> dict[str, Any]:
     """One prediction in the record's form."""
     rows = [
         {
-            "segment": label.segment, "mode": label.mode, "harmonic": label.harmonic,
-            "band": label.band, "value": value, "low": low, "high": high,
-            "status": status.value, "reason": reason, "speed_rad_s": speed, "hand": hand,
+            "segment": label.segment,
+            "mode": label.mode,
+            "harmonic": label.harmonic,
+            "band": label.band,
+            "value": value,
+            "low": low,
+            "high": high,
+            "status": status.value,
+            "reason": reason,
+            "speed_rad_s": speed,
+            "hand": hand,
         }
         for label, value, low, high, status, reason, speed, hand in zip(
-            prediction.labels, prediction.value, prediction.low, prediction.high,
-            prediction.status, prediction.reasons, prediction.speed_rad_s, prediction.hand,
+            prediction.labels,
+            prediction.value,
+            prediction.low,
+            prediction.high,
+            prediction.status,
+            prediction.reasons,
+            prediction.speed_rad_s,
+            prediction.hand,
             strict=True,
         )
     ]

@@ -7,9 +7,9 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from planner.methods.beam import BladeBeam, Root, flap_matrices
+from planner.methods.beam import Root, flap_matrices
 from planner.methods.beam_modes import equivalent_hinge, frequencies
-from planner.methods.blade_inertia import MassDistribution, blade_inertia
+from planner.methods.blade_inertia import blade_inertia
 from planner.methods.section_lookup import StationSections, station_tables
 from planner.methods.sections import (
     NACA_0012_DIVERGENCE_MACH,
@@ -21,6 +21,7 @@ from planner.methods.sections import (
 )
 from planner.methods.stall import Continuation
 from planner.model.rotor import ArticulatedHub, HingelessHub, SymmetricSection, TeeteringHub
+from planner.rotor.blade_views import beam, mass_distribution
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -140,7 +141,7 @@ def rotor_arrays(rotor: Rotor, n_stations: int = STATIONS) -> RotorArrays:
     chord = np.interp(radius, table.radius_m, table.chord_m)
     reference = np.interp(blade.collective_radius_m, table.radius_m, table.twist_rad)
     hub = hub_freedom(rotor)
-    about = blade_inertia(_distribution(blade), hub.hinge_m)
+    about = blade_inertia(mass_distribution(blade), hub.hinge_m)
     mean_chord = np.sum(width * chord * radius**2) / np.sum(width * radius**2)
     return RotorArrays(
         n_blades=rotor.n_blades,
@@ -217,33 +218,13 @@ def hub_freedom(rotor: Rotor) -> HubFreedom:
 def _equivalent_hinge(rotor: Rotor, hub: HingelessHub) -> tuple[float, float]:
     if hub.equivalent_hinge_m is not None and hub.equivalent_spring_N_m_rad is not None:
         return hub.equivalent_hinge_m, hub.equivalent_spring_N_m_rad
-    table = rotor.blade.stations
-    distribution = _distribution(rotor.blade)
-    beam = BladeBeam(
-        radius_m=table.radius_m,
-        mass_kg_m=table.mass_kg_m,
-        flap_stiffness_N_m2=table.flap_stiffness_N_m2,
-        lag_stiffness_N_m2=table.lag_stiffness_N_m2,
-        torsion_stiffness_N_m2=table.torsion_stiffness_N_m2,
-        pitch_inertia_kg_m=table.pitch_inertia_kg_m,
-        point_radius_m=distribution.point_radius_m,
-        point_mass_kg=distribution.point_mass_kg,
-    )
     reference = rotor.design_maximum_rad_s
-    matrices = flap_matrices(beam, Root(hub.root_m))
+    matrices = flap_matrices(beam(rotor.blade), Root(hub.root_m))
     rest, turning = frequencies(matrices, np.array([0.0, reference]), n_modes=1)[:, 0]
-    found = equivalent_hinge(distribution, hub.root_m, reference, float(rest), float(turning))
-    return found.radius_m, found.spring_N_m_rad
-
-
-def _distribution(blade: Blade) -> MassDistribution:
-    points = sorted(blade.point_masses, key=lambda point: point.radius_m)
-    return MassDistribution(
-        radius_m=blade.stations.radius_m,
-        mass_kg_m=blade.stations.mass_kg_m,
-        point_radius_m=np.array([point.radius_m for point in points], dtype=np.float64),
-        point_mass_kg=np.array([point.mass_kg for point in points], dtype=np.float64),
+    found = equivalent_hinge(
+        mass_distribution(rotor.blade), hub.root_m, reference, float(rest), float(turning)
     )
+    return found.radius_m, found.spring_N_m_rad
 
 
 def _station_sections(blade: Blade, radius_m: FloatArray) -> StationSections:

@@ -1,7 +1,7 @@
 """Whole ``whirlcard card`` in a fresh process, as a multiple of its libraries' own cost.
 
-The yardstick, also in a fresh process: import numpy, scipy.linalg, reportlab and typer and write an
-empty six-page PDF. Both in turn, CPU seconds, medians.
+The yardstick, also in a fresh process: import numpy, scipy.linalg, reportlab and typer and write
+an empty six-page PDF. Both in turn, CPU seconds, medians.
 
 Run: python tests/bench/bench_card.py [runs]
 """
@@ -37,8 +37,13 @@ def main(runs: int) -> None:
     with tempfile.TemporaryDirectory() as folder:
         yardstick = [sys.executable, "-c", YARDSTICK.format(target=f"{folder}/empty.pdf")]
         card = [
-            sys.executable, "-c", "from planner.cli import run; run()", "card",
-            str(ROOT / "sample_plans" / "articulated-run-up"), "--out", f"{folder}/card.pdf",
+            sys.executable,
+            "-c",
+            "from planner.cli import run; run()",
+            "card",
+            str(ROOT / "sample_plans" / "articulated-run-up"),
+            "--out",
+            f"{folder}/card.pdf",
         ]
         pairs = [(cpu_seconds(yardstick), cpu_seconds(card)) for _ in range(runs + 1)][1:]
     base = statistics.median(pair[0] for pair in pairs)

@@ -31,7 +31,10 @@ def whirlcard(*arguments: object, cwd: pathlib.Path | None = None, **environment
     code = "from planner.cli import run; run()"
     return subprocess.run(
         [sys.executable, "-c", code, *(str(argument) for argument in arguments)],
-        capture_output=True, text=True, cwd=cwd, check=False,
+        capture_output=True,
+        text=True,
+        cwd=cwd,
+        check=False,
         env={**os.environ, **environment},
     )
 
@@ -105,8 +108,12 @@ def test_start_writes_a_folder_that_runs_as_it_is(tmp_path):
 @pytest.mark.parametrize(
     ("file", "old", "new", "message"),
     [
-        ("plan.toml", 'rpm = "25 % rpm"', "rpm = 90",
-         'plan.toml:137:7: block[1].step[1].rpm: expected'),
+        (
+            "plan.toml",
+            'rpm = "25 % rpm"',
+            "rpm = 90",
+            "plan.toml:137:7: block[1].step[1].rpm: expected",
+        ),
         ("plan.toml", "temperature = ", "temprature = ", "did you mean"),
         ("rotor.toml", 'radius = "5.6 m"', 'radius = "5.6 kg"', "rotor.toml:5:"),
         ("rotor.toml", 'angle = "16 deg"', 'angle = "-9 deg"', "rotor.toml:"),
@@ -114,7 +121,9 @@ def test_start_writes_a_folder_that_runs_as_it_is(tmp_path):
         ("blade.csv", "0.35, 0.12", "0.15, 0.12", "blade.csv:5:"),
     ],
 )
-def test_broken_input_names_the_place_and_writes_nothing(folder, tmp_path, file, old, new, message):
+def test_broken_input_names_the_place_and_writes_nothing(
+    folder, tmp_path, file, old, new, message
+):
     path = folder / file
     text = path.read_text()
     assert text.count(old) >= 1
@@ -129,8 +138,11 @@ def test_broken_input_names_the_place_and_writes_nothing(folder, tmp_path, file,
 
 
 def test_faults_of_all_files_come_at_once(folder):
-    for file, old in (("plan.toml", "temperature_spread"), ("rotor.toml", "proven_speed"),
-                      ("stand.toml", "hub_height")):
+    for file, old in (
+        ("plan.toml", "temperature_spread"),
+        ("rotor.toml", "proven_speed"),
+        ("stand.toml", "hub_height"),
+    ):
         path = folder / file
         path.write_text(path.read_text().replace(old, "x" + old, 1))
     result = call("check", folder)
@@ -198,5 +210,7 @@ def test_help_loads_no_heavy_library():
         "except SystemExit: pass\n"
         "print([m for m in ('numpy','scipy','reportlab') if m in sys.modules])"
     )
-    result = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
+    result = subprocess.run(
+        [sys.executable, "-c", code], capture_output=True, text=True, check=True
+    )
     assert result.stdout.strip().endswith("[]")

@@ -71,9 +71,7 @@ def sample_record(n_steps: int = 12, verdict: str = "CAUTION") -> Json:
         "findings": findings,
         "coverage": _coverage(),
         "verdict": verdict,
-        "segment_verdicts": {
-            s.id: "NOT ASSESSED" if _is_open(s, verdict) else "GO" for s in walk
-        },
+        "segment_verdicts": {s.id: "NOT ASSESSED" if _is_open(s, verdict) else "GO" for s in walk},
     }
     out: Json = plain(record)
     return out
@@ -153,8 +151,13 @@ def _rotor() -> Rotor:
         5.0, 0.9, 3.75, stations, (PointMass("tip weight", 4.9, 0.5),),
         (SectionSpan(section, 0.9, 5.0),), ("A-101", "A-102", "A-103", "A-104"),
     )  # fmt: skip
-    droop = Stop(to_si(-4.0, "deg"), 5e5, 1e3, 4000.0,
-                 Retraction(to_si(130.0, "rpm"), to_si(110.0, "rpm"), to_si(-7.0, "deg")))
+    droop = Stop(
+        to_si(-4.0, "deg"),
+        5e5,
+        1e3,
+        4000.0,
+        Retraction(to_si(130.0, "rpm"), to_si(110.0, "rpm"), to_si(-7.0, "deg")),
+    )
     up = Stop(to_si(20.0, "deg"), 5e5, 1e3, 4000.0)
     hub = ArticulatedHub(0.2, 0.35, 0.0, 0.0, 0.0, 0.0, 900.0, to_si(10.0, "deg"), 0.0)
     return Rotor("Invented rotor R-4", 4, False, blade, hub, droop, up, 2e4,  # noqa: FBT003
@@ -179,28 +182,70 @@ def _stand() -> Stand:
 def _book() -> RuleBook:
     practice = "common practice"
     predicted = [
-        _rule("droop-gap", "stops", "Clearance to the droop stop", "droop_stop_clearance",
-              "at least", Limit(constant=to_si(2.0, "deg")), channel="blade flap 1 to 4"),
-        _rule("up-gap", "stops", "Clearance to the up stop", "up_stop_clearance", "at least",
-              Limit(share=0.2, reference="flap_travel"), channel="blade flap 1 to 4"),
-        _rule("thrust", "loads", "Thrust on the stand", "thrust", "at most",
-              Limit(share=0.95, reference="stand_thrust_rating"), channel="load cell sum"),
-        _rule("torque", "loads", "Shaft torque", "torque", "at most",
-              Limit(table=((0.0, 7000.0), (FULL_SPEED, 8500.0))), channel="torque meter"),
+        _rule(
+            "droop-gap",
+            "stops",
+            "Clearance to the droop stop",
+            "droop_stop_clearance",
+            "at least",
+            Limit(constant=to_si(2.0, "deg")),
+            channel="blade flap 1 to 4",
+        ),
+        _rule(
+            "up-gap",
+            "stops",
+            "Clearance to the up stop",
+            "up_stop_clearance",
+            "at least",
+            Limit(share=0.2, reference="flap_travel"),
+            channel="blade flap 1 to 4",
+        ),
+        _rule(
+            "thrust",
+            "loads",
+            "Thrust on the stand",
+            "thrust",
+            "at most",
+            Limit(share=0.95, reference="stand_thrust_rating"),
+            channel="load cell sum",
+        ),
+        _rule(
+            "torque",
+            "loads",
+            "Shaft torque",
+            "torque",
+            "at most",
+            Limit(table=((0.0, 7000.0), (FULL_SPEED, 8500.0))),
+            channel="torque meter",
+        ),
         _rule("power", "loads", "Drive power", "power", "at most", Limit(constant=3.8e5)),
-        _rule("spacing", "resonance", "Flap modes away from whole harmonics",
-              "harmonic_spacing", "at least", Limit(constant=0.1)),
-        _rule("rate", "resonance", "Passage through keep-out bands", "band_rate", "at least",
-              Limit(constant=0.01)),
+        _rule(
+            "spacing",
+            "resonance",
+            "Flap modes away from whole harmonics",
+            "harmonic_spacing",
+            "at least",
+            Limit(constant=0.1),
+        ),
+        _rule(
+            "rate",
+            "resonance",
+            "Passage through keep-out bands",
+            "band_rate",
+            "at least",
+            Limit(constant=0.01),
+        ),
     ]
     confirmed = [
         Rule(f"confirm-{i}", "confirmed", "people", title, "", practice, ("run",), when=when)
-        for i, (title, when) in enumerate((
-            ("Emergency stop and trip tested", "run day, before the first start"),
-            ("Head count done, zone closed and locked", "before every start"),
-            ("Rotor lock and lockout removed, signed off", "before every start"),
-            ("No lightning within 30 min", "before every block"),
-        ))
+        for i, (title, when) in enumerate(
+            (
+                ("Emergency stop and trip tested", "run day, before the first start"),
+                ("Head count done, zone closed and locked", "before every start"),
+                ("Rotor lock and lockout removed, signed off", "before every start"),
+                ("No lightning within 30 min", "before every block"),
+            )
+        )
     ]
     watched = [
         Rule("vibration", "watched", "loads", "Stand vibration", "", practice, ("run",),

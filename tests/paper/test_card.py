@@ -156,9 +156,7 @@ def test_every_row_is_placed_once_and_inside_the_page(n_steps: int, paper: str) 
     assert rows == [*expected, "end"]
 
 
-@pytest.mark.parametrize(
-    ("paper", "size"), [("a4", (841.89, 595.28)), ("letter", (792.0, 612.0))]
-)
+@pytest.mark.parametrize(("paper", "size"), [("a4", (841.89, 595.28)), ("letter", (792.0, 612.0))])
 def test_sheets_are_of_the_asked_size_and_none_is_empty(
     paper: str, size: tuple[float, float]
 ) -> None:

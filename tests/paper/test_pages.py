@@ -37,9 +37,7 @@ def text_of(row: TableRow) -> str:
     st.lists(st.tuples(st.integers(0, 260), st.booleans()), min_size=1, max_size=40),
     st.integers(0, 5),
 )
-def test_rows_stay_whole_in_order_under_a_head(
-    sizes: list[tuple[int, bool]], most: int
-) -> None:
+def test_rows_stay_whole_in_order_under_a_head(sizes: list[tuple[int, bool]], most: int) -> None:
     table = Table(WIDTHS, ("Row", "Text"), most_rows=most)
     rows = [
         Row((Cell(f"#{i}"), Cell("word " * (n // 5))), keep_next=tied)

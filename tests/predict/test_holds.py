@@ -12,7 +12,8 @@ from planner.model.plan import Cyclic
 from planner.model.results import Status
 from planner.model.rules import Allowance
 from planner.predict import solving
-from planner.rotor.trim import FlapState
+from planner.rotor.result import FlapState
+from planner.rotor.trim import trim
 
 DEGREE = math.pi / 180.0
 
@@ -45,7 +46,7 @@ def short(articulated):
 
 def change_trim(monkeypatch, change):
     """Let every trim come back changed."""
-    real = solving.trim
+    real = trim
     monkeypatch.setattr(solving, "trim", lambda *arguments: change(real(*arguments)))
 
 
@@ -59,10 +60,13 @@ def test_gust_is_not_trimmed_out(short, run_predict):
 
 def test_low_lift_takes_the_stop_margin_and_high_lift_the_thrust(short, run_predict):
     found = run_predict(short)
-    strict = with_book(short, allowances=tuple(
-        Allowance("air_load", 1.0, 1.0, "test") if a.id == "air_load" else a
-        for a in short.rule_book.allowances
-    ))
+    strict = with_book(
+        short,
+        allowances=tuple(
+            Allowance("air_load", 1.0, 1.0, "test") if a.id == "air_load" else a
+            for a in short.rule_book.allowances
+        ),
+    )
     exact = run_predict(strict)
     i = row(found["thrust"], "1.2h")
     assert found["droop_stop_clearance"].low[i] < exact["droop_stop_clearance"].low[i]
@@ -96,9 +100,7 @@ def test_ramp_from_rest_without_wind_is_assessed(short, run_predict):
 def test_ramp_wholly_below_the_release_speed_is_outside_validity(short, run_predict):
     stop = short.rotor.droop_stop
     late = dataclasses.replace(stop.retraction, release_rad_s=12.0, reseat_rad_s=8.0)
-    rotor = dataclasses.replace(
-        short.rotor, droop_stop=dataclasses.replace(stop, retraction=late)
-    )
+    rotor = dataclasses.replace(short.rotor, droop_stop=dataclasses.replace(stop, retraction=late))
     found = run_predict(dataclasses.replace(short, rotor=rotor))
     i = row(found["thrust"], "1.1r")
     assert found["thrust"].status[i] is Status.OUTSIDE_VALIDITY
@@ -129,9 +131,12 @@ def test_unconverged_states_are_told(short, run_predict, monkeypatch):
 
 
 def test_work_beyond_the_section_data_is_told(short, run_predict, monkeypatch):
-    change_trim(monkeypatch, lambda result: dataclasses.replace(
-        result, outside_sections=np.ones_like(result.outside_sections)
-    ))
+    change_trim(
+        monkeypatch,
+        lambda result: dataclasses.replace(
+            result, outside_sections=np.ones_like(result.outside_sections)
+        ),
+    )
     found = run_predict(short)
     for quantity in ("thrust", "torque", "flap_lowest"):
         i = row(found[quantity], "1.2h")
@@ -140,9 +145,12 @@ def test_work_beyond_the_section_data_is_told(short, run_predict, monkeypatch):
 
 
 def test_contact_in_part_of_a_turn_is_told(short, run_predict, monkeypatch):
-    change_trim(monkeypatch, lambda result: dataclasses.replace(
-        result, state=np.full_like(result.state, int(FlapState.INTERMITTENT))
-    ))
+    change_trim(
+        monkeypatch,
+        lambda result: dataclasses.replace(
+            result, state=np.full_like(result.state, int(FlapState.INTERMITTENT))
+        ),
+    )
     found = run_predict(short)
     for quantity in ("flap_lowest", "droop_stop_moment", "hub_moment"):
         i = row(found[quantity], "1.2h")
@@ -173,13 +181,17 @@ def test_level_axis_in_wind_is_outside_validity(short, run_predict):
 
 @pytest.mark.parametrize(
     ("allowance", "quantity"),
-    [("air_load", "thrust"), ("torque", "torque"), ("torque", "power"),
-     ("frequency", "harmonic_spacing")],
+    [
+        ("air_load", "thrust"),
+        ("torque", "torque"),
+        ("torque", "power"),
+        ("frequency", "harmonic_spacing"),
+    ],
 )
 def test_missing_allowance_leaves_nothing_assessed(short, run_predict, allowance, quantity):
-    plan = with_book(short, allowances=tuple(
-        a for a in short.rule_book.allowances if a.id != allowance
-    ))
+    plan = with_book(
+        short, allowances=tuple(a for a in short.rule_book.allowances if a.id != allowance)
+    )
     found = run_predict(plan)[quantity]
     assert Status.OK not in found.status
     assert any(f"allowance '{allowance}'" in reason for reason in found.reasons)
@@ -193,16 +205,17 @@ def test_hub_without_stops_says_that_stop_numbers_do_not_apply(predicted):
 
 
 def test_cyclic_beyond_authority_reads_above_one(short, run_predict):
-    weak = dataclasses.replace(short, rotor=dataclasses.replace(
-        short.rotor, cyclic_authority_rad=0.05 * DEGREE
-    ))
+    weak = dataclasses.replace(
+        short, rotor=dataclasses.replace(short.rotor, cyclic_authority_rad=0.05 * DEGREE)
+    )
     found = run_predict(weak)["cyclic_needed"]
     assert found.high[row(found, "1.2h")] > 1.0
 
 
 def test_parked_hold_is_legal_and_keeps_the_worst_azimuth(short, run_predict):
-    step = dataclasses.replace(short.blocks[0].steps[0], speed_rad_s=0.0,
-                               cyclic=Cyclic(trimmed=False))
+    step = dataclasses.replace(
+        short.blocks[0].steps[0], speed_rad_s=0.0, cyclic=Cyclic(trimmed=False)
+    )
     block = dataclasses.replace(short.blocks[0], steps=(step, *short.blocks[0].steps))
     plan = with_site(dataclasses.replace(short, blocks=(block,)), wind_gust_m_s=12.0)
     found = run_predict(plan)
@@ -221,9 +234,9 @@ def test_parked_in_still_air_carries_the_weight_alone(short, run_predict):
 
 def test_speed_of_the_wind_lifts_the_lift_off_speed(articulated, run_predict):
     speeds = [
-        run_predict(first_steps(with_site(
-            articulated, wind_mean_m_s=gust / 2.0, wind_gust_m_s=gust
-        ), 1))["lift_off_speed_in_wind"].high[0]
+        run_predict(
+            first_steps(with_site(articulated, wind_mean_m_s=gust / 2.0, wind_gust_m_s=gust), 1)
+        )["lift_off_speed_in_wind"].high[0]
         for gust in (0.0, 6.0, 12.0)
     ]
     assert speeds == sorted(speeds)

@@ -15,17 +15,20 @@ from planner.units import dimension_of
 def test_entries_say_all_there_is_to_say(quantity):
     assert quantity.danger in {"high", "low", "both", "none"}
     assert quantity.study in {study.id for study in STUDIES}
-    for text in (quantity.name, quantity.method, quantity.validity, quantity.source,
-                 quantity.hand_check):
+    for text in (
+        quantity.name,
+        quantity.method,
+        quantity.validity,
+        quantity.source,
+        quantity.hand_check,
+    ):
         assert text.strip()
     if quantity.unit:
         dimension_of(quantity.unit)
     assert quantity.allowance in {"", "air_load", "torque", "frequency"}
 
 
-@pytest.mark.parametrize(
-    "name", ["articulated-run-up", "hingeless-model", "teetering-pair"]
-)
+@pytest.mark.parametrize("name", ["articulated-run-up", "hingeless-model", "teetering-pair"])
 @pytest.mark.parametrize("quantity", REGISTER.values(), ids=lambda q: q.id)
 def test_every_quantity_is_filled_by_its_study(predicted, name, quantity):
     found = predicted(name)[quantity.id]

@@ -22,7 +22,7 @@ FILES = [("plan.toml", "0" * 64)]
 
 
 @pytest.fixture(scope="module")
-def record(request):
+def record():
     from tests.conftest import _sample  # noqa: PLC0415
 
     return build(_sample("articulated-run-up"), FILES)
