@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from functools import cache, lru_cache
 from typing import TYPE_CHECKING
 
-from planner.paper.texts import FONT_FILES, FONT_FOLDER, printable
+from planner.paper.texts import FONT_FILES, printable, shipped_fonts
 
 if TYPE_CHECKING:
     from reportlab.pdfgen.canvas import Canvas
@@ -37,25 +37,14 @@ REFERENCE = Face(PLAIN, 9.0, 11.5)
 
 
 @cache
-def register_fonts() -> dict[str, dict[int, float]]:
-    """Make the shipped fonts known to the PDF library, once.
-
-    Returns:
-        For each font, the width of each character in thousandths of the size.
-    """
-    from reportlab.pdfbase import pdfmetrics, ttfonts  # noqa: PLC0415  # only printing pays
-
-    widths: dict[str, dict[int, float]] = {}
-    for name, file in FONT_FILES.items():
-        font = ttfonts.TTFont(name, str(FONT_FOLDER / file))
-        pdfmetrics.registerFont(font)
-        widths[name] = font.face.charWidths
-    return widths
+def character_widths() -> dict[str, dict[int, float]]:
+    """For each font, the width of each character in thousandths of the size."""
+    return {name: font.face.charWidths for name, font in shipped_fonts().items()}
 
 
 def width_of(text: str, face: Face) -> float:
     """Measure one line of text in points."""
-    widths = register_fonts()[face.font]
+    widths = character_widths()[face.font]
     return sum(widths[ord(character)] for character in text) * face.size / 1000.0
 
 

@@ -7,9 +7,9 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from planner.paper.boxes import Box, Gap, NewPage
-from planner.paper.ink import BODY, REFERENCE, clipped, draw_lines, register_fonts, width_of
+from planner.paper.ink import BODY, REFERENCE, clipped, draw_lines, width_of
 from planner.paper.tables import Table, TableRow
-from planner.paper.texts import printable
+from planner.paper.texts import printable, shipped_fonts
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -221,7 +221,7 @@ def render(pages: list[Page], frame: Frame, banner: Banner) -> bytes:
     """Draw pages into a PDF whose bytes depend on nothing but the arguments."""
     from reportlab.pdfgen.canvas import Canvas  # noqa: PLC0415  # only printing pays
 
-    register_fonts()
+    shipped_fonts()
     stream = io.BytesIO()
     size = (frame.page_width, frame.page_height)
     canvas = Canvas(stream, pagesize=size, invariant=1, pageCompression=1, lang="en-GB")

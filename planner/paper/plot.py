@@ -6,7 +6,8 @@ import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Literal
 
-from planner.paper.ink import REFERENCE, Face, clipped, register_fonts, width_of
+from planner.paper.ink import REFERENCE, Face, clipped, width_of
+from planner.paper.texts import shipped_fonts
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -72,7 +73,7 @@ class Plot:
         """Take a drawing and the area on it."""
         from reportlab.graphics import shapes  # noqa: PLC0415  # only charts pay
 
-        register_fonts()
+        shipped_fonts()
         self.drawing = drawing
         self.area = area
         self.shapes = shapes

@@ -6,10 +6,13 @@ import math
 import unicodedata
 from functools import cache
 from pathlib import Path
-from typing import Literal
+from typing import TYPE_CHECKING, Literal
 from xml.sax.saxutils import escape as _escape_markup
 
 from planner.units import from_si
+
+if TYPE_CHECKING:
+    from reportlab.pdfbase.ttfonts import TTFont
 
 Rounding = Literal["up", "down", "nearest"]
 
@@ -228,10 +231,21 @@ def _prints(character: str) -> bool:
 
 
 @cache
-def _font_characters() -> frozenset[int]:
-    from reportlab.pdfbase.ttfonts import TTFontFile  # noqa: PLC0415  # slow to load, rarely used
+def shipped_fonts() -> dict[str, TTFont]:
+    """Read the shipped fonts and make them known to the PDF library, once."""
+    from reportlab.pdfbase import pdfmetrics, ttfonts  # noqa: PLC0415  # slow, only printing pays
 
-    tables = [TTFontFile(str(FONT_FOLDER / name)).charToGlyph for name in FONT_FILES.values()]
+    fonts = {
+        name: ttfonts.TTFont(name, str(FONT_FOLDER / file)) for name, file in FONT_FILES.items()
+    }
+    for font in fonts.values():
+        pdfmetrics.registerFont(font)
+    return fonts
+
+
+@cache
+def _font_characters() -> frozenset[int]:
+    tables = [font.face.charToGlyph for font in shipped_fonts().values()]
     return frozenset(tables[0]).intersection(*tables[1:])
 
 
