@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import math
 import re
+from abc import ABC, abstractmethod
 from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any, NamedTuple, NoReturn
@@ -60,19 +61,19 @@ def refuse(expected: str, found: str, mend: str) -> NoReturn:
     )
 
 
-class Leaf:
+class Leaf(ABC):
     """Base of all kinds of values: hooks into pydantic, and stands aside for unknown values."""
 
     blank: Any = None
     """What an unknown value becomes; comparisons with it find no fault."""
 
+    @abstractmethod
     def read(self, value: object, printable: Printable | None) -> object:
         """Return the value to keep, or refuse it."""
-        raise NotImplementedError
 
+    @abstractmethod
     def json_schema(self) -> dict[str, Any]:
         """Describe the accepted values to an editor."""
-        raise NotImplementedError
 
     def __get_pydantic_core_schema__(
         self, _source: object, _handler: object

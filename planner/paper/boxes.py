@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from abc import ABC, abstractmethod
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
@@ -20,19 +21,19 @@ _ROUNDING = 1e-6
 
 
 @dataclass(frozen=True)
-class Box:
+class Box(ABC):
     """One thing on a page; ``keep_next`` ties it to the page of the box after it."""
 
     keep_next: bool
 
     @property
+    @abstractmethod
     def height(self) -> float:
         """Height in points."""
-        raise NotImplementedError
 
+    @abstractmethod
     def draw(self, canvas: Canvas, left: float, top: float) -> None:
         """Draw with the given upper left corner."""
-        raise NotImplementedError
 
     def split(self, room: float) -> tuple[Box, Box] | None:  # noqa: ARG002  # most cannot
         """Divide into a part that fits the room and the rest, where that can be done."""

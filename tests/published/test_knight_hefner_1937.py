@@ -1,6 +1,6 @@
 """Knight, Hefner: Static Thrust Analysis of the Lifting Airscrew, NACA TN 626, 1937, Table IV.
 
-Read second hand: a public transcription of the table, halved to CT = T / (rho A (Omega R)^2). The
+Read second hand: a public copy of the table, halved to CT = T / (rho A (Omega R)^2). The
 section law is quoted with the data. Five untwisted blades, R / c = 15, 960 rpm.
 
 Plain theory with tip and root loss against the measurement, read high by:
