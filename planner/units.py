@@ -45,6 +45,7 @@ DIMENSIONS: dict[str, dict[str, Unit]] = {
     "relative speed": {"% rpm": Unit(0.01)},
     "speed rate": {"rpm/s": Unit(_TURN / 60.0), "rad/s2": Unit(1.0)},
     "relative rate": {"% rpm/s": Unit(0.01)},
+    "angle rate": {"deg/s": Unit(_DEGREE)},
     "time": {"s": Unit(1.0), "min": Unit(60.0), "h": Unit(3600.0)},
     "speed": {
         "m/s": Unit(1.0),

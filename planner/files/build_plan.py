@@ -17,6 +17,7 @@ from planner.model.plan import (
     Shutdown,
     Site,
 )
+from planner.units import from_si
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
@@ -105,6 +106,12 @@ def _check_shutdown(document: Document, file: PlanFile, stand: StandFile | None)
     if shutdown.brake is True and stand is not None and stand.brake is None:
         expected = "brake = false, because the stand has no [brake]"
         document.fault(("shutdown", "brake"), expected, "add [brake] to the stand, or use none")
+    if stand is not None and stand.brake is not None and shutdown.brake_from is not None:
+        allowed = stand.brake.below.resolved(stand.full_speed)
+        if shutdown.brake_from.resolved(stand.full_speed) > allowed:
+            expected = f"at most {from_si(allowed, 'rpm'):g} rpm, the stand's [brake] below"
+            mend = "brake later, or correct the stand"
+            document.fault(("shutdown", "brake_from"), expected, mend)
 
 
 def build_plan(

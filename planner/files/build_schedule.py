@@ -67,13 +67,17 @@ class _Walk:
         to = self._target(step)
         start = self.at or _State(0.0, to.collective, to.cyclic)
         self.at = to
+        window = step.window_rpm.resolved(self.full_speed)
+        if to.known and 0.0 < to.speed <= window:
+            expected = "a window smaller than the rotor speed"
+            self.document.fault((*path, "window_rpm"), expected, "correct window_rpm or rpm")
         return Step(
             speed_rad_s=to.speed,
             collective_rad=to.collective,
             cyclic=to.cyclic,
             ramp_time_s=self._ramp_time(path, step, start, to),
             hold_time_s=step.hold_time,
-            window=Window(step.window_rpm.resolved(self.full_speed), step.window_collective),
+            window=Window(window, step.window_collective),
             note=step.note,
         )
 

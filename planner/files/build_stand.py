@@ -76,6 +76,7 @@ def _drive(drive: DriveTable, full_speed: float) -> Drive:
         torque_rating_N_m=drive.torque_rating,
         power_rating_W=drive.power_rating,
         maximum_rad_s=drive.maximum_speed.resolved(full_speed),
+        inertia_kg_m2=drive.inertia,
         overspeed_trip_rad_s=_optional(drive.overspeed_trip, full_speed),
     )
 

@@ -31,6 +31,9 @@ class DriveTable(Table):
         description="Continuous power."
     )
     maximum_speed: PositiveSpeed = Field(description="Highest rotor speed of the drive.")
+    inertia: Annotated[float, Quantity("inertia", positive=True, example="90 kg m2")] = Field(
+        description="Inertia of motor, gearing and hub at the rotor shaft, without blades."
+    )
     overspeed_trip: PositiveSpeed | None = Field(
         default=None, description="Rotor speed where the trip removes torque."
     )

@@ -6,8 +6,8 @@ from typing import TYPE_CHECKING
 
 from planner.judge.case import WHOLE_RUN
 from planner.judge.documents import closing_document, parts_of
-from planner.judge.evidence import Group, faces_danger, wanted
-from planner.judge.rows import family_of
+from planner.judge.evidence import Evidence, Group, faces_danger, wanted
+from planner.judge.rows import family_of, order_of
 from planner.model.results import Coverage, Verdict
 from planner.model.rules import HAZARD_CLASSES
 
@@ -27,9 +27,8 @@ def coverage(case: Case, judged: Sequence[Judged]) -> tuple[Coverage, ...]:
     """Close each class of the tool, the book and the plan, part by part.
 
     A part is closed by rules where in each of its segments the numbers that the class asks for
-    were judged or shown not to apply, at least one of them was judged (or closed by a document),
-    and nothing was left open; else by a document that reaches the whole part, unless something
-    was left open that no document may close.
+    were judged or shown not to apply, and nothing was left open; else by a document that reaches
+    the whole part, unless something was left open that no document may close.
     """
     classes = [
         *HAZARD_CLASSES,
@@ -44,11 +43,15 @@ def coverage(case: Case, judged: Sequence[Judged]) -> tuple[Coverage, ...]:
 
 
 def _part(hazard_class: str, part: str, case: Case, judged: Sequence[Judged]) -> Coverage:
-    said = [(j.rule, o) for j in judged for o in j.outcomes if part in {o.row.kind, WHOLE_RUN}]
+    pooled = parts_of(hazard_class) == (WHOLE_RUN,)
+    said = [(j.rule, o) for j in judged for o in j.outcomes if pooled or o.row.kind == part]
     verdicts = [outcome.verdict for _, outcome in said]
     opened = _left_open(part, said, judged)
     holes = _holes(hazard_class, part, case, said)
     by_rules = _closers(said, case)
+    if not by_rules and hazard_class in HAZARD_CLASSES:
+        # nothing of the kind can occur here, and the numbers that would show it were looked at
+        by_rules = list(dict.fromkeys(_rules_that(("does not apply",), said, case)))
     if not opened and not holes and by_rules:
         return Coverage(hazard_class, part, ", ".join(by_rules), Verdict.worst(verdicts))
     number, why = closing_document(hazard_class, part, _highest(part, case), case)
@@ -66,7 +69,7 @@ def _left_open(part: str, said: Sequence[_Said], judged: Sequence[Judged]) -> st
         if outcome.left_open:
             return f"{rule.id} left {outcome.row.place} not assessed: {outcome.reason}"
     for one in judged:
-        if not one.outcomes and (part in one.rule.where or WHOLE_RUN in {part, *one.rule.where}):
+        if not one.outcomes and (part in one.rule.where or WHOLE_RUN in one.rule.where):
             return f"{one.rule.id}: {one.finding.reason}"
     return ""
 
@@ -92,29 +95,47 @@ def _holes(hazard_class: str, part: str, case: Case, said: Sequence[_Said]) -> s
 
 
 def _serves(group: Group, rule: Rule, outcome: Outcome) -> bool:
-    mode = outcome.row.labels.mode
-    return any(
-        rule.quantity == quantity
-        and (not family or (family_of(mode) if mode else rule.mode_family) == family)
-        for quantity, family in group
+    """Tell whether a rule looked at one of the numbers; one that it set aside does not count."""
+    return any(_is_evidence(evidence, rule, outcome) for evidence in group)
+
+
+def _is_evidence(evidence: Evidence, rule: Rule, outcome: Outcome) -> bool:
+    labels = outcome.row.labels
+    if rule.quantity != evidence.quantity or outcome.row.set_aside:
+        return False
+    if outcome.kind == "exempt" and not (evidence.family == "flap" and evidence.order == 1):
+        return False
+    family = family_of(labels.mode) if labels.mode else rule.mode_family
+    order = order_of(labels.mode) if labels.mode else evidence.order
+    return (
+        evidence.family in {"", family}
+        and evidence.order in {0, order}
+        and evidence.harmonic in {"", labels.harmonic or evidence.harmonic}
     )
 
 
 def _words(group: Group) -> str:
-    return " or ".join(
-        f"{quantity} of {family} modes" if family else quantity for quantity, family in group
-    )
+    return " or ".join(str(evidence) for evidence in group)
 
 
 def _closers(said: Sequence[_Said], case: Case) -> list[str]:
     """Rules that judged something on its dangerous side, then documents that stood in."""
-    rules = [
+    return list(
+        dict.fromkeys(
+            (
+                *_rules_that(("assessed",), said, case),
+                *(outcome.closed_by for _, outcome in said if outcome.closed_by),
+            )
+        )
+    )
+
+
+def _rules_that(kinds: tuple[str, ...], said: Sequence[_Said], case: Case) -> list[str]:
+    return [
         rule.id
         for rule, outcome in said
-        if outcome.kind == "assessed" and faces_danger(rule, case.vocabulary[rule.quantity])
+        if outcome.kind in kinds and faces_danger(rule, case.vocabulary[rule.quantity])
     ]
-    documents = [outcome.closed_by for _, outcome in said if outcome.closed_by]
-    return list(dict.fromkeys((*rules, *documents)))
 
 
 def _highest(part: str, case: Case) -> float:

@@ -7,6 +7,7 @@ number that should be there and is not, or an exceeded limit: those are faults o
 
 from __future__ import annotations
 
+import math
 from typing import TYPE_CHECKING
 
 from planner.judge.case import WHOLE_RUN, Case
@@ -68,23 +69,37 @@ def _names(document: OutsideDocument, part: str) -> bool:
 
 
 def _falls_short(document: OutsideDocument, highest_rad_s: float, case: Case) -> str:
+    """Why a document that names the class and part does not reach; empty where it does."""
+    number, wind = document.number, _strongest_wind(case)
+    checks = (
+        (bool(number.strip()), "an outside document without a number closes nothing"),
+        (bool(document.approver.strip()), f"document {number} names no approver"),
+        (
+            wind <= document.wind_limit_m_s,
+            f"document {number} reaches to {document.wind_limit_m_s:.4g} m/s wind, the plan's "
+            f"gust with anemometer error is {wind:.4g} m/s at the anemometer or the hub",
+        ),
+        (
+            document.date[:10] <= case.plan.issued[:10],
+            f"document {number} is dated {document.date}, after the card's issue",
+        ),
+        (
+            highest_rad_s <= document.speed_limit_rad_s,
+            f"document {number} reaches to {_rpm(document.speed_limit_rad_s)}, this part of the "
+            f"run with gauge error to {_rpm(highest_rad_s)}",
+        ),
+    )
+    return next((why for is_so, why in checks if not is_so), "")
+
+
+def _strongest_wind(case: Case) -> float:
+    """Gust with the anemometer's error, at the anemometer or at the hub, whichever is more."""
     site = case.plan.site
-    wind = max(site.wind_mean_m_s, site.wind_gust_m_s) + abs(site.anemometer_error_m_s)
-    if not document.number.strip():
-        return "an outside document without a number closes nothing"
-    if not document.approver.strip():
-        return f"document {document.number} names no approver"
-    if not wind <= document.wind_limit_m_s:
-        return (
-            f"document {document.number} reaches to {document.wind_limit_m_s:.4g} m/s wind, the "
-            f"plan's gust with anemometer error is {wind:.4g} m/s"
-        )
-    if not highest_rad_s <= document.speed_limit_rad_s:
-        return (
-            f"document {document.number} reaches to {_rpm(document.speed_limit_rad_s)}, this part "
-            f"of the run with gauge error to {_rpm(highest_rad_s)}"
-        )
-    return ""
+    read = max(site.wind_mean_m_s, site.wind_gust_m_s) + abs(site.anemometer_error_m_s)
+    at_hub = case.predictions.get("wind_at_hub")
+    if at_hub is None or at_hub.status[0] is not Status.OK:
+        return math.inf
+    return max(read, float(at_hub.high[0]))
 
 
 def _rpm(speed_rad_s: float) -> str:

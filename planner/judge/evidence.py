@@ -9,10 +9,9 @@ quantities here.
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from planner.judge.references import Missing, resolve
-from planner.judge.rows import BLADE_FAMILIES, GIVEN_FAMILIES
 from planner.judge.selection import crosses
 from planner.model.rules import HAZARD_CLASSES
 
@@ -24,13 +23,34 @@ if TYPE_CHECKING:
     from planner.model.results import Quantity
     from planner.model.rules import Rule
 
-Group = tuple[tuple[str, str], ...]
-"""Alternatives that serve equally: quantity id and mode family (empty: any)."""
-
 TOP_SHARE = 0.9
 """Holds from this share of the card's highest speed have to be judged for blade modes too: the
 loads that drive these grow with speed squared, so a book may leave out slow build-up holds."""
-_PASSAGE: tuple[Group, ...] = ((("band_rate", ""), ("band_time", "")),)
+
+
+@dataclass(frozen=True)
+class Evidence:
+    """One kind of number that speaks of a hazard."""
+
+    quantity: str
+    family: str = ""
+    """Mode family; empty: any."""
+    harmonic: str = ""
+    """Rotor harmonic; empty: any."""
+    order: int = 0
+    """Order of the mode in its family; zero: any."""
+
+    def __str__(self) -> str:
+        """Words for a reason."""
+        words = self.quantity
+        if self.family:
+            order = f" {self.order}" if self.order else ""
+            words += f" of {self.family}{order} modes"
+        return f"{words} at {self.harmonic} per revolution" if self.harmonic else words
+
+
+Group = tuple[Evidence, ...]
+"""Alternatives that serve equally."""
 
 
 def wanted(hazard_class: str, segment: Segment | None, case: Case) -> tuple[Group, ...] | None:
@@ -48,53 +68,82 @@ def wanted(hazard_class: str, segment: Segment | None, case: Case) -> tuple[Grou
     """
     if hazard_class not in HAZARD_CLASSES:
         return ()
-    if hazard_class in _ON_RUN:
-        return _ON_RUN[hazard_class]
-    if segment is None or hazard_class not in _BY_SEGMENT:
+    if segment is None:
+        return _ON_RUN.get(hazard_class)
+    if hazard_class not in _BY_SEGMENT:
         return None
     return _BY_SEGMENT[hazard_class](segment, case)
 
 
 def faces_danger(rule: Rule, quantity: Quantity) -> bool:
     """Tell whether a rule limits its quantity on the dangerous side."""
-    if quantity.danger == "high":
+    if quantity.danger in {"high", "both"}:
         return rule.sense == "at most"
     return quantity.danger != "low" or rule.sense == "at least"
 
 
-def _stops(segment: Segment, case: Case) -> tuple[Group, ...]:
-    """A hingeless blade by its root moment; others by clearance, or by the moment of resting."""
+def _stops(_: Segment, case: Case) -> tuple[Group, ...]:
+    """A hingeless blade by its root moment; others by both margins and the moment of resting."""
     if case.plan.rotor.hub.kind == "hingeless":
-        return ((("root_flap_moment", ""),),)
-    droop: Group = (("droop_stop_clearance", ""),)
-    span = case.spans[segment.id]
-    free = resolve("stop_free_speed", case, span)
-    if not isinstance(free, Missing) and span.highest_rad_s < free.least:
-        droop = (*droop, ("droop_stop_moment", ""))
-    return (droop, (("up_stop_clearance", ""),))
+        return _all("root_flap_moment")
+    return _all("droop_stop_clearance", "up_stop_clearance", "droop_stop_moment")
 
 
 def _resonance(segment: Segment, case: Case) -> tuple[Group, ...]:
     if segment.kind == "hold":
-        top = TOP_SHARE * case.whole_run.highest_rad_s
-        blade = BLADE_FAMILIES if case.spans[segment.id].highest_rad_s >= top else ()
-        return tuple((("harmonic_spacing", family),) for family in (*blade, *GIVEN_FAMILIES))
-    return _PASSAGE if any(crosses(segment, band) for band in case.plan.keep_outs) else ()
+        return (*_blade_modes(segment, case), *_given_modes(case), *_bands(case))
+    groups: list[Group] = []
+    if any(mode.family == "stand" for mode in case.plan.stand.modes):
+        groups.append((Evidence("crossing_cover", "stand", "1"),))
+    if any(crosses(segment, band) for band in case.plan.keep_outs):
+        groups.append((Evidence("band_rate"), Evidence("band_time")))
+    return tuple(groups)
 
 
-def _loads(_: Segment, __: Case) -> tuple[Group, ...]:
-    return (
-        (("thrust", ""),),
-        (("root_centrifugal_force", ""),),
-        (("hub_moment", ""),),
+def _blade_modes(segment: Segment, case: Case) -> tuple[Group, ...]:
+    """The lowest modes of each family, at the fastest holds."""
+    top = TOP_SHARE * case.whole_run.highest_rad_s
+    if case.spans[segment.id].highest_rad_s < top:
+        return ()
+    lowest = (("flap", 1), ("flap", 2), ("lag", 1), ("torsion", 1))
+    return tuple((Evidence("harmonic_spacing", family, order=n),) for family, n in lowest)
+
+
+def _given_modes(case: Case) -> tuple[Group, ...]:
+    """Stand modes against unbalance and the blades, shaft modes against the blades."""
+    blades = str(case.plan.rotor.n_blades)
+    wanted_of = {"stand": ("1", blades), "shaft": (blades,)}
+    families = {mode.family for mode in case.plan.stand.modes}
+    return tuple(
+        (Evidence("harmonic_spacing", family, harmonic),)
+        for family, harmonics in wanted_of.items()
+        for harmonic in (harmonics if family in families else ("",))
     )
 
 
+def _bands(case: Case) -> tuple[Group, ...]:
+    return _all("band_distance") if case.plan.keep_outs else ()
+
+
+def _loads(_: Segment, __: Case) -> tuple[Group, ...]:
+    return _all("thrust", "root_centrifugal_force", "hub_moment")
+
+
+def _drive(_: Segment, __: Case) -> tuple[Group, ...]:
+    return _all("torque", "power")
+
+
+def _all(*quantities: str) -> tuple[Group, ...]:
+    return tuple((Evidence(quantity),) for quantity in quantities)
+
+
 _ON_RUN: dict[str, tuple[Group, ...]] = {
-    "drive and overspeed": ((("card_speed", ""),), (("torque", ""), ("power", ""))),
+    "drive and overspeed": _all("card_speed", "trip_above_card", "trip_below_proven"),
+    "stops": _all("droop_stop_rest_moment"),
 }
 _BY_SEGMENT: dict[str, Callable[[Segment, Case], tuple[Group, ...]]] = {
     "stops": _stops,
     "resonance": _resonance,
     "loads": _loads,
+    "drive and overspeed": _drive,
 }

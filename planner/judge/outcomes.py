@@ -101,10 +101,10 @@ def _compared(row: Row, bench: Bench) -> Outcome:
         if isinstance(stated, Missing):
             return _open(row, f"caution level: {stated.reason}")
         caution = stated
-    margin = _margin(row, rule, limit)
+    margin = _margin(row, bench, limit)
     verdict = Verdict.GO if _keeps(margin, limit) else Verdict.NO_GO
     if verdict is Verdict.GO and rule.caution is not None:
-        kept = _keeps(_margin(row, rule, caution), caution)
+        kept = _keeps(_margin(row, bench, caution), caution)
         verdict = Verdict.GO if kept else Verdict.CAUTION
     reason = "" if verdict is Verdict.GO else _beyond(row, bench, limit, caution)
     return Outcome(row, "assessed", verdict, reason, limit, caution, margin)
@@ -116,15 +116,20 @@ def _limit(limit: Limit | None, row: Row, bench: Bench) -> float | Missing:
     return limit_over(limit, bench.rule.sense, row.span.within(bench.speeds), bench.case)
 
 
-def _margin(row: Row, rule: Rule, limit: float) -> float:
+def _margin(row: Row, bench: Bench, limit: float) -> float:
     """Distance inside a limit of the end of the row that comes nearest to it."""
-    end = _worst_end(row, rule)
-    return limit - end if rule.sense == "at most" else end - limit
+    end = _worst_end(row, bench)
+    return limit - end if bench.rule.sense == "at most" else end - limit
 
 
-def _worst_end(row: Row, rule: Rule) -> float:
+def _worst_end(row: Row, bench: Bench) -> float:
+    """The end nearest to the limit; of a quantity dangerous both ways, the greatest size."""
     numbers = (row.value, row.low, row.high)
-    return max(numbers) if rule.sense == "at most" else min(numbers)
+    if bench.rule.sense == "at least":
+        return min(numbers)
+    if bench.quantity.danger == "both":
+        return max(abs(number) for number in numbers)
+    return max(numbers)
 
 
 def _keeps(margin: float, limit: float) -> bool:
@@ -161,19 +166,21 @@ def _status_reason(row: Row, bench: Bench) -> str:
     if not row.finite or row.status is Status.NOT_COMPUTED:
         return words
     unit = bench.quantity.unit
-    words += f" (for information: {_text(_worst_end(row, bench.rule), unit)}"
+    words += f" (for information: {_text(_worst_end(row, bench), unit)}"
     limit = _limit(bench.rule.limit, row, bench)
     if not isinstance(limit, Missing):
-        kept = _keeps(_margin(row, bench.rule, limit), limit)
+        kept = _keeps(_margin(row, bench, limit), limit)
         words += f", {'within' if kept else 'beyond'} the limit {_text(limit, unit)}"
     return words + ")"
 
 
 def _beyond(row: Row, bench: Bench, limit: float, caution: float) -> str:
     rule, unit = bench.rule, bench.quantity.unit
-    exceeded = not _keeps(_margin(row, rule, limit), limit)
+    exceeded = not _keeps(_margin(row, bench, limit), limit)
     name, bound = ("limit", limit) if exceeded else ("caution level", caution)
-    return f"{_text(_worst_end(row, rule), unit)} against {name} {rule.sense} {_text(bound, unit)}"
+    return (
+        f"{_text(_worst_end(row, bench), unit)} against {name} {rule.sense} {_text(bound, unit)}"
+    )
 
 
 def _text(value: float, unit: str) -> str:

@@ -132,20 +132,7 @@ def _card_speed(case: Case, _: Span) -> Found:
 
 
 def _stop_free_speed(case: Case, _: Span) -> Found:
-    """Speed from which the blades count as clear of the droop stop."""
-    stop = case.plan.rotor.droop_stop
-    if stop is None:
-        return Range(0.0, 0.0)
-    if stop.retraction is not None:
-        return Range(stop.retraction.release_rad_s, stop.retraction.release_rad_s)
-    margin = case.plan.rule_book.stop_free_margin
-    if margin is None:
-        return Missing("the rule book states no stop_free_margin for fixed stops")
-    lift_off = _predicted("lift_off_speed_in_wind", case.predictions)
-    if isinstance(lift_off, Missing):
-        return lift_off
-    speed = lift_off.greatest * (1.0 + margin)
-    return Range(speed, speed)
+    return _predicted("stop_free_speed", case.predictions)
 
 
 def _flap_travel(case: Case, span: Span) -> Found:

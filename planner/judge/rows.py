@@ -35,6 +35,8 @@ class Row:
     high: float = math.nan
     status: Status = Status.NOT_COMPUTED
     reason: str = ""
+    set_aside: bool = False
+    """The rule itself leaves this number out, by the harmonics that it covers."""
     gap: bool = False
     """Stands for a number that should be there and is not; no document closes a gap."""
 
@@ -107,10 +109,10 @@ def _doubted(row: Row, doubt: str, case: Case) -> Row:
     if row.status is not Status.OK:
         return row
     if doubt:
-        return replace(row, status=Status.NOT_COMPUTED, reason=doubt)
+        return replace(row, status=Status.NOT_STATED, reason=doubt)
     if row.labels.mode in case.unfitted_modes:
         reason = "the mode is not stated to be found with the rotor's mass fitted"
-        return replace(row, status=Status.NOT_COMPUTED, reason=reason)
+        return replace(row, status=Status.NOT_STATED, reason=reason)
     return row
 
 

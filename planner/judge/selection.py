@@ -79,7 +79,7 @@ def _at_harmonic(rule: Rule, row: Row) -> Row:
     if not rule.harmonics or not harmonic or harmonic in {str(n) for n in rule.harmonics}:
         return row
     reason = "harmonics that the rule does not cover"
-    return replace(row, status=Status.NOT_APPLICABLE, reason=reason)
+    return replace(row, status=Status.NOT_APPLICABLE, reason=reason, set_aside=True)
 
 
 def _gaps(

@@ -12,14 +12,16 @@ if TYPE_CHECKING:
 
 
 def wind_cap_findings(plan: Plan) -> tuple[Finding, Finding]:
-    """Judge mean wind and gust, as read at the anemometer, against the cap.
+    """Judge mean wind and gust against the cap, with the anemometer's error on top.
 
     A book without a cap leaves the weather gate open: NOT ASSESSED.
     """
     site, book = plan.site, plan.rule_book
+    error = abs(site.anemometer_error_m_s)
+    gust = max(site.wind_gust_m_s, site.wind_mean_m_s)
     return (
-        _finding("mean", site.wind_mean_m_s, book.wind_mean_cap_m_s),
-        _finding("gust", max(site.wind_gust_m_s, site.wind_mean_m_s), book.wind_gust_cap_m_s),
+        _finding("mean", site.wind_mean_m_s + error, book.wind_mean_cap_m_s),
+        _finding("gust", gust + error, book.wind_gust_cap_m_s),
     )
 
 
@@ -30,7 +32,7 @@ def _finding(what: str, wind_m_s: float, cap_m_s: float | None) -> Finding:
         verdict, reason = Verdict.NOT_ASSESSED, f"the rule book states no cap for the {what} wind"
     elif not wind_m_s <= cap:
         verdict = Verdict.NO_GO
-        reason = f"{wind_m_s:.6g} m/s planned against the cap of {cap:.6g} m/s"
+        reason = f"{wind_m_s:.6g} m/s with the anemometer's error against the cap of {cap:.6g} m/s"
     assessed = verdict is not Verdict.NOT_ASSESSED
     return Finding(
         rule=f"wind cap: {what}",

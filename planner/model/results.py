@@ -21,6 +21,8 @@ class Status(Enum):
     NOT_COMPUTED = "not computed"
     NOT_CONVERGED = "not converged"
     OUTSIDE_VALIDITY = "outside validity"
+    NOT_STATED = "not stated"
+    """The plan or the rule book lacks a value that it must have; no document stands in for it."""
     NOT_APPLICABLE = "does not apply"
     """The hub has no such part (a hingeless hub has no droop stop): nothing to judge."""
 

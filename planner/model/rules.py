@@ -10,13 +10,13 @@ Sense = Literal["at most", "at least"]
 Where = Literal["hold", "ramp", "stop", "abort", "run"]
 
 HAZARD_CLASSES: dict[str, tuple[str, tuple[Where, ...]]] = {
-    "stops": ("Flap range and stop contact", ("hold", "ramp", "stop")),
+    "stops": ("Flap range and stop contact", ("run", "hold", "ramp", "stop")),
     "clearance": ("Blade to stand and obstructions", ("hold", "ramp", "stop")),
     "resonance": ("Nearness to and passage through resonances", ("hold", "ramp", "stop")),
     "lag and stand stability": ("Lag motion against the stand", ("run",)),
     "pitch and flap stability": ("Flutter and divergence", ("run",)),
     "loads": ("Blade root, hub and stand loads", ("hold", "ramp", "stop")),
-    "drive and overspeed": ("Torque, power and rotor speed", ("run",)),
+    "drive and overspeed": ("Torque, power and rotor speed", ("run", "hold", "ramp", "stop")),
     "aborts": ("Abort from any point of the run", ("abort",)),
     "people": ("Exclusion, outwash, entry", ("run",)),
 }

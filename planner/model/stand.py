@@ -32,6 +32,8 @@ class Drive:
     torque_rating_N_m: float
     power_rating_W: float
     maximum_rad_s: float
+    inertia_kg_m2: float
+    """Rotating inertia of motor, gearing and hub, referred to the rotor shaft; without blades."""
     overspeed_trip_rad_s: float | None
 
 

@@ -36,16 +36,25 @@ ROUNDING = 1e-9
 
 
 @dataclass(frozen=True)
-class Air:
-    """Air and wind of a run: nominal, and the ends that corners take."""
+class AirState:
+    """Air together with the model allowance that goes with it."""
 
-    density_kg_m3: tuple[float, float, float]
-    """Nominal, thinnest, densest."""
+    density_kg_m3: float
     sound_m_s: float
-    slowest_sound_m_s: float
+    load_factor: float
+
+
+@dataclass(frozen=True)
+class Air:
+    """Air and wind of a run: nominal, and the two ends that corners take.
+
+    Low lift goes with the thinnest, warmest air and high lift with the densest, coldest.
+    """
+
+    nominal: AirState
+    ends: tuple[AirState, AirState]
     wind_m_s: float
     gust_m_s: float
-    load_factor: tuple[float, float]
 
 
 @dataclass(frozen=True)
@@ -57,23 +66,21 @@ class Point:
     collective_rad: float
     cyclic: Cyclic
     wind_m_s: float
-    density_kg_m3: float
-    load_factor: float
+    air: AirState
 
 
 def air_of(inputs: Inputs) -> Air:
     """Collect the air and wind from the studies before.
 
     Raises:
-        ValueError: air or wind were not assessed, or the book states no air load allowance.
+        NotAssessedError: air or wind were not assessed, or the book states no allowance.
     """
-    factor = inputs.requests.allowances.get("air_load")
-    if factor is None:
-        msg = "the rule book states no allowance 'air_load'"
-        raise ValueError(msg)
-    sound, slow, _ = inputs.bounds("speed_of_sound")
+    factor = inputs.allowance("air_load")
+    sound, slow, fast = inputs.bounds("speed_of_sound")
+    density, thin, dense = inputs.bounds("air_density")
     mean, _, gust = inputs.bounds("wind_at_hub")
-    return Air(inputs.bounds("air_density"), sound, slow, mean, gust, factor)
+    ends = (AirState(thin, fast, factor[0]), AirState(dense, slow, factor[1]))
+    return Air(AirState(density, sound, 1.0), ends, mean, gust)
 
 
 def nominal_points(segments: Sequence[Segment], air: Air, counts_from_rad_s: float) -> list[Point]:
@@ -83,7 +90,7 @@ def nominal_points(segments: Sequence[Segment], air: Air, counts_from_rad_s: flo
     left behind count, with one at just that speed where the ramp passes it.
     """
     return [
-        Point(index, speed, collective, cyclic, air.wind_m_s, air.density_kg_m3[0], 1.0)
+        Point(index, speed, collective, cyclic, air.wind_m_s, air.nominal)
         for index, segment in enumerate(segments)
         for speed, collective, cyclic in _along(segment, counts_from_rad_s)
     ]
@@ -105,20 +112,15 @@ def corner_points(
             }
         )
     winds = sorted({0.0, air.wind_m_s, air.gust_m_s})
-    loads = (
-        (air.density_kg_m3[1], air.load_factor[0]),
-        (air.density_kg_m3[2], air.load_factor[1]),
-    )
     return [
         replace(
             point,
             speed_rad_s=speed,
             collective_rad=pitch,
             wind_m_s=wind,
-            density_kg_m3=density,
-            load_factor=factor,
+            air=end,
         )
-        for speed, pitch, wind, (density, factor) in product(speeds, pitches, winds, loads)
+        for speed, pitch, wind, end in product(speeds, pitches, winds, air.ends)
     ]
 
 
@@ -131,7 +133,6 @@ def to_cases(
     points: Sequence[Point],
     stops: tuple[Stop | None, Stop | None],
     mounting: Mounting,
-    sound_m_s: float,
 ) -> Cases:
     """Arrays for the rotor; the droop stop's angle is the one in force at each speed."""
     droop, up = stops
@@ -143,9 +144,9 @@ def to_cases(
         cyclic_sine_rad=[p.cyclic.sine_rad for p in points],
         trimmed=[p.cyclic.trimmed and p.speed_rad_s > 0.0 for p in points],
         wind_m_s=[p.wind_m_s for p in points],
-        air_density_kg_m3=[p.density_kg_m3 for p in points],
-        speed_of_sound_m_s=sound_m_s,
-        load_factor=[p.load_factor for p in points],
+        air_density_kg_m3=[p.air.density_kg_m3 for p in points],
+        speed_of_sound_m_s=[p.air.sound_m_s for p in points],
+        load_factor=[p.air.load_factor for p in points],
         gravity_m_s2=gravity_vector_m_s2(mounting),
         droop_angle_rad=[
             missing if droop is None else droop.lowest_angle_rad(p.speed_rad_s) for p in points

@@ -14,7 +14,7 @@ from planner.predict.study_inertia import lift_slope_per_rad, section_at
 
 if TYPE_CHECKING:
     from planner.model.rotor import Blade, Section
-    from planner.predict.cases import Air, Point
+    from planner.predict.cases import Point
     from planner.rotor.setup import RotorArrays
 
 GREATEST_ADVANCE_RATIO = 0.1
@@ -45,13 +45,13 @@ def compares(point: Point, full_speed_rad_s: float, radius_m: float) -> bool:
     return point.wind_m_s <= GREATEST_ADVANCE_RATIO * point.speed_rad_s * radius_m
 
 
-def hover_hand(rotor: RotorArrays, blade: Blade, point: Point, air: Air) -> HoverHand:
+def hover_hand(rotor: RotorArrays, blade: Blade, point: Point) -> HoverHand:
     """Closed forms for one state that compares (rotor turning, upright)."""
     speed, tip = point.speed_rad_s, point.speed_rad_s * blade.radius_m
     at = 0.75 * blade.radius_m
     section = section_at(blade, at)
     slope = lift_slope_per_rad(section) / math.sqrt(
-        1.0 - min(0.7, 0.75 * tip / air.sound_m_s) ** 2
+        1.0 - min(0.7, 0.75 * tip / point.air.sound_m_s) ** 2
     )
     solidity = rotor.blade_area_m2 / (math.pi * blade.radius_m**2)
     pitch = point.collective_rad + _twist(blade, at) - _twist(blade, blade.collective_radius_m)
@@ -61,7 +61,7 @@ def hover_hand(rotor: RotorArrays, blade: Blade, point: Point, air: Air) -> Hove
     mean_angle = 6.0 * thrust / (solidity * slope)
     drag = _drag(section, mean_angle)
     power = float(hand_checks_hover.power_in_wind(thrust, inflow, INDUCED_FACTOR, solidity * drag))
-    force = point.density_kg_m3 * math.pi * blade.radius_m**2 * tip**2
+    force = point.air.density_kg_m3 * math.pi * blade.radius_m**2 * tip**2
     form = _flap_blade(rotor, blade, point, (slope, tip_fraction))
     damping = float(hand_checks_flap.flap_damping_ratio(form))
     frequency = float(hand_checks.flap_frequency_ratio(_hinge(rotor), speed))
@@ -123,7 +123,7 @@ def _flap_blade(
     slope_per_rad, tip_fraction = slope_and_tip
     chord = rotor.blade_area_m2 / (rotor.n_blades * blade.radius_m)
     lock = hand_checks.lock_number(
-        point.density_kg_m3, slope_per_rad, chord, blade.radius_m, rotor.flap_inertia_kg_m2
+        point.air.density_kg_m3, slope_per_rad, chord, blade.radius_m, rotor.flap_inertia_kg_m2
     )
     ratio = hand_checks.flap_frequency_ratio(_hinge(rotor), point.speed_rad_s)
     return hand_checks_flap.FlapBlade(

@@ -78,6 +78,23 @@ RESONANCE = (
         allowance="frequency",
     ),
     Quantity(
+        id="crossing_cover",
+        name="Room of a passed resonance inside its keep-out band",
+        unit="rpm",
+        symbol="ΔΩ",
+        axes=("segment", "mode", "harmonic"),
+        danger="low",
+        study="passages",
+        method="For each ramp and each harmonic that excites a stand or shaft mode: the speeds at "
+        "which they meet, with the frequency allowance and the gauge's error, against the "
+        "declared keep-out bands. Inside a band: distance to its nearer edge. Outside all: not computed, "
+        "because the amplitude of a passage is not.",
+        validity="modes as given, with the rotor fitted",
+        source="common practice",
+        hand_check="none: one division and one subtraction",
+        allowance="frequency",
+    ),
+    Quantity(
         id="band_distance",
         name="Distance of a hold from a keep-out band",
         unit="rpm",

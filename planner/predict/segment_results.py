@@ -43,8 +43,9 @@ READ: dict[str, Callable[[TrimResult], FloatArray]] = {
 class SegmentResults:
     """States of one segment that its rows are made of.
 
-    A hold counts whole. Of a ramp or stop in wind, the states at and above the speed where the
-    stops are left behind count; below it the quasi-static answer is no prediction.
+    A hold counts whole. Of a ramp or stop, the states at and above the speed where the stops are
+    left behind count; below it blades rest in calm, which the rest moment judges, and in wind a
+    quasi-static answer is no prediction.
     """
 
     segment: Segment
@@ -70,6 +71,14 @@ class SegmentResults:
         return np.concatenate([self.nominals(quantity), corners])
 
     @property
+    def all_speeds_rad_s(self) -> FloatArray:
+        """Rotor speed of each state, in the order of ``all``."""
+        nominal, corners = self.solved.nominal, self.solved.corners
+        return np.concatenate(
+            [nominal.speed_rad_s[self.nominal], corners.speed_rad_s[self.corners]]
+        )
+
+    @property
     def states(self) -> NDArray[np.int64]:
         """What the blades do in each state."""
         return self._both(lambda r: r.state)
@@ -86,13 +95,13 @@ class SegmentResults:
         A parked rotor meets the wind from all sides: there the continuation over the full circle
         is the method, and this is no fault.
         """
-        turns = np.concatenate(
-            [
-                self.solved.nominal.speed_rad_s[self.nominal] > 0.0,
-                self.solved.corners.speed_rad_s[self.corners] > 0.0,
-            ]
-        )
+        turns = self.all_speeds_rad_s > 0.0
         return bool(np.any(turns & (self._both(lambda r: r.outside_sections) != 0)))
+
+    @property
+    def rests(self) -> bool:
+        """Blades lie on the droop stop all round, in every state."""
+        return bool(np.all(self.states == FlapState.RESTING))
 
     @property
     def knocks(self) -> bool:

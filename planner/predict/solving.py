@@ -61,7 +61,7 @@ def solve_run(inputs: Inputs, rotor: RotorArrays, air: Air, counts_from_rad_s: f
     """Solve nominal states first, then the corners with the cyclic found there."""
     segments: Sequence[Segment] = inputs["segments"]
     error = inputs["stand.speed_gauge_error_rad_s"]
-    nominal = _batch(nominal_points(segments, air, counts_from_rad_s), inputs, rotor, air)
+    nominal = _batch(nominal_points(segments, air, counts_from_rad_s), inputs, rotor)
     corners = [
         corner
         for i, point in enumerate(nominal.points)
@@ -75,7 +75,7 @@ def solve_run(inputs: Inputs, rotor: RotorArrays, air: Air, counts_from_rad_s: f
     again = gust_trim_points(
         [p for p in nominal.points if segments[p.segment].kind == "hold"], air
     )
-    return Solved(nominal, _batch(corners, inputs, rotor, air), _batch(again, inputs, rotor, air))
+    return Solved(nominal, _batch(corners, inputs, rotor), _batch(again, inputs, rotor))
 
 
 def _cyclic_found(result: TrimResult, i: int) -> Cyclic:
@@ -86,12 +86,12 @@ def _cyclic_found(result: TrimResult, i: int) -> Cyclic:
     )
 
 
-def _batch(points: Sequence[Point], inputs: Inputs, rotor: RotorArrays, air: Air) -> Batch:
+def _batch(points: Sequence[Point], inputs: Inputs, rotor: RotorArrays) -> Batch:
     """Solve each different state once; segments that share a state share its numbers."""
     stops: tuple[Stop | None, Stop | None] = (inputs["rotor"].droop_stop, inputs["rotor"].up_stop)
     different: dict[Point, int] = {}
     where = [different.setdefault(replace(p, segment=0), len(different)) for p in points]
-    cases = to_cases(list(different), stops, inputs["stand.mounting"], air.sound_m_s)
+    cases = to_cases(list(different), stops, inputs["stand.mounting"])
     return Batch(
         tuple(points),
         _taken(trim(rotor, cases), np.array(where, dtype=np.int64)),

@@ -64,7 +64,7 @@ def _of_the_method(quantity: str, found: SegmentResults, scope: Scope) -> Iterat
     )
     yield (
         quantity in _TORQUE and not scope.has_torque_allowance,
-        Status.NOT_COMPUTED,
+        Status.NOT_STATED,
         "the rule book states no allowance 'torque'",
     )
     yield (
@@ -79,10 +79,15 @@ def _of_the_method(quantity: str, found: SegmentResults, scope: Scope) -> Iterat
     )
 
 
-def _of_contact(quantity: str, found: SegmentResults, _: Scope) -> Iterator[_Fault]:
+def _of_contact(quantity: str, found: SegmentResults, scope: Scope) -> Iterator[_Fault]:
     feels_contact = quantity not in AIR_LOADS
     yield (
-        feels_contact and found.reaches_below,
+        quantity == "droop_stop_clearance" and found.rests,
+        Status.NOT_APPLICABLE,
+        "the blades rest on their droop stops all round: judged by the moment on the stop",
+    )
+    yield (
+        feels_contact and found.reaches_below and scope.gust_m_s > 0.0,
         Status.OUTSIDE_VALIDITY,
         "the ramp passes the region of the stops in wind; its quasi-static states are "
         "information only until the ramp is marched in gusts",

@@ -5,8 +5,10 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from planner.model.results import Status
+from planner.predict.study import NotAssessedError
 
 if TYPE_CHECKING:
+    from planner.model.results import Prediction
     from planner.model.rotor import Rotor
     from planner.predict.study import Inputs
 
@@ -15,11 +17,11 @@ SAIL_SHARE = 0.35
 memory), so that quasi-static flap is no prediction."""
 
 
-def stop_free_speed_rad_s(inputs: Inputs, rotor: Rotor) -> float:
+def stop_free_speed_rad_s(inputs: Inputs, rotor: Rotor, lift_off: Prediction) -> float:
     """Release speed of a retracting stop; lift-off speed in this wind with margin of a fixed one.
 
     Raises:
-        ValueError: the lift-off speed was not assessed, or the rule book states no margin.
+        NotAssessedError: the lift-off speed was not assessed, or the rule book states no margin.
     """
     if rotor.droop_stop is None:
         return SAIL_SHARE * float(inputs["stand.full_speed_rad_s"])
@@ -28,9 +30,8 @@ def stop_free_speed_rad_s(inputs: Inputs, rotor: Rotor) -> float:
     margin = inputs.requests.stop_free_margin
     if margin is None:
         msg = "the rule book states no stop_free_margin for fixed droop stops"
-        raise ValueError(msg)
-    lift_off = inputs.prior["lift_off_speed_in_wind"]
+        raise NotAssessedError(Status.NOT_STATED, msg)
     if lift_off.status[0] is not Status.OK:
         msg = f"lift_off_speed_in_wind is {lift_off.status[0].value}: {lift_off.reasons[0]}"
-        raise ValueError(msg)
+        raise NotAssessedError(lift_off.status[0], msg)
     return float(lift_off.high[0]) * (1.0 + margin)

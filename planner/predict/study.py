@@ -28,6 +28,9 @@ PATHS = frozenset(
         "rotor.up_stop",
         "rotor.control_stiffness_N_m_rad",
         "rotor.cyclic_authority_rad",
+        "rotor.design_maximum_rad_s",
+        "rotor.proven_rad_s",
+        "stand.drive",
         "stand.hub_height_m",
         "stand.mounting",
         "stand.full_speed_rad_s",
@@ -36,6 +39,15 @@ PATHS = frozenset(
     }
 )
 """Model paths that studies may take."""
+
+
+class NotAssessedError(ValueError):
+    """Something that a study builds on was not assessed; the study takes over its status."""
+
+    def __init__(self, status: Status, reason: str) -> None:
+        """Keep the status beside the words."""
+        super().__init__(reason)
+        self.status = status
 
 
 @dataclass(frozen=True)
@@ -54,16 +66,28 @@ class Inputs:
         """
         return self.values[path]
 
+    def allowance(self, allowance_id: str) -> tuple[float, float]:
+        """Ends of a model allowance.
+
+        Raises:
+            NotAssessedError: the rule book states none.
+        """
+        found = self.requests.allowances.get(allowance_id)
+        if found is None:
+            msg = f"the rule book states no allowance '{allowance_id}'"
+            raise NotAssessedError(Status.NOT_STATED, msg)
+        return found
+
     def bounds(self, quantity: str) -> tuple[float, float, float]:
         """Value, low and high of a whole-run quantity of a study that is needed.
 
         Raises:
-            ValueError: the quantity was not assessed, so that nothing can build on it.
+            NotAssessedError: the quantity was not assessed, so that nothing can build on it.
         """
         row = self.prior[quantity]
         if row.status[0] is not Status.OK:
             msg = f"{quantity} is {row.status[0].value}: {row.reasons[0]}"
-            raise ValueError(msg)
+            raise NotAssessedError(row.status[0], msg)
         return float(row.value[0]), float(row.low[0]), float(row.high[0])
 
 

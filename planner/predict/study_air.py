@@ -22,19 +22,15 @@ if TYPE_CHECKING:
     from planner.model.plan import Site
     from planner.model.results import Prediction
 
-STILL_HEIGHT_SHARE = 0.1
-"""Anemometer and hub closer in height than this share need no wind profile."""
-
 
 def run(inputs: Inputs) -> Mapping[str, Prediction]:
-    """Density and speed of sound over the temperature range, wind from calm to gust."""
+    """Density and speed of sound over the temperature range."""
     site: Site = inputs["site"]
     pressure = site_pressure_pa(site)
     spread = site.temperature_spread_K
     temperature = site.temperature_K + np.array([0.0, spread, -spread])
     density = moist_air_density_kg_m3(pressure, temperature, site.relative_humidity)
     sound = speed_of_sound_m_s(pressure, temperature, site.relative_humidity)
-    mean, greatest = winds_at_hub(site, inputs["stand.hub_height_m"])
     return {
         "air_density": single(
             "air_density",
@@ -52,7 +48,6 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
             high=float(sound[1]),
             hand=20.05 * math.sqrt(site.temperature_K),
         ),
-        "wind_at_hub": single("wind_at_hub", "air", mean, low=0.0, high=greatest),
     }
 
 
@@ -75,4 +70,11 @@ def winds_at_hub(site: Site, hub_height_m: float) -> tuple[float, float]:
     return float(mean), float(greatest)
 
 
-AIR = Study("air", 1, ("site", "stand.hub_height_m"), (), run)
+def run_wind(inputs: Inputs) -> Mapping[str, Prediction]:
+    """Wind at the hub: calm, mean, and gust with the anemometer's error."""
+    mean, greatest = winds_at_hub(inputs["site"], inputs["stand.hub_height_m"])
+    return {"wind_at_hub": single("wind_at_hub", "wind", mean, low=0.0, high=greatest)}
+
+
+AIR = Study("air", 1, ("site",), (), run)
+WIND = Study("wind", 1, ("site", "stand.hub_height_m"), (), run_wind)

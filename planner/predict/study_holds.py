@@ -16,9 +16,9 @@ from planner.predict.segment_results import SegmentResults, segment_results
 from planner.predict.solving import Solved, solve_run
 from planner.predict.state_faults import AIR_LOADS, STOPS, Scope, state_fault
 from planner.predict.stations import STATIONS
-from planner.predict.stop_free import stop_free_speed_rad_s
 from planner.predict.study import Inputs, Study
 from planner.predict.study_inertia import lift_slope_per_rad, moment_by_trapezia, section_at
+from planner.rotor.blade_views import flap_inertia
 from planner.rotor.setup import RotorArrays, rotor_arrays
 
 if TYPE_CHECKING:
@@ -47,12 +47,12 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     segments: Sequence[Segment] = inputs["segments"]
     air = air_of(inputs)
     arrays = rotor_arrays(rotor, STATIONS)
-    counts_from = stop_free_speed_rad_s(inputs, rotor) if air.gust_m_s > 0.0 else 0.0
+    counts_from = inputs.bounds("stop_free_speed")[0]
     solved = solve_run(inputs, arrays, air, counts_from)
     rows = {quantity.id: Rows(quantity.id, _ID) for quantity in ROTOR}
     for index, segment in enumerate(segments):
         found = segment_results(index, segment, rotor, solved, counts_from)
-        hand = _hand(found, arrays, inputs, air)
+        hand = _hand(found, arrays, inputs)
         _rotor_rows(rows, found, hand, inputs)
         _force_row(rows["root_centrifugal_force"], segment, arrays, inputs)
         _cyclic_row(rows["cyclic_needed"], found, solved)
@@ -60,14 +60,14 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     return {quantity: filled.prediction() for quantity, filled in rows.items()}
 
 
-def _hand(found: SegmentResults, arrays: RotorArrays, inputs: Inputs, air: Air) -> HoverHand:
+def _hand(found: SegmentResults, arrays: RotorArrays, inputs: Inputs) -> HoverHand:
     if found.segment.kind != "hold" or inputs["stand.mounting"] != "upright":
         return HoverHand()
     point = found.solved.nominal.points[int(found.nominal[0])]
     blade: Blade = inputs["rotor"].blade
     if not compares(point, inputs["stand.full_speed_rad_s"], blade.radius_m):
         return HoverHand()
-    return hover_hand(arrays, blade, point, air)
+    return hover_hand(arrays, blade, point)
 
 
 def _rotor_rows(
@@ -109,13 +109,37 @@ def _numbers(quantity: str, found: SegmentResults, inputs: Inputs) -> tuple[floa
     """Value, low and high over the states that count."""
     if found.is_empty:
         return math.nan, math.nan, math.nan
+    if quantity in {"torque", "power"}:
+        return _shaft(quantity, found, inputs)
     nominal, every = found.nominals(quantity), found.all(quantity)
     value = float(nominal.min() if _DANGER[quantity] == "low" else nominal.max())
-    low, high = float(every.min()), float(every.max())
-    if quantity in {"torque", "power"}:
-        ends = inputs.requests.allowances.get("torque", (math.nan, math.nan))
-        low, high = min(low * ends[0], low * ends[1]), max(high * ends[0], high * ends[1])
-    return value, low, high
+    return value, float(every.min()), float(every.max())
+
+
+def _shaft(quantity: str, found: SegmentResults, inputs: Inputs) -> tuple[float, float, float]:
+    """Torque or power: air load with its allowance, and what the ramp's acceleration takes."""
+    ends = inputs.requests.allowances.get("torque", (math.nan, math.nan))
+    extra = _acceleration_torque(found.segment, inputs)
+    nominal, every = found.nominals("torque") + extra, found.all("torque")
+    low = np.minimum(every * ends[0], every * ends[1]) + extra
+    high = np.maximum(every * ends[0], every * ends[1]) + extra
+    if quantity == "power":
+        speeds = found.all_speeds_rad_s
+        nominal = nominal * speeds[: nominal.size]
+        low, high = low * speeds, high * speeds
+    worst = nominal[int(np.argmax(np.abs(nominal)))]
+    return float(worst), float(low.min()), float(high.max())
+
+
+def _acceleration_torque(segment: Segment, inputs: Inputs) -> float:
+    """Torque that the drive adds to change the rotor's speed; none where it coasts [N m]."""
+    coasts = segment.kind == "stop" and not inputs["shutdown"].powered
+    if segment.kind == "hold" or coasts or segment.duration_s <= 0.0:
+        return 0.0
+    rotor: Rotor = inputs["rotor"]
+    blade = float(flap_inertia(rotor.blade, 0.0).second_moment_kg_m2)
+    inertia = rotor.n_blades * blade + inputs["stand.drive"].inertia_kg_m2
+    return float(inertia * (segment.to_rad_s - segment.from_rad_s) / segment.duration_s)
 
 
 def _force_row(rows: Rows, segment: Segment, arrays: RotorArrays, inputs: Inputs) -> None:
@@ -192,13 +216,14 @@ def _flap_constants(
     span = slope * arrays.chord_m * arrays.station_radius_m * arrays.arm_m**2
     from_air = float(np.sum(span * arrays.station_width_m)) / (4.0 * ratio * inertia)
     damper = hub.damper_N_m_s_rad / (2.0 * ratio * inertia * top)
-    density = air.density_kg_m3
+    states = (air.nominal, *air.ends)
+    density = [state.density_kg_m3 for state in states]
     rows["flap_frequency_ratio"].add(label, ratio, speed_rad_s=top, hand=hand.frequency_ratio)
     rows["flap_damping_ratio"].add(
         label,
         density[0] * from_air + damper,
-        low=density[1] * air.load_factor[0] * from_air + damper,
-        high=density[2] * air.load_factor[1] * from_air + damper,
+        low=density[1] * states[1].load_factor * from_air + damper,
+        high=density[2] * states[2].load_factor * from_air + damper,
         speed_rad_s=top,
         hand=hand.damping_ratio + damper,
     )
@@ -211,9 +236,11 @@ HOLDS = Study(
         "segments",
         "rotor",
         "stand.mounting",
+        "stand.drive",
+        "shutdown",
         "stand.full_speed_rad_s",
         "stand.speed_gauge_error_rad_s",
     ),
-    ("air", "stops"),
+    ("air", "wind", "stops"),
     run,
 )

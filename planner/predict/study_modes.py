@@ -33,6 +33,8 @@ TOP_SHARE = 1.2
 GRID_SPEEDS = 61
 GREATEST_HARMONIC = 8
 """Blade modes are held against harmonics up to this one."""
+SLOWEST_SHARE = 1e-3
+"""A window that reaches down to rest is held against harmonics from this share of its top."""
 FAMILY_MODES = {"flap": 3, "lag": 2, "torsion": 1}
 
 
@@ -58,17 +60,15 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
         q: Rows(q, _ID)
         for q in ("mode_frequency", "mode_damping", "harmonic_spacing", "crossing_speed")
     }
-    allowance = inputs.requests.allowances.get("frequency")
+    allowance = inputs.allowance("frequency")
     for track in tracks(inputs, speeds.reshape(-1)):
         at_holds = track.frequency_rad_s.reshape(speeds.shape)
         for hold, speed, frequency in zip(holds, speeds, at_holds, strict=True):
             label = Labels(segment=hold.id, mode=track.name)
-            fault = _fault(track, allowance)
-            if fault or allowance is None:
+            status, reason = mode_fault(track.given)
+            if status is not Status.OK:
                 for quantity in ("mode_frequency", "mode_damping", "harmonic_spacing"):
-                    rows[quantity].flag(
-                        label, Status.NOT_COMPUTED, fault, speed_rad_s=hold.to_rad_s
-                    )
+                    rows[quantity].flag(label, status, reason, speed_rad_s=hold.to_rad_s)
                 continue
             _frequency_row(
                 rows["mode_frequency"],
@@ -116,7 +116,7 @@ def tracks(inputs: Inputs, speed_rad_s: FloatArray) -> list[Track]:
             found.append(Track(name, prefix, per_mode[:, order], (), None))
     n = inputs["rotor.n_blades"]
     for mode in inputs["stand.modes"]:
-        harmonics = (1, n, 2 * n) if mode.family == "stand" else (n, 2 * n)
+        harmonics = given_harmonics(mode, n)
         constant = np.full(speed_rad_s.shape, mode.frequency_rad_s)
         found.append(
             Track(
@@ -129,6 +129,12 @@ def tracks(inputs: Inputs, speed_rad_s: FloatArray) -> list[Track]:
             )
         )
     return found
+
+
+def given_harmonics(mode: GivenMode, n_blades: int) -> tuple[int, ...]:
+    """Harmonics that excite a given mode: unbalance once per turn shakes the stand only."""
+    blades = (n_blades, 2 * n_blades)
+    return (1, *blades) if mode.family == "stand" else blades
 
 
 def blade_families(
@@ -161,20 +167,21 @@ def blade_families(
     ]
 
 
-def _fault(track: Track, allowance: tuple[float, float] | None) -> str:
-    if track.given is not None and track.given.rotor_fitted is None:
+def mode_fault(given: GivenMode | None) -> tuple[Status, str]:
+    """Why a given mode cannot be judged; OK where it can, and for computed modes."""
+    if given is None or given.rotor_fitted:
+        return Status.OK, ""
+    if given.rotor_fitted is None:
         return (
-            "the stand file does not say whether the rotor's mass was fitted when this mode "
-            "was found (rotor_fitted)"
+            Status.NOT_STATED,
+            "the stand file does not say whether the rotor's mass was fitted when this mode was "
+            "found (rotor_fitted)",
         )
-    if track.given is not None and not track.given.rotor_fitted:
-        return (
-            "the mode was found without the rotor's mass and is not corrected for it; give "
-            "the mode with the rotor fitted"
-        )
-    if allowance is None:
-        return "the rule book states no allowance 'frequency'"
-    return ""
+    return (
+        Status.NOT_COMPUTED,
+        "the mode was found without the rotor's mass and is not corrected for it; give the mode "
+        "with the rotor fitted",
+    )
 
 
 _Window = tuple["FloatArray", "FloatArray", tuple[float, float]]
@@ -238,12 +245,12 @@ def _flap_damping(rows: Rows, label: Labels, hold: Segment, inputs: Inputs) -> N
 
 def _spacing_rows(rows: Rows, track: Track, label: Labels, window: _Window) -> None:
     speed, frequency, allowance = window
-    if speed.min() <= 0.0:
+    if speed.max() <= 0.0:
         rows.flag(
             label, Status.NOT_APPLICABLE, "no harmonics at rest", speed_rad_s=float(speed[0])
         )
         return
-    per_turn = frequency / speed
+    per_turn = frequency / np.maximum(speed, SLOWEST_SHARE * speed.max())
     lowest = float(per_turn.min()) * allowance[0]
     highest = float(per_turn.max()) * allowance[1]
     for n in track.harmonics or range(1, GREATEST_HARMONIC + 1):

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from typing import TYPE_CHECKING
 
 from planner.model.results import Labels, Status
@@ -12,20 +11,11 @@ from planner.predict.study import Inputs, Study
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
-    from planner.model.plan import KeepOut, Segment, Shutdown, Site
+    from planner.model.plan import KeepOut, Segment, Shutdown
     from planner.model.results import Prediction
-    from planner.model.rotor import Blade
 
 _ID = "schedule"
-_SEGMENT_QUANTITIES = (
-    "tip_speed",
-    "tip_mach",
-    "advancing_tip_mach",
-    "advance_ratio",
-    "speed_step",
-    "collective_step",
-    "ramp_rate",
-)
+_SEGMENT_QUANTITIES = ("speed_step", "collective_step", "collective_rate", "ramp_rate")
 
 
 def run(inputs: Inputs) -> Mapping[str, Prediction]:
@@ -33,7 +23,6 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     rows = {quantity: Rows(quantity, _ID) for quantity in _SEGMENT_QUANTITIES}
     segments: Sequence[Segment] = inputs["segments"]
     for segment in segments:
-        _tip(rows, segment, inputs)
         if segment.kind != "hold":
             _ramp(rows, segment, inputs)
     predictions = {quantity: filled.prediction() for quantity, filled in rows.items()}
@@ -56,80 +45,46 @@ def _whole_run(inputs: Inputs) -> dict[str, Prediction]:
     return {
         "card_speed": single("card_speed", _ID, top, low=top - error, high=widest + error),
         "brake_speed": brake.prediction(),
+        **_trip(inputs, (top, widest + error)),
     }
 
 
-def _tip(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
-    blade: Blade = inputs["rotor.blade"]
-    site: Site = inputs["site"]
-    error = inputs["stand.speed_gauge_error_rad_s"]
-    label = Labels(segment=segment.id)
-    top = max(segment.from_rad_s, segment.to_rad_s)
-    tips = [
-        blade.radius_m * speed
-        for speed in (top, max(0.0, segment.lowest_rad_s - error), segment.highest_rad_s + error)
-    ]
-    sound, slow_sound, fast_sound = inputs.bounds("speed_of_sound")
-    mean, _, gust = inputs.bounds("wind_at_hub")
-    dry_sound = 20.05 * math.sqrt(site.temperature_K)
-    rows["tip_speed"].add(
-        label,
-        tips[0],
-        low=tips[1],
-        high=tips[2],
-        speed_rad_s=top,
-        hand=math.pi * 2.0 * blade.radius_m * (top / (2.0 * math.pi)),
-    )
-    rows["tip_mach"].add(
-        label,
-        tips[0] / sound,
-        low=tips[1] / fast_sound,
-        high=tips[2] / slow_sound,
-        speed_rad_s=top,
-        hand=tips[0] / dry_sound,
-    )
-    rows["advancing_tip_mach"].add(
-        label,
-        (tips[0] + mean) / sound,
-        low=tips[1] / fast_sound,
-        high=(tips[2] + gust) / slow_sound,
-        speed_rad_s=top,
-    )
-    if tips[1] > 0.0:
-        rows["advance_ratio"].add(
-            label, mean / tips[0], low=0.0, high=gust / tips[1], speed_rad_s=top
-        )
+def _trip(inputs: Inputs, card_rad_s: tuple[float, float]) -> dict[str, Prediction]:
+    """Where the overspeed trip stands between the card's speeds and the proven one."""
+    trip = inputs["stand.drive"].overspeed_trip_rad_s
+    rows = {q: Rows(q, _ID) for q in ("trip_above_card", "trip_below_proven")}
+    if trip is None:
+        for filled in rows.values():
+            reason = "the stand file states no overspeed trip"
+            filled.flag(Labels(), Status.NOT_STATED, reason)
     else:
-        rows["advance_ratio"].flag(
-            label,
-            Status.NOT_APPLICABLE,
-            "the rotor comes from, goes to or stays at rest: no advance ratio",
-            speed_rad_s=top,
-        )
+        proven = min(inputs["rotor.design_maximum_rad_s"], inputs["rotor.proven_rad_s"])
+        target, highest = card_rad_s
+        rows["trip_above_card"].add(Labels(), trip - target, low=trip - highest)
+        rows["trip_below_proven"].add(Labels(), proven - trip)
+    return {quantity: filled.prediction() for quantity, filled in rows.items()}
 
 
 def _ramp(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
-    full = inputs["stand.full_speed_rad_s"]
     shutdown: Shutdown = inputs["shutdown"]
     label = Labels(segment=segment.id)
     top = max(segment.from_rad_s, segment.to_rad_s)
-    rise = max(0.0, segment.to_rad_s - segment.from_rad_s) / full
-    more = max(0.0, segment.to_collective_rad - segment.from_collective_rad)
+    rise = max(0.0, segment.to_rad_s - segment.from_rad_s) / inputs["stand.full_speed_rad_s"]
+    change = segment.to_collective_rad - segment.from_collective_rad
     rows["speed_step"].add(label, rise, speed_rad_s=top)
-    rows["collective_step"].add(label, more, speed_rad_s=top)
+    rows["collective_step"].add(label, max(0.0, change), speed_rad_s=top)
+    if segment.duration_s <= 0.0:
+        for quantity in ("ramp_rate", "collective_rate"):
+            rows[quantity].flag(
+                label, Status.NOT_STATED, "the ramp has no duration", speed_rad_s=top
+            )
+        return
+    rows["collective_rate"].add(label, abs(change) / segment.duration_s, speed_rad_s=top)
     if segment.kind == "stop" and not shutdown.powered:
-        rows["ramp_rate"].flag(
-            label,
-            Status.NOT_APPLICABLE,
-            "an unpowered stop has no prescribed rate",
-            speed_rad_s=top,
-        )
-    elif segment.duration_s > 0.0:
-        rows["ramp_rate"].add(label, rate_rad_s2(segment), speed_rad_s=top)
+        reason = "an unpowered stop has no prescribed rate"
+        rows["ramp_rate"].flag(label, Status.NOT_APPLICABLE, reason, speed_rad_s=top)
     else:
-        rows["ramp_rate"].flag(
-            label, Status.NOT_COMPUTED, "the ramp has no duration", speed_rad_s=top
-        )
+        rows["ramp_rate"].add(label, rate_rad_s2(segment), speed_rad_s=top)
 
 
 def rate_rad_s2(segment: Segment) -> float:
@@ -209,11 +164,12 @@ SCHEDULE = Study(
         "segments",
         "keep_outs",
         "shutdown",
-        "site",
-        "rotor.blade",
+        "rotor.design_maximum_rad_s",
+        "rotor.proven_rad_s",
+        "stand.drive",
         "stand.full_speed_rad_s",
         "stand.speed_gauge_error_rad_s",
     ),
-    ("air",),
+    (),
     run,
 )

@@ -15,7 +15,8 @@ from planner.model.results import Labels, Status
 from planner.predict.cases import Point, air_of, to_cases
 from planner.predict.rows import Rows
 from planner.predict.stations import STATIONS
-from planner.predict.study import Inputs, Study
+from planner.predict.stop_free import stop_free_speed_rad_s
+from planner.predict.study import Inputs, NotAssessedError, Study
 from planner.rotor.lift_off import lift_off_in_wind, still_air_lift_off
 from planner.rotor.result import FlapState
 from planner.rotor.setup import RotorArrays, rotor_arrays
@@ -36,7 +37,7 @@ _LEVEL = "wind on a rotor with a level axis also blows through the disc, which i
 
 
 def run(inputs: Inputs) -> Mapping[str, Prediction]:
-    """Rest moment and lift-off speeds, or that the hub has no stop."""
+    """Rest moment, lift-off speeds, and where the stops are left behind."""
     rotor: Rotor = inputs["rotor"]
     rows = {quantity: Rows(quantity, _ID) for quantity in _QUANTITIES}
     if rotor.droop_stop is None:
@@ -46,23 +47,32 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
         air, arrays = air_of(inputs), rotor_arrays(rotor, STATIONS)
         _rest_moment(rows["droop_stop_rest_moment"], inputs, arrays, (air, rotor.droop_stop))
         _lift_off(rows, inputs, arrays, (air, rotor.droop_stop))
-    return {quantity: filled.prediction() for quantity, filled in rows.items()}
+    found = {quantity: filled.prediction() for quantity, filled in rows.items()}
+    return {**found, "stop_free_speed": _stop_free(inputs, found["lift_off_speed_in_wind"])}
 
 
-def _cases(points: Sequence[Point], inputs: Inputs, air: Air, droop: Stop) -> Cases:
+def _stop_free(inputs: Inputs, lift_off: Prediction) -> Prediction:
+    rows = Rows("stop_free_speed", _ID)
+    try:
+        rows.add(Labels(), stop_free_speed_rad_s(inputs, inputs["rotor"], lift_off))
+    except NotAssessedError as refusal:
+        rows.flag(Labels(), refusal.status, str(refusal))
+    return rows.prediction()
+
+
+def _cases(points: Sequence[Point], inputs: Inputs, droop: Stop) -> Cases:
     """Cases at the static stop angle, whatever their speed."""
     rotor: Rotor = inputs["rotor"]
     static = replace(droop, retraction=None)
-    return to_cases(points, (static, rotor.up_stop), inputs["stand.mounting"], air.sound_m_s)
+    return to_cases(points, (static, rotor.up_stop), inputs["stand.mounting"])
 
 
 def _points(pitches: Sequence[float], winds: Sequence[float], air: Air) -> list[Point]:
     """The nominal state (first pitch, strongest wind), then both ends of the load allowance."""
-    ends = ((air.density_kg_m3[1], air.load_factor[0]), (air.density_kg_m3[2], air.load_factor[1]))
-    nominal = (pitches[0], winds[-1], (air.density_kg_m3[0], 1.0))
+    nominal = (pitches[0], winds[-1], air.nominal)
     return [
-        Point(0, 0.0, pitch, Cyclic(trimmed=False), wind, density, factor)
-        for pitch, wind, (density, factor) in (nominal, *product(pitches, winds, ends))
+        Point(0, 0.0, pitch, Cyclic(trimmed=False), wind, state)
+        for pitch, wind, state in (nominal, *product(pitches, winds, air.ends))
     ]
 
 
@@ -78,7 +88,7 @@ def _rest_moment(rows: Rows, inputs: Inputs, arrays: RotorArrays, known: tuple[A
     pitches = pitches_at_rest(inputs["segments"])
     points = _points(pitches[:1], [0.0], air)[:1]
     points += _points(pitches, sorted({air.wind_m_s, air.gust_m_s}), air)
-    result = trim(arrays, _cases(points, inputs, air, droop))
+    result = trim(arrays, _cases(points, inputs, droop))
     moments = result.stop_moment_N_m
     numbers = (float(moments[0]), float(np.min(moments)), float(np.max(moments)))
     if inputs["stand.mounting"] == "axis level" and air.gust_m_s > 0.0:
@@ -128,7 +138,7 @@ def _lift_off(
         ("lift_off_speed_still_air", [0.0], still_air_lift_off),
         ("lift_off_speed_in_wind", sorted({air.wind_m_s, air.gust_m_s}), lift_off_in_wind),
     ):
-        cases = _cases(_points(pitches, winds, air), inputs, air, droop)
+        cases = _cases(_points(pitches, winds, air), inputs, droop)
         found = search(arrays, cases, np.full(cases.count, top))
         speeds = found.speed_rad_s
         if inputs["stand.mounting"] == "axis level" and winds[-1] > 0.0:
@@ -149,7 +159,13 @@ def _lift_off(
 STOPS = Study(
     _ID,
     1,
-    ("segments", "rotor", "stand.mounting", "stand.speed_gauge_error_rad_s"),
-    ("air",),
+    (
+        "segments",
+        "rotor",
+        "stand.mounting",
+        "stand.full_speed_rad_s",
+        "stand.speed_gauge_error_rad_s",
+    ),
+    ("air", "wind"),
     run,
 )

@@ -135,7 +135,7 @@ def stand() -> Stand:
         full_speed_rad_s=40.0,
         speed_gauge_error_rad_s=0.1,
         modes=(mode("sway", "stand", 70.0), mode("twist", "shaft", 300.0)),
-        drive=Drive("motor", 5.0, 4_000.0, 150_000.0, 45.0, None),
+        drive=Drive("motor", 5.0, 4_000.0, 150_000.0, 45.0, 90.0, 42.5),
         brake_below_rad_s=16.0,
         ratings=Ratings(20_000.0, 3_000.0),
         obstructions=(),

@@ -10,7 +10,7 @@ import pytest
 from planner.judge.judge import judge
 from planner.model.plan import segments
 from planner.model.results import Status, Verdict
-from planner.model.rules import Limit, Rule
+from planner.model.rules import Limit, Rule, Where
 from planner.predict.register import REGISTER
 
 NAME = "articulated-run-up"
@@ -18,7 +18,9 @@ NAME = "articulated-run-up"
 
 def generous_rule(quantity):
     """A rule that every number would pass."""
-    where = ("hold", "ramp", "stop") if "segment" in quantity.axes else ("run",)
+    where: tuple[Where, ...] = ("run",)
+    if "segment" in quantity.axes:
+        where = ("hold", "ramp", "stop")
     return Rule(
         id="generous", kind="predicted", hazard_class="loads", title="x", why="x", basis="x",
         where=where, quantity=quantity.id, sense="at most", limit=Limit(constant=1e30),

@@ -173,7 +173,7 @@ def _stand() -> Stand:
     )
     return Stand(
         "Invented stand 2", 8.0, "upright", FULL_SPEED, to_si(1.0, "rpm"), modes,
-        Drive("electric drive", 4.5, 9000.0, 4e5, 43.0, to_si(405.0, "rpm")),
+        Drive("electric drive", 4.5, 9000.0, 4e5, 43.0, 80.0, to_si(405.0, "rpm")),
         to_si(150.0, "rpm"), Ratings(4e4, 2e4),
         (Obstruction("mast", 0.0, 9.0, 10.0),), (Obstruction("control room", 1.0, 90.0, 2.0),),
     )  # fmt: skip
