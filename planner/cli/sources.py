@@ -13,6 +13,7 @@ from planner.files.faults import PlanFaults
 from planner.files.read import read_plan
 from planner.files.start import StarterRefusedError
 from planner.files.write import write_whole
+from planner.judge.status import ExitStatus
 from planner.paper.texts import unprintable
 from planner.predict.register import REFERENCES, REGISTER
 from planner.record.layout import RecordError, build, from_bytes
@@ -21,14 +22,13 @@ if TYPE_CHECKING:
     from collections.abc import Iterator
     from pathlib import Path
 
-UNUSABLE = 2
 PATIENCE_S = 1.0
 
 
 def fail(message: str) -> NoReturn:
     """Print a message on stderr and end with the status of unusable input."""
     print(message, file=sys.stderr)
-    raise typer.Exit(UNUSABLE)
+    raise typer.Exit(int(ExitStatus.BAD_INPUT))
 
 
 @contextmanager

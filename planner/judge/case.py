@@ -60,10 +60,7 @@ class Case:
     def spans(self) -> Mapping[str, Span]:
         """Speeds of each segment: its window and the error of the speed gauge."""
         error = abs(self.plan.stand.speed_gauge_error_rad_s)
-        return {
-            s.id: Span(max(0.0, s.lowest_rad_s - error), s.highest_rad_s + error)
-            for s in self.segments.values()
-        }
+        return {s.id: Span(*s.ends_rad_s(error)) for s in self.segments.values()}
 
     @cached_property
     def whole_run(self) -> Span:

@@ -12,7 +12,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from planner.judge.selection import crosses
 from planner.model.rules import HAZARD_CLASSES
 
 if TYPE_CHECKING:
@@ -95,7 +94,7 @@ def _resonance(segment: Segment, case: Case) -> tuple[Group, ...]:
     groups: list[Group] = []
     if any(mode.family == "stand" for mode in case.plan.stand.modes):
         groups.append((Evidence("crossing_cover", "stand", "1"),))
-    if any(crosses(segment, band) for band in case.plan.keep_outs):
+    if any(segment.enters(band) for band in case.plan.keep_outs):
         groups.append((Evidence("band_rate"), Evidence("band_time")))
     return tuple(groups)
 

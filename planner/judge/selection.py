@@ -19,7 +19,7 @@ from planner.model.results import Labels, Status
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
-    from planner.model.plan import KeepOut, Segment
+    from planner.model.plan import Segment
     from planner.model.results import Quantity
     from planner.model.rules import Rule
 
@@ -51,12 +51,6 @@ def select(rule: Rule, quantity: Quantity, rows: Sequence[Row], case: Case) -> S
     ]
     gaps = _gaps(rule, quantity, picked, (reach, case)) if "segment" in quantity.axes else []
     return Selection((*picked, *gaps), speeds)
-
-
-def crosses(segment: Segment, band: KeepOut) -> bool:
-    """Tell whether a segment's speeds enter a keep-out band."""
-    low, high = sorted((segment.from_rad_s, segment.to_rad_s))
-    return low < band.to_rad_s and high > band.from_rad_s
 
 
 def _means_kind(rule: Rule, kind: str) -> bool:
@@ -124,7 +118,7 @@ def _wanted(
     if "band" in quantity.axes:
         bands = case.plan.keep_outs
         yield from (
-            _Wanted(band=b.id) for b in bands if segment.kind == "hold" or crosses(segment, b)
+            _Wanted(band=b.id) for b in bands if segment.kind == "hold" or segment.enters(b)
         )
         return
     if "mode" not in quantity.axes:

@@ -174,6 +174,21 @@ class Segment:
     """How often the run passes this segment, repeats counted."""
 
     @property
+    def top_rad_s(self) -> float:
+        """Highest target speed that this segment reaches."""
+        return max(self.from_rad_s, self.to_rad_s)
+
+    def ends_rad_s(self, gauge_error_rad_s: float) -> tuple[float, float]:
+        """Lowest and highest speed, hold window and gauge error included."""
+        lowest = max(0.0, self.lowest_rad_s - gauge_error_rad_s)
+        return lowest, self.highest_rad_s + gauge_error_rad_s
+
+    def enters(self, band: KeepOut) -> bool:
+        """Tell whether its target speeds enter a keep-out band."""
+        low, high = sorted((self.from_rad_s, self.to_rad_s))
+        return low < band.to_rad_s and high > band.from_rad_s
+
+    @property
     def lowest_rad_s(self) -> float:
         """Lower end of the speeds that this segment covers, hold window included."""
         return max(0.0, min(self.from_rad_s, self.to_rad_s) - self.window.speed_rad_s)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from enum import Enum
 from typing import TYPE_CHECKING, Literal
@@ -107,9 +107,6 @@ class Requests:
 
     allowances: Mapping[str, tuple[float, float]]
     stop_free_margin: float | None
-
-
-Run = Callable[..., Predictions]
 
 
 @dataclass(frozen=True)

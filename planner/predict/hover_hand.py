@@ -10,7 +10,8 @@ import numpy as np
 
 from planner.methods import hand_checks, hand_checks_flap, hand_checks_hover
 from planner.model.rotor import SymmetricSection
-from planner.predict.study_inertia import lift_slope_per_rad, section_at
+from planner.predict.study_inertia import moment_by_trapezia
+from planner.rotor.blade_views import lift_slope_per_rad, section_at
 
 if TYPE_CHECKING:
     from planner.model.rotor import Blade, Section
@@ -64,7 +65,7 @@ def hover_hand(rotor: RotorArrays, blade: Blade, point: Point) -> HoverHand:
     force = point.air.density_kg_m3 * math.pi * blade.radius_m**2 * tip**2
     form = _flap_blade(rotor, blade, point, (slope, tip_fraction))
     damping = float(hand_checks_flap.flap_damping_ratio(form))
-    frequency = float(hand_checks.flap_frequency_ratio(_hinge(rotor), speed))
+    frequency = float(hand_checks.flap_frequency_ratio(hinge_by_hand(rotor, blade), speed))
     coning = float(
         hand_checks_flap.coning_rad(
             form,
@@ -76,7 +77,7 @@ def hover_hand(rotor: RotorArrays, blade: Blade, point: Point) -> HoverHand:
                 inflow,
                 0.0,
                 0.0,
-                float(hand_checks.steady_flap_moment(_hinge(rotor), speed)),
+                float(hand_checks.steady_flap_moment(hinge_by_hand(rotor, blade), speed)),
             ),
         )
     )
@@ -106,14 +107,15 @@ def _thrust(
     return thrust, inflow, tip
 
 
-def _hinge(rotor: RotorArrays) -> hand_checks.FlapHinge:
+def hinge_by_hand(rotor: RotorArrays, blade: Blade) -> hand_checks.FlapHinge:
+    """Blade and hinge with mass moments from a trapezoidal sum over the stations."""
     hub = rotor.hub
     return hand_checks.FlapHinge(
-        rotor.flap_inertia_kg_m2,
-        rotor.first_moment_kg_m,
-        hub.hinge_m,
-        hub.spring_N_m_rad,
-        hub.spring_neutral_rad,
+        inertia_kg_m2=moment_by_trapezia(blade, hub.hinge_m, 2),
+        first_moment_kg_m=moment_by_trapezia(blade, hub.hinge_m, 1),
+        hinge_offset_m=hub.hinge_m,
+        spring_N_m_rad=hub.spring_N_m_rad,
+        spring_neutral_rad=hub.spring_neutral_rad,
     )
 
 
@@ -123,9 +125,13 @@ def _flap_blade(
     slope_per_rad, tip_fraction = slope_and_tip
     chord = rotor.blade_area_m2 / (rotor.n_blades * blade.radius_m)
     lock = hand_checks.lock_number(
-        point.air.density_kg_m3, slope_per_rad, chord, blade.radius_m, rotor.flap_inertia_kg_m2
+        point.air.density_kg_m3,
+        slope_per_rad,
+        chord,
+        blade.radius_m,
+        moment_by_trapezia(blade, rotor.hub.hinge_m, 2),
     )
-    ratio = hand_checks.flap_frequency_ratio(_hinge(rotor), point.speed_rad_s)
+    ratio = hand_checks.flap_frequency_ratio(hinge_by_hand(rotor, blade), point.speed_rad_s)
     return hand_checks_flap.FlapBlade(
         lock,
         np.square(ratio),

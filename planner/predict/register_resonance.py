@@ -75,7 +75,6 @@ RESONANCE = (
         validity="as for the natural frequencies",
         source="common practice",
         hand_check="none: read off the fan chart",
-        allowance="frequency",
     ),
     Quantity(
         id="crossing_cover",
@@ -87,8 +86,8 @@ RESONANCE = (
         study="passages",
         method="For each ramp and each harmonic that excites a stand or shaft mode: the speeds at "
         "which they meet, with the frequency allowance and the gauge's error, against the "
-        "declared keep-out bands. Inside a band: distance to its nearer edge. Outside all: not computed, "
-        "because the amplitude of a passage is not.",
+        "declared keep-out bands. Inside a band: distance to its nearer edge. Outside all: not "
+        "computed, because the amplitude of a passage is not.",
         validity="modes as given, with the rotor fitted",
         source="common practice",
         hand_check="none: one division and one subtraction",

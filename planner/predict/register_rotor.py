@@ -209,8 +209,8 @@ ROTOR = (
         "N m",
         "M",
         "high",
-        "Largest moment carried by the hinge spring or the equivalent root spring of a "
-        "hingeless blade; does not apply to a hinge without spring.",
+        "Largest moment carried by the equivalent root spring of a hingeless blade; does not "
+        "apply to other hubs, whose stops are judged.",
         "none of its own: spring times flap angle from precone",
     ),
     _rotor(
@@ -230,8 +230,9 @@ ROTOR = (
         "ν",
         "none",
         "√(1 + e S/I + k/(I Ω²)).",
-        "first flap mode of the elastic blade",
-        0.06,
+        "same closed form with mass moments from a trapezoidal sum over the stations; the elastic "
+        "blade's first mode stands under mode_frequency",
+        0.01,
         "",
     ),
     _rotor(

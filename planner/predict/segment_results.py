@@ -32,7 +32,6 @@ READ: dict[str, Callable[[TrimResult], FloatArray]] = {
     "torque": lambda r: r.loads.torque_N_m,
     "power": lambda r: r.power_W,
     "blade_loading": lambda r: r.blade_loading,
-    "root_centrifugal_force": lambda r: r.root_centrifugal_force_N,
     "hub_moment": lambda r: r.loads.hub_moment_peak_N_m,
     "root_flap_moment": lambda r: r.loads.root_flap_moment_N_m,
 }

@@ -5,7 +5,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
-from planner.model.canonical import digest
 from planner.model.results import Status
 
 if TYPE_CHECKING:
@@ -116,10 +115,6 @@ class Study:
         values = {path: _resolve(plan, segments, path) for path in self.takes}
         needed = {key: p for key, p in prior.items() if p.study in self.needs}
         return Inputs(values, requests, needed)
-
-    def key(self, inputs: Inputs) -> str:
-        """Digest of study, version and inputs: equal keys mean equal results."""
-        return digest({"study": self.id, "version": self.version, "inputs": inputs})
 
 
 def _resolve(plan: Plan, segments: tuple[Segment, ...], path: str) -> Any:  # noqa: ANN401

@@ -12,7 +12,7 @@ from planner.methods.atmosphere import (
     speed_of_sound_m_s,
     standard_pressure_pa,
 )
-from planner.methods.wind import wind_at_height_m_s
+from planner.methods.wind import gust_peak_m_s, wind_at_height_m_s
 from planner.predict.rows import single
 from planner.predict.study import Inputs, Study
 
@@ -62,12 +62,16 @@ def site_pressure_pa(site: Site) -> float:
 
 
 def winds_at_hub(site: Site, hub_height_m: float) -> tuple[float, float]:
-    """Mean wind, and gust plus anemometer error, carried to the hub height [m/s]."""
-    measured = np.array([site.wind_mean_m_s, site.wind_gust_m_s + site.anemometer_error_m_s])
-    mean, greatest = wind_at_height_m_s(
-        measured, site.anemometer_height_m, hub_height_m, site.shear_exponent
-    )
-    return float(mean), float(greatest)
+    """Mean wind, and gust plus anemometer error, at the hub height [m/s].
+
+    The profile is one of means. A gust is carried as the mean at the hub plus the spread as it
+    was read, and by the profile as well; the greater counts.
+    """
+    heights = (site.anemometer_height_m, hub_height_m, site.shear_exponent)
+    gust = site.wind_gust_m_s + site.anemometer_error_m_s
+    mean, scaled = wind_at_height_m_s(np.array([site.wind_mean_m_s, gust]), *heights)
+    carried = gust_peak_m_s(mean, gust - site.wind_mean_m_s)
+    return float(mean), float(max(scaled, carried))
 
 
 def run_wind(inputs: Inputs) -> Mapping[str, Prediction]:

@@ -17,8 +17,8 @@ from planner.predict.solving import Solved, solve_run
 from planner.predict.state_faults import AIR_LOADS, STOPS, Scope, state_fault
 from planner.predict.stations import STATIONS
 from planner.predict.study import Inputs, Study
-from planner.predict.study_inertia import lift_slope_per_rad, moment_by_trapezia, section_at
-from planner.rotor.blade_views import flap_inertia
+from planner.predict.study_inertia import moment_by_trapezia
+from planner.rotor.blade_views import flap_inertia, lift_slope_per_rad, section_at
 from planner.rotor.setup import RotorArrays, rotor_arrays
 
 if TYPE_CHECKING:
@@ -86,7 +86,7 @@ def _rotor_rows(
     }
     for quantity in (*AIR_LOADS, *_FLAP, *STOPS, "root_flap_moment"):
         label = Labels(segment=found.segment.id)
-        top = max(found.segment.from_rad_s, found.segment.to_rad_s)
+        top = found.segment.top_rad_s
         status, reason = state_fault(quantity, found, scope)
         if status is Status.NOT_APPLICABLE:
             rows[quantity].flag(label, status, reason, speed_rad_s=top)
@@ -144,8 +144,8 @@ def _acceleration_torque(segment: Segment, inputs: Inputs) -> float:
 
 def _force_row(rows: Rows, segment: Segment, arrays: RotorArrays, inputs: Inputs) -> None:
     error = inputs["stand.speed_gauge_error_rad_s"]
-    top = max(segment.from_rad_s, segment.to_rad_s)
-    speeds = (top, max(0.0, segment.lowest_rad_s - error), segment.highest_rad_s + error)
+    top = segment.top_rad_s
+    speeds = (top, *segment.ends_rad_s(error))
     forces = [speed**2 * arrays.centrifugal_factor_kg_m for speed in speeds]
     blade: Blade = inputs["rotor"].blade
     hinge = arrays.hub.hinge_m
@@ -163,7 +163,7 @@ def _force_row(rows: Rows, segment: Segment, arrays: RotorArrays, inputs: Inputs
 
 def _cyclic_row(rows: Rows, found: SegmentResults, solved: Solved) -> None:
     label = Labels(segment=found.segment.id)
-    top = max(found.segment.from_rad_s, found.segment.to_rad_s)
+    top = found.segment.top_rad_s
     if found.segment.kind != "hold":
         rows.flag(label, Status.NOT_APPLICABLE, "judged at holds", speed_rad_s=top)
         return
@@ -194,7 +194,7 @@ def _flap_constants(
     """Flap frequency and damping of the rigid blade."""
     arrays, air, hand = known
     label = Labels(segment=segment.id)
-    top = max(segment.from_rad_s, segment.to_rad_s)
+    top = segment.top_rad_s
     if segment.kind != "hold" or top <= 0.0:
         for quantity in ("flap_frequency_ratio", "flap_damping_ratio"):
             rows[quantity].flag(

@@ -7,17 +7,17 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from planner.methods.blade_inertia import lock_number, resample
-from planner.model.rotor import SymmetricSection
 from planner.predict.rows import single
 from planner.predict.stations import STATIONS
 from planner.predict.study import Inputs, Study
+from planner.rotor.blade_views import lift_slope_per_rad, section_at
 from planner.rotor.setup import rotor_arrays
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
     from planner.model.results import Prediction
-    from planner.model.rotor import Blade, Section
+    from planner.model.rotor import Blade
 
 _ID = "inertia"
 _REFERENCE_SHARE = 0.75
@@ -45,22 +45,6 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
         ),
         "lock_number": single("lock_number", _ID, locks[0], low=locks[1], high=locks[2]),
     }
-
-
-def section_at(blade: Blade, radius_m: float) -> Section:
-    """Section that applies at a radius (the outer one at a joint)."""
-    spans = [span for span in blade.sections if span.from_radius_m <= radius_m]
-    return (spans[-1] if spans else blade.sections[0]).section
-
-
-def lift_slope_per_rad(section: Section) -> float:
-    """Lift slope near zero angle at the lowest Mach number that is tabled."""
-    if isinstance(section, SymmetricSection):
-        return section.lift_slope_per_rad
-    angle, lift = section.angle_rad[0], section.lift[0]
-    near = np.radians(2.0)
-    rise = np.interp([-near, near], angle, lift)
-    return float((rise[1] - rise[0]) / (2.0 * near))
 
 
 def moment_by_trapezia(blade: Blade, hinge_m: float, power: int) -> float:

@@ -91,14 +91,7 @@ def fan_speeds(inputs: Inputs) -> FloatArray:
 def hold_speeds(holds: Sequence[Segment], gauge_error_rad_s: float) -> FloatArray:
     """Target, lowest and highest speed of each hold, shape (holds, 3) [rad/s]."""
     return np.array(
-        [
-            (
-                hold.to_rad_s,
-                max(0.0, hold.lowest_rad_s - gauge_error_rad_s),
-                hold.highest_rad_s + gauge_error_rad_s,
-            )
-            for hold in holds
-        ]
+        [(hold.to_rad_s, *hold.ends_rad_s(gauge_error_rad_s)) for hold in holds]
     ).reshape(-1, 3)
 
 

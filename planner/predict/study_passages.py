@@ -43,7 +43,7 @@ def _met(ramp: Segment, ends: Sequence[float], inputs: Inputs) -> tuple[float, f
     """Part of a resonance's speed range that a ramp passes, gauge error included [rad/s]."""
     error = inputs["stand.speed_gauge_error_rad_s"]
     low = max(min(ends) - error, min(ramp.from_rad_s, ramp.to_rad_s))
-    high = min(max(ends) + error, max(ramp.from_rad_s, ramp.to_rad_s))
+    high = min(max(ends) + error, ramp.top_rad_s)
     return (low, high) if low < high else None
 
 
@@ -56,7 +56,7 @@ def _row(
 ) -> None:
     mode, n = excited
     label = Labels(segment=ramp.id, mode=f"{mode.family} {mode.name}", harmonic=str(n))
-    top = max(ramp.from_rad_s, ramp.to_rad_s)
+    top = ramp.top_rad_s
     status, reason = mode_fault(mode)
     if status is not Status.OK:
         rows.flag(label, status, reason, speed_rad_s=top)

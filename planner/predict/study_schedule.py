@@ -68,7 +68,7 @@ def _trip(inputs: Inputs, card_rad_s: tuple[float, float]) -> dict[str, Predicti
 def _ramp(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
     shutdown: Shutdown = inputs["shutdown"]
     label = Labels(segment=segment.id)
-    top = max(segment.from_rad_s, segment.to_rad_s)
+    top = segment.top_rad_s
     rise = max(0.0, segment.to_rad_s - segment.from_rad_s) / inputs["stand.full_speed_rad_s"]
     change = segment.to_collective_rad - segment.from_collective_rad
     rows["speed_step"].add(label, rise, speed_rad_s=top)
@@ -112,11 +112,11 @@ def _band(rows: Mapping[str, Rows], band: KeepOut, inputs: Inputs) -> None:
         seconds += segment.times * seconds_inside(segment, band)
         if segment.kind == "hold":
             nominal = _gap(segment.to_rad_s, segment.to_rad_s, band)
-            worst = _gap(segment.lowest_rad_s - error, segment.highest_rad_s + error, band)
+            worst = _gap(*segment.ends_rad_s(error), band)
             rows["band_distance"].add(label, nominal, low=worst, speed_rad_s=segment.to_rad_s)
-        elif _crosses(segment, band):
+        elif segment.enters(band):
             _passage(rows["band_rate"], segment, label, inputs)
-    if not any(_crosses(segment, band) for segment in segments if segment.kind != "hold"):
+    if not any(segment.enters(band) for segment in segments if segment.kind != "hold"):
         rows["band_rate"].flag(
             Labels(band=band.id), Status.NOT_APPLICABLE, "no ramp of the card enters this band"
         )
@@ -125,7 +125,7 @@ def _band(rows: Mapping[str, Rows], band: KeepOut, inputs: Inputs) -> None:
 
 def _passage(rows: Rows, segment: Segment, label: Labels, inputs: Inputs) -> None:
     shutdown: Shutdown = inputs["shutdown"]
-    top = max(segment.from_rad_s, segment.to_rad_s)
+    top = segment.top_rad_s
     if segment.kind == "stop" and not shutdown.powered:
         rows.flag(
             label,
@@ -135,11 +135,6 @@ def _passage(rows: Rows, segment: Segment, label: Labels, inputs: Inputs) -> Non
         )
         return
     rows.add(label, rate_rad_s2(segment) / inputs["stand.full_speed_rad_s"], speed_rad_s=top)
-
-
-def _crosses(segment: Segment, band: KeepOut) -> bool:
-    low, high = sorted((segment.from_rad_s, segment.to_rad_s))
-    return low < band.to_rad_s and high > band.from_rad_s
 
 
 def _gap(low_rad_s: float, high_rad_s: float, band: KeepOut) -> float:

@@ -9,10 +9,11 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from planner.methods.hand_checks import FlapHinge, resting_stop_moment_n_m
+from planner.methods.hand_checks import resting_stop_moment_n_m
 from planner.model.plan import Cyclic
 from planner.model.results import Labels, Status
 from planner.predict.cases import Point, air_of, to_cases
+from planner.predict.hover_hand import hinge_by_hand
 from planner.predict.rows import Rows
 from planner.predict.stations import STATIONS
 from planner.predict.stop_free import stop_free_speed_rad_s
@@ -117,13 +118,7 @@ def _hand_rest_moment(inputs: Inputs, arrays: RotorArrays) -> float:
     rotor: Rotor = inputs["rotor"]
     if arrays.hub.pair or inputs["stand.mounting"] != "upright" or rotor.droop_stop is None:
         return math.nan
-    hinge = FlapHinge(
-        arrays.flap_inertia_kg_m2,
-        arrays.first_moment_kg_m,
-        arrays.hub.hinge_m,
-        arrays.hub.spring_N_m_rad,
-        arrays.hub.spring_neutral_rad,
-    )
+    hinge = hinge_by_hand(arrays, rotor.blade)
     return float(resting_stop_moment_n_m(hinge, rotor.droop_stop.angle_rad))
 
 

@@ -34,11 +34,8 @@ def _tip(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
     site: Site = inputs["site"]
     error = inputs["stand.speed_gauge_error_rad_s"]
     label = Labels(segment=segment.id)
-    top = max(segment.from_rad_s, segment.to_rad_s)
-    tips = [
-        blade.radius_m * speed
-        for speed in (top, max(0.0, segment.lowest_rad_s - error), segment.highest_rad_s + error)
-    ]
+    top = segment.top_rad_s
+    tips = [blade.radius_m * speed for speed in (top, *segment.ends_rad_s(error))]
     sound, slow_sound, fast_sound = inputs.bounds("speed_of_sound")
     mean, _, gust = inputs.bounds("wind_at_hub")
     dry_sound = 20.05 * math.sqrt(site.temperature_K)
@@ -48,7 +45,6 @@ def _tip(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
         low=tips[1],
         high=tips[2],
         speed_rad_s=top,
-        hand=math.pi * 2.0 * blade.radius_m * (top / (2.0 * math.pi)),
     )
     rows["tip_mach"].add(
         label,

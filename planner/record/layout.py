@@ -10,7 +10,7 @@ radians, NaN is null. A reader refuses a layout that it does not know.
     plan              the model
     segments          the schedule walked once
     vocabulary        the register entries
-    predictions       quantity -> {study, study_key, rows: [{segment, mode, harmonic, band, value,
+    predictions       quantity -> {study, rows: [{segment, mode, harmonic, band, value,
                       low, high, status, reason, speed_rad_s, hand}]}
     references        reference id -> value at 100 % rpm
     series            run, fan and flap charts

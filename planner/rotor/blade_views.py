@@ -8,9 +8,10 @@ import numpy as np
 
 from planner.methods.beam import BladeBeam
 from planner.methods.blade_inertia import HingedInertia, MassDistribution, blade_inertia
+from planner.model.rotor import SymmetricSection
 
 if TYPE_CHECKING:
-    from planner.model.rotor import Blade
+    from planner.model.rotor import Blade, Section
 
 
 def mass_distribution(blade: Blade) -> MassDistribution:
@@ -42,3 +43,19 @@ def beam(blade: Blade) -> BladeBeam:
 def flap_inertia(blade: Blade, hinge_m: float) -> HingedInertia:
     """Mass moments of the blade about a hinge radius."""
     return blade_inertia(mass_distribution(blade), hinge_m)
+
+
+def section_at(blade: Blade, radius_m: float) -> Section:
+    """Section that applies at a radius (the outer one at a joint)."""
+    spans = [span for span in blade.sections if span.from_radius_m <= radius_m]
+    return (spans[-1] if spans else blade.sections[0]).section
+
+
+def lift_slope_per_rad(section: Section) -> float:
+    """Lift slope near zero angle at the lowest Mach number that is tabled."""
+    if isinstance(section, SymmetricSection):
+        return section.lift_slope_per_rad
+    angle, lift = section.angle_rad[0], section.lift[0]
+    near = np.radians(2.0)
+    rise = np.interp([-near, near], angle, lift)
+    return float((rise[1] - rise[0]) / (2.0 * near))

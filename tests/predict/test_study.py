@@ -30,17 +30,6 @@ def test_unknown_path_is_refused(articulated):
         inputs_of(study, articulated)
 
 
-def test_key_depends_on_what_is_taken_and_on_nothing_else(articulated):
-    key = AIR.key(inputs_of(AIR, articulated))
-    other_title = dataclasses.replace(articulated, title="Something else")
-    warmer = dataclasses.replace(
-        articulated, site=dataclasses.replace(articulated.site, temperature_K=300.0)
-    )
-    assert AIR.key(inputs_of(AIR, other_title)) == key
-    assert AIR.key(inputs_of(AIR, warmer)) != key
-    assert dataclasses.replace(AIR, version=2).key(inputs_of(AIR, articulated)) != key
-
-
 def test_a_refusing_method_leaves_its_study_outside_validity(articulated, run_predict):
     hot = dataclasses.replace(
         articulated, site=dataclasses.replace(articulated.site, temperature_K=400.0)
