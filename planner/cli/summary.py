@@ -8,7 +8,7 @@ import sys
 import textwrap
 from typing import TYPE_CHECKING, Any
 
-from planner.paper.texts import limit, toward_danger
+from planner.paper.texts import limit, toward_danger, worst_end
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -61,7 +61,7 @@ def _finding(
     title = rule["title"] if rule else finding["rule"]
     lines = _entry(finding["verdict"], f"{finding['rule']}: {title}", width)
     details = []
-    if rule and finding["value"] is not None:
+    if rule and finding["low"] is not None:
         details.append(_numbers(finding, rule, units[rule["quantity"]]))
     if finding["reason"] and finding["verdict"] != "GO":
         details.append(finding["reason"])
@@ -73,9 +73,8 @@ def _finding(
 
 
 def _numbers(finding: Mapping[str, Any], rule: Mapping[str, Any], entry: Mapping[str, Any]) -> str:
-    most = rule["sense"] == "at most"
-    worst = finding["high"] if most else finding["low"]
-    shown = toward_danger(worst, entry["unit"], "high" if most else "low")
+    worst, toward = worst_end(finding["low"], finding["high"], rule["sense"], entry["danger"])
+    shown = toward_danger(worst, entry["unit"], toward)
     text = f"{shown} at {finding['where'] or 'the whole run'}"
     if finding["limit"] is None:
         return text

@@ -11,6 +11,7 @@ from planner.files.faults import did_you_mean, listed, shown
 from planner.files.schema_rules import OverSpeedTable, ShareTable
 from planner.files.schema_values import Measured, Unknown
 from planner.model.rules import Limit, Sense, SpeedRange
+from planner.units import from_si
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -66,7 +67,7 @@ def _table(
     )
     for i in range(1, len(rows)):
         if rows[i][0] <= rows[i - 1][0]:
-            rpm = rows[i - 1][0] * 30.0 / math.pi
+            rpm = from_si(rows[i - 1][0], "rpm")
             expected = f"a speed above {rpm:g} rpm of the row before"
             document.fault((*path, i, 0), expected, "order the rows by speed")
     return rows

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -33,6 +32,7 @@ from planner.model.rotor import (
     Stop,
     TeeteringHub,
 )
+from planner.units import from_si
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -182,7 +182,7 @@ def _check_retraction(document: Document, stop: DroopStopTable | None) -> None:
         expected = f"an angle at or below the static {_degrees(stop.angle)}"
         document.fault((*path, "retracted_angle"), expected, "correct one of the two angles")
     if retraction.release <= retraction.reseat:
-        rpm = retraction.reseat * 30.0 / math.pi
+        rpm = from_si(retraction.reseat, "rpm")
         expected = f"a speed above the re-seat speed {rpm:g} rpm"
         document.fault((*path, "release"), expected, "correct release or reseat")
 
@@ -329,4 +329,4 @@ def _metres(value: float) -> str:
 
 
 def _degrees(value: float) -> str:
-    return f"{math.degrees(value):g} deg"
+    return f"{from_si(value, 'deg'):g} deg"

@@ -1,7 +1,5 @@
 """Induced velocity of a rotor in edgewise wind, its gradient over the disc, and loss factors."""
 
-from dataclasses import dataclass
-
 import numpy as np
 import numpy.typing as npt
 
@@ -11,21 +9,6 @@ DREES_ADVANCE_RATIO_RANGE = (0.0, 0.5)
 NEWTON_STEPS = 60
 NEWTON_TOLERANCE = 1e-12
 SMALLEST_SINE = 1e-9
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class MeanInflow:
-    """Mean induced velocity with its own account of how far to trust it.
-
-    Attributes:
-        velocity_m_s: Mean induced velocity, positive against thrust [m/s].
-        converged: The momentum balance closes within tolerance.
-        within_validity: The axial wind does not blow against the wake.
-    """
-
-    velocity_m_s: Array
-    converged: npt.NDArray[np.bool_]
-    within_validity: npt.NDArray[np.bool_]
 
 
 def edgewise_induced_velocity_m_s(
@@ -62,57 +45,6 @@ def edgewise_induced_velocity_m_s(
     below = np.sqrt(V2 + np.sqrt(V2**2 + 4.0 * t**2))
     magnitude = np.sqrt(2.0) * np.abs(t) / np.where(below > 0.0, below, 1.0)
     return np.asarray(np.copysign(magnitude, t))
-
-
-def mean_induced_velocity_m_s(
-    thrust_n: npt.ArrayLike,
-    density_area_kg_m: npt.ArrayLike,
-    edgewise_m_s: npt.ArrayLike,
-    axial_m_s: npt.ArrayLike,
-) -> MeanInflow:
-    """Mean induced velocity of a rotor in wind with a part along the shaft.
-
-    T = 2 rho A v sqrt(V^2 + (W + v)^2), Newton from the edgewise solution.
-
-    Args:
-        thrust_n: Thrust T [N], either sign.
-        density_area_kg_m: Air density times disc area, rho A [kg/m], greater than 0.
-        edgewise_m_s: Wind V in the disc plane [m/s].
-        axial_m_s: Wind W along the shaft, positive against thrust as induced velocity is [m/s].
-
-    Returns:
-        Mean inflow, broadcast shape. Where Newton does not close the balance to one part in
-        10^12 the element says so and holds the last iterate.
-
-    Raises:
-        ValueError: Density times area not greater than 0.
-
-    Validity:
-        Axial wind in the sense of the wake or none. Against the wake (W T < 0) the flow may
-        recirculate; those elements are marked as outside validity.
-
-    Source:
-        H. Glauert's momentum hypothesis, as given by Leishman 2006 (from memory).
-
-    Example:
-        >>> flow = mean_induced_velocity_m_s(20000.0, 100.0, 0.0, 15.0)
-        >>> round(float(flow.velocity_m_s), 3), bool(flow.converged)
-        (5.0, True)
-    """
-    start = edgewise_induced_velocity_m_s(thrust_n, density_area_kg_m, edgewise_m_s)
-    t = np.asarray(thrust_n, dtype=np.float64) / (2.0 * _positive_area(density_area_kg_m))
-    V = np.asarray(edgewise_m_s, dtype=np.float64)
-    W = np.asarray(axial_m_s, dtype=np.float64)
-    v, V, W, t = np.broadcast_arrays(start, V, W, t)
-    scale = np.maximum(np.abs(t), 1e-300)
-    for _ in range(NEWTON_STEPS):
-        wake = np.sqrt(V**2 + (W + v) ** 2)
-        residual = v * wake - t
-        slope = wake + v * (W + v) / np.where(wake > 0.0, wake, 1.0)
-        step = np.where(slope > 0.0, residual / np.where(slope > 0.0, slope, 1.0), 0.0)
-        v = np.where(np.abs(residual) > NEWTON_TOLERANCE * scale, v - step, v)
-    closed = np.abs(v * np.sqrt(V**2 + (W + v) ** 2) - t) <= 10.0 * NEWTON_TOLERANCE * scale
-    return MeanInflow(np.asarray(v), np.asarray(closed), np.asarray(W * t >= 0.0))
 
 
 def wake_skew_angle_rad(edgewise_m_s: npt.ArrayLike, through_m_s: npt.ArrayLike) -> Array:
@@ -199,45 +131,6 @@ def pitt_peters_gradient(advance_ratio: npt.ArrayLike, inflow_ratio: npt.ArrayLi
         1.4726
     """
     return np.asarray(15.0 * np.pi / 32.0 * coleman_gradient(advance_ratio, inflow_ratio))
-
-
-def drees_gradients(
-    advance_ratio: npt.ArrayLike, inflow_ratio: npt.ArrayLike
-) -> tuple[Array, Array]:
-    """Fore-aft and lateral gradients of induced velocity after Drees.
-
-    v(x, psi) = v_mean (1 + kx x cos psi + ky x sin psi),
-    kx = (4/3) (1 - cos chi - 1.8 mu^2) / sin chi, ky = -2 mu
-
-    Written as kx = (4/3) (tan(chi/2) - 1.8 mu sqrt(mu^2 + lambda^2)), which has no pole in hover.
-
-    Args:
-        advance_ratio: Edgewise wind over tip speed, mu, 0 to 0.5.
-        inflow_ratio: Flow through the disc over tip speed, lambda.
-
-    Returns:
-        Gradients kx and ky, broadcast shape.
-
-    Raises:
-        ValueError: Advance ratio outside 0 to 0.5.
-
-    Validity:
-        Advance ratio up to 0.5; beyond, as at low rotor speed in wind, kx changes sign without
-        physical reason. Callers at such speeds take another gradient.
-
-    Source:
-        J. M. Drees, as given by Leishman 2006 (from memory).
-
-    Example:
-        >>> kx, ky = drees_gradients(0.1, 0.05)
-        >>> round(float(kx), 3), float(ky)
-        (0.797, -0.2)
-    """
-    mu = require_within("advance ratio", advance_ratio, DREES_ADVANCE_RATIO_RANGE, "")
-    inflow = np.asarray(inflow_ratio, dtype=np.float64)
-    half_skew = coleman_gradient(mu, inflow)
-    kx = 4.0 / 3.0 * (half_skew - 1.8 * mu * np.hypot(mu, inflow))
-    return np.asarray(kx), np.asarray(-2.0 * mu + np.zeros_like(kx))
 
 
 def tip_loss_factor(

@@ -16,6 +16,8 @@ import numpy as np
 def plain(value: Any) -> Any:  # noqa: ANN401, PLR0911 - one return for each kind of value
     """Turn dataclasses, enums, arrays and tuples into JSON values; NaN and infinities to null.
 
+    Keys are sorted, so that a record is the same before it is written and after it is read back.
+
     Raises:
         TypeError: a value of a kind that has no JSON form.
 
@@ -32,11 +34,12 @@ def plain(value: Any) -> Any:  # noqa: ANN401, PLR0911 - one return for each kin
     if isinstance(value, np.ndarray):
         return plain(value.tolist())
     if isinstance(value, Mapping):
-        return {str(key): plain(item) for key, item in value.items()}
+        return {str(key): plain(value[key]) for key in sorted(value, key=str)}
     if isinstance(value, list | tuple):
         return [plain(item) for item in value]
     if dataclasses.is_dataclass(value) and not isinstance(value, type):
-        return {f.name: plain(getattr(value, f.name)) for f in dataclasses.fields(value)}
+        names = sorted(field.name for field in dataclasses.fields(value))
+        return {name: plain(getattr(value, name)) for name in names}
     msg = f"no JSON form for {type(value).__name__}"
     raise TypeError(msg)
 

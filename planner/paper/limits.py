@@ -116,12 +116,12 @@ def _worst(reading: Reading, rule: Json) -> tuple[str, str, str]:
 
 def _values(reading: Reading, rule: Json, finding: Json) -> tuple[str, str]:
     unit = reading.unit_of(rule)
-    at_most = rule["sense"] == "at most"
-    worst = finding["high"] if at_most else finding["low"]
-    worst = finding["value"] if worst is None else worst
-    if worst is None or finding["margin"] is None:
+    low, high = finding["low"], finding["high"]
+    if low is None or high is None or finding["margin"] is None:
         return texts.NOT_ASSESSED, texts.NOT_ASSESSED
-    value = texts.number(worst, unit, "up" if at_most else "down")
+    danger = reading.vocabulary[rule["quantity"]]["danger"]
+    worst, toward = texts.worst_end(low, high, rule["sense"], danger)
+    value = texts.toward_danger(worst, unit, toward)
     return value, texts.number(finding["margin"], unit, "down")
 
 

@@ -7,7 +7,6 @@ import unicodedata
 from functools import cache
 from pathlib import Path
 from typing import TYPE_CHECKING, Literal
-from xml.sax.saxutils import escape as _escape_markup
 
 from planner.units import from_si
 
@@ -95,7 +94,29 @@ def toward_danger(value_si: float, unit: str, danger: str) -> str:
         >>> toward_danger(1231.0, "N m", "high"), toward_danger(1239.0, "N", "low")
         ('1240 N m', '1230 N')
     """
+    if danger == "both":
+        return number(value_si, unit, "up" if value_si >= 0.0 else "down")
     return number(value_si, unit, _TOWARD.get(danger, "nearest"))
+
+
+def worst_end(low_si: float, high_si: float, sense: str, danger: str) -> tuple[float, str]:
+    """Pick the end of a range that a limit looks at, and the danger to round it toward.
+
+    Args:
+        low_si: least value.
+        high_si: greatest value.
+        sense: ``at most`` or ``at least``.
+        danger: danger of the quantity; ``both``: the end of the greater size counts.
+
+    Example:
+        >>> worst_end(-3.0, 2.0, "at most", "both"), worst_end(-3.0, 2.0, "at most", "high")
+        ((-3.0, 'both'), (2.0, 'high'))
+    """
+    if sense == "at least":
+        return low_si, "low"
+    if danger == "both":
+        return max(low_si, high_si, key=abs), "both"
+    return high_si, "high"
 
 
 def span(low_si: float, high_si: float, unit: str) -> str:
@@ -178,16 +199,6 @@ def sentence(text: str) -> str:
     """
     stripped = text.strip()
     return stripped if stripped.endswith((".", "!", "?")) else f"{stripped}."
-
-
-def escape(text: str) -> str:
-    """Make text safe inside markup: it can never become a tag or an entity.
-
-    Example:
-        >>> escape('<a href="x">R&D</a>')
-        '&lt;a href="x"&gt;R&amp;D&lt;/a&gt;'
-    """
-    return _escape_markup(text)
 
 
 def unprintable(text: str) -> str:

@@ -87,14 +87,14 @@ def build(
     listed = [{"name": name, "sha256": sha256} for name, sha256 in files]
     record = {
         "layout": LAYOUT,
-        "made_by": versions(),
+        "made_by": plain(versions()),
         "files": listed,
         "files_digest": digest(listed),
         "meaning_digest": digest(plan),
         "plan": plain(plan),
         "segments": plain(walk),
         "vocabulary": plain(list(REGISTER.values())),
-        "predictions": {key: rows_of(prediction) for key, prediction in predictions.items()},
+        "predictions": {key: rows_of(predictions[key]) for key in sorted(predictions)},
         "references": plain(reference_table(plan, predictions, plan.stand.full_speed_rad_s)),
         "series": plain(series(plan, walk, predictions, wanted)),
         "findings": plain(judgement.findings),

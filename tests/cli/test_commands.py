@@ -102,7 +102,7 @@ def test_start_writes_a_folder_that_runs_as_it_is(tmp_path):
     assert json.loads(checked.stdout)["verdict"] == "GO"
     again = call("start", tmp_path / "new")
     assert again.exit_code == 2
-    assert "not empty" in again.stderr
+    assert "expected an empty folder" in again.stderr
 
 
 @pytest.mark.parametrize(
@@ -112,7 +112,7 @@ def test_start_writes_a_folder_that_runs_as_it_is(tmp_path):
             "plan.toml",
             'rpm = "25 % rpm"',
             "rpm = 90",
-            "plan.toml:137:7: block[1].step[1].rpm: expected",
+            "plan.toml:157:7: block.step.rpm: expected",
         ),
         ("plan.toml", "temperature = ", "temprature = ", "did you mean"),
         ("rotor.toml", 'radius = "5.6 m"', 'radius = "5.6 kg"', "rotor.toml:5:"),

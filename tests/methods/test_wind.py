@@ -3,8 +3,6 @@ import pytest
 
 from planner.methods.wind import (
     gust_peak_m_s,
-    one_minus_cosine_gust_m_s,
-    reading_band_m_s,
     wind_at_height_m_s,
 )
 
@@ -35,33 +33,7 @@ def test_profile_outside_its_range_is_refused(inputs, message):
         wind_at_height_m_s(*inputs)
 
 
-def test_reading_band_never_falls_below_calm():
-    low, high = reading_band_m_s(np.array([0.2, 10.0]), 0.5, 0.02)
-    assert low == pytest.approx([0.0, 9.3])
-    assert high == pytest.approx([0.704, 10.7])
-
-
-def test_reading_band_refuses_an_error_share_given_in_percent():
-    with pytest.raises(ValueError, match=r"anemometer error share: expected 0 to 1, found 3"):
-        reading_band_m_s(10.0, 0.5, 3.0)
-
-
 def test_gust_peak_adds_the_spread():
     assert gust_peak_m_s([5.0, 10.0], 4.0) == pytest.approx([9.0, 14.0])
     with pytest.raises(ValueError, match=r"gust spread: expected 0 to 75 m/s, found -2"):
         gust_peak_m_s(5.0, -2.0)
-
-
-def test_discrete_gust_starts_and_ends_smoothly_and_peaks_once():
-    time = np.linspace(0.0, 4.0, 4001)
-    gust = one_minus_cosine_gust_m_s(time, 1.0, 2.0, 6.0)
-    assert gust.max() == pytest.approx(6.0)
-    assert time[gust.argmax()] == pytest.approx(2.0)
-    assert np.all(gust[(time <= 1.0) | (time >= 3.0)] == pytest.approx(0.0, abs=1e-12))
-    assert np.abs(np.diff(gust)).max() < 6.0 * np.pi / 2.0 * 0.001 * 1.001
-    assert np.trapezoid(gust, time) == pytest.approx(6.0)
-
-
-def test_discrete_gust_without_length_is_refused():
-    with pytest.raises(ValueError, match=r"gust duration: expected 0.001 to 1e\+06 s, found 0"):
-        one_minus_cosine_gust_m_s(1.0, 0.0, 0.0, 5.0)
