@@ -24,6 +24,7 @@ def folder(tmp_path_factory):
 )
 def test_shown_output_is_the_real_one(words, text, folder):
     assert readme_examples.run(words, folder) == text
+    assert "nan" not in text.split()
 
 
 def test_every_command_is_shown():

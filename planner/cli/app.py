@@ -10,6 +10,7 @@ from typing import Annotated, Any
 import typer
 
 import planner
+from planner.cli.screen import say
 
 app = typer.Typer(
     name="whirlcard",
@@ -37,14 +38,14 @@ PlanArgument = Annotated[
 def main() -> None:
     """Run the command line; output that the terminal cannot show is escaped, never a crash."""
     for stream in (sys.stdout, sys.stderr):
-        if hasattr(stream, "reconfigure"):
+        if stream is not None and hasattr(stream, "reconfigure"):
             stream.reconfigure(errors="backslashreplace")
     app()
 
 
 def _show_version(value: bool) -> None:
     if value:
-        print(f"whirlcard {planner.__version__}")
+        say(f"whirlcard {planner.__version__}")
         raise typer.Exit
 
 
@@ -68,10 +69,8 @@ def start(
 
     with stop_on_fault():
         written = write_starter(folder)
-    print(f"Wrote {len(written)} files to {folder}:")
-    for path in written:
-        print(f"  {path.name}")
-    print(f"Next: whirlcard check {folder}")
+    names = "\n".join(f"  {path.name}" for path in written)
+    say(f"Wrote {len(written)} files to {folder}:\n{names}\nNext: whirlcard check {folder}")
 
 
 @app.command()
@@ -87,7 +86,7 @@ def check(
     from planner.record.layout import to_bytes
 
     record = load_record(plan)
-    print(to_bytes(record).decode() if as_json else summary(record), end="" if as_json else "\n")
+    say(to_bytes(record, ascii_only=True).decode().rstrip() if as_json else summary(record))
     _finish(record)
 
 
@@ -100,21 +99,26 @@ def card(
     paper: Annotated[Paper, typer.Option(help="Page size.")] = Paper.a4,
 ) -> None:
     """Print the test card as PDF, with its JSON record beside it."""
+    from planner.cli.screen import check_target
     from planner.cli.sources import load_record, write
     from planner.cli.summary import headline
     from planner.paper.card import card_pdf
     from planner.record.layout import to_bytes
 
+    if out is not None:
+        check_target(out, (".pdf",))
     record = load_record(plan)
     target = out or Path(f"{safe_name(record)}.pdf")
+    files = {target: card_pdf(record, paper.value)}
     beside = target.with_suffix(".json")
-    data = card_pdf(record, paper.value)
-    write(target, data)
-    print(f"Wrote {target}")
     if beside.resolve() != plan.resolve():
-        write(beside, to_bytes(record))
-        print(f"Wrote {beside}")
-    print(headline(record))
+        files[beside] = to_bytes(record)
+    for path in files:
+        check_target(path, (".pdf", ".json"))
+    for path, data in files.items():
+        write(path, data)
+        say(f"Wrote {path}")
+    say(headline(record))
     _finish(record)
 
 
@@ -127,20 +131,21 @@ def fan(
     paper: Annotated[Paper, typer.Option(help="Page size of a PDF.")] = Paper.a4,
 ) -> None:
     """Draw natural frequencies over rotor speed with harmonics and the run's speeds."""
-    from planner.cli.sources import fail, load_record, write
+    from planner.cli.screen import check_target
+    from planner.cli.sources import load_record, write
     from planner.paper.fan import fan_csv, fan_pdf, fan_svg
 
+    if out is not None:
+        check_target(out, (".pdf", ".svg", ".csv"))
     record = load_record(plan)
     target = out or Path(f"{safe_name(record)}-fan.pdf")
     kind = target.suffix.lower()
-    if kind not in {".pdf", ".svg", ".csv"}:
-        fail(f"--out: expected a name ending in .pdf, .svg or .csv, found {target.name!r}")
     if kind == ".pdf":
         data = fan_pdf(record, paper.value)
     else:
         data = (fan_svg(record) if kind == ".svg" else fan_csv(record)).encode()
     write(target, data)
-    print(f"Wrote {target}")
+    say(f"Wrote {target}")
 
 
 @app.command()
@@ -152,7 +157,7 @@ def method(
     """Show how a number is computed: method, validity, source and hand check."""
     from planner.cli.methods import describe, listing
 
-    print(listing() if quantity is None else describe(quantity))
+    say(listing() if quantity is None else describe(quantity))
 
 
 def safe_name(record: dict[str, Any]) -> str:

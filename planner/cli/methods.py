@@ -6,7 +6,7 @@ import difflib
 import shutil
 import textwrap
 
-from planner.cli.sources import fail
+from planner.cli.screen import fail
 from planner.predict.register import REGISTER
 
 

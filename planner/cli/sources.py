@@ -5,15 +5,13 @@ from __future__ import annotations
 import sys
 import time
 from contextlib import contextmanager
-from typing import TYPE_CHECKING, Any, NoReturn
+from typing import TYPE_CHECKING, Any
 
-import typer
-
+from planner.cli.screen import fail
 from planner.files.faults import PlanFaults
 from planner.files.read import read_plan
 from planner.files.start import StarterRefusedError
 from planner.files.write import write_whole
-from planner.judge.status import ExitStatus
 from planner.paper.texts import unprintable
 from planner.predict.register import REFERENCES, REGISTER
 from planner.record.layout import RecordError, build, from_bytes
@@ -23,12 +21,6 @@ if TYPE_CHECKING:
     from pathlib import Path
 
 PATIENCE_S = 1.0
-
-
-def fail(message: str) -> NoReturn:
-    """Print a message on stderr and end with the status of unusable input."""
-    print(message, file=sys.stderr)
-    raise typer.Exit(int(ExitStatus.BAD_INPUT))
 
 
 @contextmanager
@@ -45,7 +37,7 @@ def stop_on_fault() -> Iterator[None]:
 def load_record(source: Path) -> dict[str, Any]:
     """Read a record, or read a plan folder and build its record."""
     with stop_on_fault():
-        if source.suffix.lower() == ".json":
+        if source.suffix.lower() == ".json" and not source.is_dir():
             return from_bytes(source.read_bytes(), str(source))
         vocabulary = {entry.id: (entry.unit, entry.axes) for entry in REGISTER.values()}
         loaded = read_plan(source, vocabulary, REFERENCES, unprintable)
@@ -55,8 +47,10 @@ def load_record(source: Path) -> dict[str, Any]:
 
 def write(path: Path, data: bytes) -> None:
     """Write a file whole or not at all; a fault ends with status 2."""
-    with stop_on_fault():
-        write_whole(path, data)
+    try:
+        write_whole(path.resolve(), data)
+    except OSError as fault:
+        fail(f"{path}: {fault.strerror or fault}")
 
 
 class Progress:
@@ -68,5 +62,9 @@ class Progress:
 
     def __call__(self, part: str) -> None:
         """Say which part starts now."""
-        if sys.stderr.isatty() and time.monotonic() - self._begin > PATIENCE_S:
+        if (
+            sys.stderr is not None
+            and sys.stderr.isatty()
+            and time.monotonic() - self._begin > PATIENCE_S
+        ):
             print(f"whirlcard: {part} ...", file=sys.stderr)

@@ -61,12 +61,12 @@ def _finding(
     title = rule["title"] if rule else finding["rule"]
     lines = _entry(finding["verdict"], f"{finding['rule']}: {title}", width)
     details = []
-    if rule and finding["low"] is not None:
+    if rule and None not in (finding["low"], finding["high"]):
         details.append(_numbers(finding, rule, units[rule["quantity"]]))
-    if finding["reason"] and finding["verdict"] != "GO":
+    if finding["reason"] and (finding["verdict"] != "GO" or not finding["tested"]):
         details.append(finding["reason"])
     if finding["closed_by"]:
-        details.append(f"closed by outside document {finding['closed_by']}")
+        details.append(f"outside document {finding['closed_by']} stands in where not assessed")
     for detail in details:
         lines += textwrap.wrap(detail, width, initial_indent=" " * 15, subsequent_indent=" " * 15)
     return lines
@@ -89,6 +89,6 @@ def _entry(verdict: str, text: str, width: int) -> list[str]:
 
 def _strong(text: str) -> str:
     """Bold on a terminal that allows it."""
-    if sys.stdout.isatty() and not os.environ.get("NO_COLOR"):
+    if sys.stdout is not None and sys.stdout.isatty() and not os.environ.get("NO_COLOR"):
         return f"{_BOLD}{text}{_PLAIN}"
     return text

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from planner.judge.case import WHOLE_RUN
 from planner.judge.documents import closing_document, parts_of
-from planner.judge.evidence import Evidence, Group, faces_danger, wanted
+from planner.judge.evidence import Evidence, faces_danger, wanted
 from planner.judge.rows import family_of, order_of
 from planner.model.results import Coverage, Verdict
 from planner.model.rules import HAZARD_CLASSES
@@ -46,7 +46,8 @@ def _part(hazard_class: str, part: str, case: Case, judged: Sequence[Judged]) ->
     pooled = parts_of(hazard_class) == (WHOLE_RUN,)
     said = [(j.rule, o) for j in judged for o in j.outcomes if pooled or o.row.kind == part]
     verdicts = [outcome.verdict for _, outcome in said]
-    opened = _left_open(part, said, judged)
+    about = [j for j in judged if pooled or {part, WHOLE_RUN} & set(j.rule.where)]
+    opened = _left_open(said, about)
     holes = _holes(hazard_class, part, case, said)
     by_rules = _closers(said, case)
     if not by_rules and hazard_class in HAZARD_CLASSES:
@@ -64,12 +65,13 @@ def _part(hazard_class: str, part: str, case: Case, judged: Sequence[Judged]) ->
     return Coverage(hazard_class, part, "", worst, f"{reason}; {why}" if why else reason)
 
 
-def _left_open(part: str, said: Sequence[_Said], judged: Sequence[Judged]) -> str:
+def _left_open(said: Sequence[_Said], about: Sequence[Judged]) -> str:
+    """Say what a rule about the part left open, or that it matched nothing."""
     for rule, outcome in said:
         if outcome.left_open:
             return f"{rule.id} left {outcome.row.place} not assessed: {outcome.reason}"
-    for one in judged:
-        if not one.outcomes and (part in one.rule.where or WHOLE_RUN in one.rule.where):
+    for one in about:
+        if not one.outcomes:
             return f"{one.rule.id}: {one.finding.reason}"
     return ""
 
@@ -83,23 +85,23 @@ def _holes(hazard_class: str, part: str, case: Case, said: Sequence[_Said]) -> s
             place = "" if part == WHOLE_RUN else outcome.row.labels.segment
             facing.setdefault(place, []).append((rule, outcome))
     for segment in segments if part != WHOLE_RUN else [None]:
-        groups = wanted(hazard_class, segment, case)
-        if groups is None:
+        numbers = wanted(hazard_class, segment, case)
+        if numbers is None:
             return "no quantity of this tool closes it"
         here = facing.get("" if segment is None else segment.id, [])
-        for group in groups:
-            if not any(_serves(group, rule, outcome) for rule, outcome in here):
+        for evidence in numbers:
+            if not any(_is_evidence(evidence, rule, outcome) for rule, outcome in here):
                 place = segment.id if segment else "the run"
-                return f"no rule of the class judges {_words(group)} at {place}"
+                return f"no rule of the class judges {evidence} at {place}"
     return ""
 
 
-def _serves(group: Group, rule: Rule, outcome: Outcome) -> bool:
-    """Tell whether a rule looked at one of the numbers; one that it set aside does not count."""
-    return any(_is_evidence(evidence, rule, outcome) for evidence in group)
-
-
 def _is_evidence(evidence: Evidence, rule: Rule, outcome: Outcome) -> bool:
+    """Tell whether a rule looked at a number.
+
+    One that it set aside does not count, nor one that it exempted: only the first flap mode lives
+    near a harmonic by its nature.
+    """
     labels = outcome.row.labels
     if rule.quantity != evidence.quantity or outcome.row.set_aside:
         return False
@@ -110,12 +112,9 @@ def _is_evidence(evidence: Evidence, rule: Rule, outcome: Outcome) -> bool:
     return (
         evidence.family in {"", family}
         and evidence.order in {0, order}
+        and evidence.mode in {"", labels.mode or evidence.mode}
         and evidence.harmonic in {"", labels.harmonic or evidence.harmonic}
     )
-
-
-def _words(group: Group) -> str:
-    return " or ".join(str(evidence) for evidence in group)
 
 
 def _closers(said: Sequence[_Said], case: Case) -> list[str]:
@@ -134,7 +133,9 @@ def _rules_that(kinds: tuple[str, ...], said: Sequence[_Said], case: Case) -> li
     return [
         rule.id
         for rule, outcome in said
-        if outcome.kind in kinds and faces_danger(rule, case.vocabulary[rule.quantity])
+        if outcome.kind in kinds
+        and not outcome.row.set_aside
+        and faces_danger(rule, case.vocabulary[rule.quantity])
     ]
 
 

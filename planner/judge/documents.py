@@ -7,10 +7,10 @@ number that should be there and is not, or an exceeded limit: those are faults o
 
 from __future__ import annotations
 
-import math
 from typing import TYPE_CHECKING
 
 from planner.judge.case import WHOLE_RUN, Case
+from planner.judge.references import Missing, predicted
 from planner.model.results import Status
 from planner.model.rules import HAZARD_CLASSES
 from planner.units import from_si
@@ -71,6 +71,8 @@ def _names(document: OutsideDocument, part: str) -> bool:
 def _falls_short(document: OutsideDocument, highest_rad_s: float, case: Case) -> str:
     """Why a document that names the class and part does not reach; empty where it does."""
     number, wind = document.number, _strongest_wind(case)
+    if isinstance(wind, Missing):
+        return f"document {number} cannot be held against the wind: {wind.reason}"
     checks = (
         (bool(number.strip()), "an outside document without a number closes nothing"),
         (bool(document.approver.strip()), f"document {number} names no approver"),
@@ -79,6 +81,7 @@ def _falls_short(document: OutsideDocument, highest_rad_s: float, case: Case) ->
             f"document {number} reaches to {document.wind_limit_m_s:.4g} m/s wind, the plan's "
             f"gust with anemometer error is {wind:.4g} m/s at the anemometer or the hub",
         ),
+        (bool(document.date.strip()), f"document {number} has no date"),
         (
             document.date[:10] <= case.plan.issued[:10],
             f"document {number} is dated {document.date}, after the card's issue",
@@ -92,14 +95,12 @@ def _falls_short(document: OutsideDocument, highest_rad_s: float, case: Case) ->
     return next((why for is_so, why in checks if not is_so), "")
 
 
-def _strongest_wind(case: Case) -> float:
+def _strongest_wind(case: Case) -> float | Missing:
     """Gust with the anemometer's error, at the anemometer or at the hub, whichever is more."""
     site = case.plan.site
     read = max(site.wind_mean_m_s, site.wind_gust_m_s) + abs(site.anemometer_error_m_s)
-    at_hub = case.predictions.get("wind_at_hub")
-    if at_hub is None or at_hub.status[0] is not Status.OK:
-        return math.inf
-    return max(read, float(at_hub.high[0]))
+    at_hub = predicted("wind_at_hub", case.predictions)
+    return at_hub if isinstance(at_hub, Missing) else max(read, at_hub.greatest)
 
 
 def _rpm(speed_rad_s: float) -> str:

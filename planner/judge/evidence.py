@@ -1,9 +1,9 @@
 """What has to be judged before a built-in hazard class counts as closed by rules.
 
 Without this a thin rule book could close a class with a rule that says nothing about the hazard.
-Each class asks, in each segment, for one number out of every group below; a facility's book
-chooses the limits, not whether the hazard is looked at. A class without groups is closed by an
-outside document only: its methods are not there. A method that is added later adds its
+Each class asks, in each segment, for every number below; a facility's book chooses the limits, not
+whether the hazard is looked at. A class without numbers is closed by an outside document only: its
+methods are not there. A method that is added later adds its
 quantities here.
 """
 
@@ -38,22 +38,22 @@ class Evidence:
     """Rotor harmonic; empty: any."""
     order: int = 0
     """Order of the mode in its family; zero: any."""
+    mode: str = ""
+    """Label of one mode; empty: any."""
 
     def __str__(self) -> str:
         """Words for a reason."""
         words = self.quantity
-        if self.family:
+        if self.mode:
+            words += f" of {self.mode}"
+        elif self.family:
             order = f" {self.order}" if self.order else ""
             words += f" of {self.family}{order} modes"
         return f"{words} at {self.harmonic} per revolution" if self.harmonic else words
 
 
-Group = tuple[Evidence, ...]
-"""Alternatives that serve equally."""
-
-
-def wanted(hazard_class: str, segment: Segment | None, case: Case) -> tuple[Group, ...] | None:
-    """Groups of which one member each must be judged to close a class in a segment.
+def wanted(hazard_class: str, segment: Segment | None, case: Case) -> tuple[Evidence, ...] | None:
+    """Numbers that must all be judged to close a class in a segment.
 
     Args:
         hazard_class: a built-in class, or one that the book or plan adds.
@@ -61,7 +61,7 @@ def wanted(hazard_class: str, segment: Segment | None, case: Case) -> tuple[Grou
         case: plan and predictions.
 
     Returns:
-        The groups; empty where any judged rule of the class serves (added classes) or where
+        The numbers; empty where any judged rule of the class serves (added classes) or where
         nothing of the kind can occur (a ramp that enters no keep-out band); None where no
         quantity there is can close the class.
     """
@@ -81,66 +81,74 @@ def faces_danger(rule: Rule, quantity: Quantity) -> bool:
     return quantity.danger != "low" or rule.sense == "at least"
 
 
-def _stops(_: Segment, case: Case) -> tuple[Group, ...]:
+def _stops(_: Segment, case: Case) -> tuple[Evidence, ...]:
     """A hingeless blade by its root moment; others by both margins and the moment of resting."""
     if case.plan.rotor.hub.kind == "hingeless":
         return _all("root_flap_moment")
     return _all("droop_stop_clearance", "up_stop_clearance", "droop_stop_moment")
 
 
-def _resonance(segment: Segment, case: Case) -> tuple[Group, ...]:
+def _resonance(segment: Segment, case: Case) -> tuple[Evidence, ...]:
     if segment.kind == "hold":
         return (*_blade_modes(segment, case), *_given_modes(case), *_bands(case))
-    groups: list[Group] = []
-    if any(mode.family == "stand" for mode in case.plan.stand.modes):
-        groups.append((Evidence("crossing_cover", "stand", "1"),))
-    if any(segment.enters(band) for band in case.plan.keep_outs):
-        groups.append((Evidence("band_rate"), Evidence("band_time")))
-    return tuple(groups)
+    covers = tuple(
+        Evidence("crossing_cover", "stand", "1", mode=mode) for mode in _given("stand", case)
+    )
+    enters = any(segment.enters(band) for band in case.plan.keep_outs)
+    return (*covers, *_all("band_rate")) if enters else covers
 
 
-def _blade_modes(segment: Segment, case: Case) -> tuple[Group, ...]:
+def _blade_modes(segment: Segment, case: Case) -> tuple[Evidence, ...]:
     """The lowest modes of each family, at the fastest holds."""
     top = TOP_SHARE * case.whole_run.highest_rad_s
     if case.spans[segment.id].highest_rad_s < top:
         return ()
     lowest = (("flap", 1), ("flap", 2), ("lag", 1), ("torsion", 1))
-    return tuple((Evidence("harmonic_spacing", family, order=n),) for family, n in lowest)
+    return tuple(Evidence("harmonic_spacing", family, order=n) for family, n in lowest)
 
 
-def _given_modes(case: Case) -> tuple[Group, ...]:
-    """Stand modes against unbalance and the blades, shaft modes against the blades."""
+def _given_modes(case: Case) -> tuple[Evidence, ...]:
+    """Each stand mode against unbalance and the blades, each shaft mode against the blades.
+
+    A family of which the stand file gives no mode is asked for all the same: it stays open.
+    """
     blades = str(case.plan.rotor.n_blades)
     wanted_of = {"stand": ("1", blades), "shaft": (blades,)}
-    families = {mode.family for mode in case.plan.stand.modes}
     return tuple(
-        (Evidence("harmonic_spacing", family, harmonic),)
+        Evidence("harmonic_spacing", family, harmonic, mode=mode)
         for family, harmonics in wanted_of.items()
-        for harmonic in (harmonics if family in families else ("",))
+        for mode in _given(family, case) or ("",)
+        for harmonic in (harmonics if mode else ("",))
     )
 
 
-def _bands(case: Case) -> tuple[Group, ...]:
+def _given(family: str, case: Case) -> tuple[str, ...]:
+    """Labels of a family's modes in the stand file."""
+    modes = case.plan.stand.modes
+    return tuple(f"{family} {mode.name}" for mode in modes if mode.family == family)
+
+
+def _bands(case: Case) -> tuple[Evidence, ...]:
     return _all("band_distance") if case.plan.keep_outs else ()
 
 
-def _loads(_: Segment, __: Case) -> tuple[Group, ...]:
+def _loads(_: Segment, __: Case) -> tuple[Evidence, ...]:
     return _all("thrust", "root_centrifugal_force", "hub_moment")
 
 
-def _drive(_: Segment, __: Case) -> tuple[Group, ...]:
+def _drive(_: Segment, __: Case) -> tuple[Evidence, ...]:
     return _all("torque", "power")
 
 
-def _all(*quantities: str) -> tuple[Group, ...]:
-    return tuple((Evidence(quantity),) for quantity in quantities)
+def _all(*quantities: str) -> tuple[Evidence, ...]:
+    return tuple(Evidence(quantity) for quantity in quantities)
 
 
-_ON_RUN: dict[str, tuple[Group, ...]] = {
+_ON_RUN: dict[str, tuple[Evidence, ...]] = {
     "drive and overspeed": _all("card_speed", "trip_above_card", "trip_below_proven"),
     "stops": _all("droop_stop_rest_moment"),
 }
-_BY_SEGMENT: dict[str, Callable[[Segment, Case], tuple[Group, ...]]] = {
+_BY_SEGMENT: dict[str, Callable[[Segment, Case], tuple[Evidence, ...]]] = {
     "stops": _stops,
     "resonance": _resonance,
     "loads": _loads,

@@ -138,7 +138,9 @@ def _reason(worst: Outcome, outcomes: Sequence[Outcome]) -> str:
     if exempt:
         modes = ", ".join(f"{mode} ({count} times)" for mode, count in exempt.items())
         parts.append(f"exempt by damping: {modes}")
-    absent = dict.fromkeys(o.reason for o in outcomes if o.kind == "does not apply")
+    absent = dict.fromkeys(
+        o.reason for o in outcomes if o.kind == "does not apply" and not o.row.set_aside
+    )
     if absent:
         parts.append(f"does not apply: {'; '.join(absent)}")
     return ". ".join(part for part in parts if part)

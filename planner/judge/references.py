@@ -106,7 +106,8 @@ def _root_moment_rating(case: Case, _: Span) -> Found:
     return Range(hub.root_moment_rating_N_m, hub.root_moment_rating_N_m)
 
 
-def _predicted(quantity: str, predictions: Predictions) -> Found:
+def predicted(quantity: str, predictions: Predictions) -> Found:
+    """Find the range of a predicted number, all of whose rows must be OK and finite."""
     prediction = predictions.get(quantity)
     if prediction is None or not prediction.labels:
         return Missing(f"{quantity} was not predicted")
@@ -128,11 +129,11 @@ def _status_text(prediction: Prediction, row: int) -> str:
 
 
 def _card_speed(case: Case, _: Span) -> Found:
-    return _predicted("card_speed", case.predictions)
+    return predicted("card_speed", case.predictions)
 
 
 def _stop_free_speed(case: Case, _: Span) -> Found:
-    return _predicted("stop_free_speed", case.predictions)
+    return predicted("stop_free_speed", case.predictions)
 
 
 def _flap_travel(case: Case, span: Span) -> Found:

@@ -13,8 +13,9 @@ if TYPE_CHECKING:
     from planner.predict.study import Inputs
 
 SAIL_SHARE = 0.35
-"""Hubs without stops: share of 100 % rpm below which gusts throw blades about (25 to 35 %, from
-memory), so that quasi-static flap is no prediction."""
+"""Hubs without stops, and inverted rotors, whose blades hang away from the droop stop: share of
+100 % rpm below which gusts throw blades about (25 to 35 %, from memory), so that quasi-static
+flap is no prediction."""
 
 
 def stop_free_speed_rad_s(inputs: Inputs, rotor: Rotor, lift_off: Prediction) -> float:
@@ -23,7 +24,7 @@ def stop_free_speed_rad_s(inputs: Inputs, rotor: Rotor, lift_off: Prediction) ->
     Raises:
         NotAssessedError: the lift-off speed was not assessed, or the rule book states no margin.
     """
-    if rotor.droop_stop is None:
+    if rotor.droop_stop is None or inputs["stand.mounting"] == "inverted":
         return SAIL_SHARE * float(inputs["stand.full_speed_rad_s"])
     if rotor.droop_stop.retraction is not None:
         return rotor.droop_stop.retraction.release_rad_s

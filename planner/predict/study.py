@@ -40,6 +40,9 @@ PATHS = frozenset(
 """Model paths that studies may take."""
 
 
+BUILDS_ON = "builds on what was not assessed: "
+
+
 class NotAssessedError(ValueError):
     """Something that a study builds on was not assessed; the study takes over its status."""
 
@@ -86,6 +89,9 @@ class Inputs:
         row = self.prior[quantity]
         if row.status[0] is not Status.OK:
             msg = f"{quantity} is {row.status[0].value}: {row.reasons[0]}"
+            if row.reasons[0].startswith(BUILDS_ON):
+                msg = row.reasons[0].removeprefix(BUILDS_ON)
+            msg = f"{BUILDS_ON}{msg}"
             raise NotAssessedError(row.status[0], msg)
         return float(row.value[0]), float(row.low[0]), float(row.high[0])
 

@@ -34,6 +34,10 @@ if TYPE_CHECKING:
 
 _ID = "stops"
 _QUANTITIES = ("lift_off_speed_still_air", "lift_off_speed_in_wind", "droop_stop_rest_moment")
+_INVERTED = (
+    "the blades of an inverted rotor hang on their up stops at rest; their moment there and how "
+    "they leave it is not modelled"
+)
 _LEVEL = "wind on a rotor with a level axis also blows through the disc, which is not modelled"
 
 
@@ -44,6 +48,9 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     if rotor.droop_stop is None:
         for filled in rows.values():
             filled.flag(Labels(), Status.NOT_APPLICABLE, "the hub has no droop stop")
+    elif inputs["stand.mounting"] == "inverted":
+        for filled in rows.values():
+            filled.flag(Labels(), Status.OUTSIDE_VALIDITY, _INVERTED)
     else:
         air, arrays = air_of(inputs), rotor_arrays(rotor, STATIONS)
         _rest_moment(rows["droop_stop_rest_moment"], inputs, arrays, (air, rotor.droop_stop))

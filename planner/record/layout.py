@@ -146,9 +146,9 @@ def rows_of(prediction: Prediction) -> dict[str, Any]:
     return {"study": prediction.study, "rows": plain(rows)}
 
 
-def to_bytes(record: Mapping[str, Any]) -> bytes:
-    """Write a record: the same record gives the same bytes."""
-    text = json.dumps(record, indent=1, sort_keys=True, ensure_ascii=False, allow_nan=False)
+def to_bytes(record: Mapping[str, Any], *, ascii_only: bool = False) -> bytes:
+    """Write a record: the same record gives the same bytes; in ASCII for any terminal."""
+    text = json.dumps(record, indent=1, sort_keys=True, ensure_ascii=ascii_only, allow_nan=False)
     return (text + "\n").encode()
 
 

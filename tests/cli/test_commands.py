@@ -12,7 +12,9 @@ import sys
 import pytest
 from typer.testing import CliRunner
 
+from planner.cli import screen
 from planner.cli.app import app
+from planner.judge.status import ExitStatus
 
 SAMPLES = pathlib.Path(__file__).parent.parent.parent / "sample_plans"
 VERDICTS = {
@@ -173,10 +175,66 @@ def test_fan_is_drawn_in_each_form(tmp_path, suffix):
     assert target.stat().st_size > 1000
 
 
+@pytest.mark.parametrize("name", ["plan.toml", "", ".", "/", "x.json"])
+def test_card_is_written_as_a_pdf_only(folder, name):
+    before = (folder / "plan.toml").read_bytes()
+    target = folder / name if name == "plan.toml" else name
+    result = call("card", folder, "--out", target)
+    assert result.exit_code == 2
+    assert "expected a file name ending in .pdf" in result.stderr
+    assert (folder / "plan.toml").read_bytes() == before
+
+
+def test_card_replaces_no_directory(tmp_path):
+    (tmp_path / "card.pdf").mkdir()
+    result = call("card", SAMPLES / "hingeless-model", "--out", tmp_path / "card.pdf")
+    assert result.exit_code == 2
+    assert "expected a regular file to replace" in result.stderr
+
+
+def test_a_reader_that_goes_away_does_not_change_the_status():
+    code = "from planner.cli import run; run()"
+    command = [sys.executable, "-c", code, "check", str(SAMPLES / "articulated-gusty")]
+    with subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE) as process:
+        process.stdout.close()
+        assert process.wait() == 3
+        assert process.stderr.read() == b""
+
+
+def test_a_full_output_is_status_two():
+    with pathlib.Path("/dev/full").open("w") as full:
+        code = "from planner.cli import run; run()"
+        command = [sys.executable, "-c", code, "method", "thrust"]
+        done = subprocess.run(command, stdout=full, stderr=subprocess.PIPE, check=False, text=True)
+    assert done.returncode == 2
+    assert "standard output: " in done.stderr
+    assert "Traceback" not in done.stderr
+
+
+def test_json_is_json_on_any_terminal(folder):
+    done = whirlcard("check", folder, "--json", PYTHONIOENCODING="ascii")
+    assert json.loads(done.stdout)["verdict"] == "GO"
+
+
+def test_states_without_a_solution_print_without_a_number(folder):
+    path = folder / "plan.toml"
+    text = path.read_text("utf-8").replace(
+        'window_collective = "0.3 deg"', 'window_collective = "9 deg"'
+    )
+    path.write_text(text, "utf-8")
+    result = call("check", folder)
+    assert result.exit_code in {3, 4}
+    assert "nan" not in result.stdout.split()
+
+
+def test_screen_status_is_the_one_of_all():
+    assert screen.BAD_INPUT == ExitStatus.BAD_INPUT
+
+
 def test_fan_refuses_another_form(tmp_path):
     result = call("fan", SAMPLES / "hingeless-model", "--out", tmp_path / "fan.png")
     assert result.exit_code == 2
-    assert "expected a name ending in .pdf, .svg or .csv" in result.stderr
+    assert "expected a file name ending in .pdf or .svg or .csv" in result.stderr
 
 
 def test_method_tells_how_a_number_is_computed():

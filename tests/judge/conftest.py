@@ -59,6 +59,7 @@ SAFE = {
     "root_flap_moment": 500.0,
     "harmonic_spacing": 0.3,
     "mode_damping": 0.02,
+    "crossing_cover": 0.4,
     "band_rate": 0.04,
     "band_distance": 3.0,
     "thrust": 10_000.0,
@@ -66,16 +67,23 @@ SAFE = {
     "hub_moment": 1_000.0,
     "speed_step": 0.2,
     "collective_step": 1.0 * DEG,
+    "collective_rate": 0.5 * DEG,
     "cyclic_needed": 0.4,
     "card_speed": 36.0,
+    "trip_above_card": 2.2,
+    "trip_below_proven": 1.5,
     "torque": 2_000.0,
     "power": 80_000.0,
     "brake_speed": 10.0,
     "lift_off_speed_in_wind": 12.0,
+    "stop_free_speed": 13.2,
+    "wind_at_hub": 9.5,
 }
 """SI numbers that keep every rule of the example book; other quantities read 1."""
 
-MODES = ("flap 1", "flap 2", "flap 3", "lag 1", "lag 2", "torsion 1", "stand sway", "shaft twist")
+BLADE_MODES = ("flap 1", "flap 2", "flap 3", "lag 1", "lag 2", "torsion 1")
+HARMONICS = {"stand sway": ("1", "4", "8"), "shaft twist": ("4", "8")}
+"""Harmonics of the given modes with four blades; blade modes have the first two only."""
 
 
 @cache
@@ -135,7 +143,7 @@ def stand() -> Stand:
         full_speed_rad_s=40.0,
         speed_gauge_error_rad_s=0.1,
         modes=(mode("sway", "stand", 70.0), mode("twist", "shaft", 300.0)),
-        drive=Drive("motor", 5.0, 4_000.0, 150_000.0, 45.0, 90.0, 42.5),
+        drive=Drive("motor", 5.0, 4_000.0, 150_000.0, 45.0, 90.0, 38.5),
         brake_below_rad_s=16.0,
         ratings=Ratings(20_000.0, 3_000.0),
         obstructions=(),
@@ -224,13 +232,26 @@ def _labels(quantity: Quantity, run: Plan, walk: tuple[Segment, ...]) -> list[La
             and max(segment.from_rad_s, segment.to_rad_s) > 13.0
         )
         bands = [k.id for k in run.keep_outs] if inside or segment.kind == "hold" else []
-        for mode in MODES if "mode" in quantity.axes else ("",):
-            for harmonic in ("1", "2") if "harmonic" in quantity.axes else ("",):
+        for mode in _modes(quantity, segment):
+            for harmonic in _harmonics(quantity, mode):
                 found += [
                     Labels(segment.id, mode, harmonic, band)
                     for band in (bands if "band" in quantity.axes else [""])
                 ]
     return found
+
+
+def _harmonics(quantity: Quantity, mode: str) -> tuple[str, ...]:
+    return HARMONICS.get(mode, ("1", "2")) if "harmonic" in quantity.axes else ("",)
+
+
+def _modes(quantity: Quantity, segment: Segment) -> tuple[str, ...]:
+    """Modes that have numbers: passages in ramps for given modes only, the rest in holds."""
+    if "mode" not in quantity.axes:
+        return ("",)
+    if quantity.id == "crossing_cover":
+        return () if segment.kind == "hold" else tuple(HARMONICS)
+    return (*BLADE_MODES, *HARMONICS) if segment.kind == "hold" else ()
 
 
 def predictions(run: Plan) -> dict[str, Prediction]:

@@ -28,6 +28,7 @@ REFERENCE_NUMBERS = {
     "drive_power_rating": 150_000.0,
 }
 EPS = 1e-6
+WITHOUT_STANDING = [s for s in Status if s not in {Status.OK, Status.NOT_APPLICABLE}]
 
 
 def expected_number(stated) -> float:
@@ -49,8 +50,20 @@ def ready(bench, hingeless_bench, book_rule):
         if kinds[labels.segment] in book_rule["where"]
         and labels.mode.startswith(book_rule.get("family", ""))
         and (not book_rule.get("orders") or labels.mode[-1] == str(book_rule["orders"][-1]))
+        and (not book_rule.get("harmonics") or int(labels.harmonic) in book_rule["harmonics"])
     ]
     return chosen, book_rule, rows[-1:]
+
+
+def beyond_and_inside(rule) -> tuple[float, float]:
+    """Numbers just beyond and just inside a rule's limit."""
+    limit = expected_number(rule["limit"])
+    step = EPS * (abs(limit) or 1.0)
+    return (
+        (limit + step, limit - step)
+        if rule["sense"] == "at most"
+        else (limit - step, limit + step)
+    )
 
 
 def verdict_at(ready, number: float) -> Verdict:
@@ -70,6 +83,7 @@ def test_safe_run_is_go(bench):
 def test_safe_hingeless_run_is_go(hingeless_bench):
     judgement = hingeless_bench.judge()
     assert judgement.verdict is Verdict.GO
+    assert hingeless_bench.covered("stops", "run").closed_by == "droop-rest-moment"
     stops = hingeless_bench.finding("droop-clearance-angle")
     assert (stops.verdict, stops.tested) == (Verdict.GO, 0)
     assert "does not apply: the hub has no such part" in stops.reason
@@ -79,18 +93,29 @@ def test_safe_hingeless_run_is_go(hingeless_bench):
 def test_beyond_the_limit_is_no_go(ready):
     rule = ready[1]
     limit = expected_number(rule["limit"])
-    beyond = limit * (1.0 + EPS) if rule["sense"] == "at most" else limit * (1.0 - EPS)
+    beyond, _ = beyond_and_inside(rule)
     assert verdict_at(ready, beyond) is Verdict.NO_GO
     assert ready[0].judge().verdict is Verdict.NO_GO
     finding = ready[0].finding(rule["id"])
     assert finding.limit == pytest.approx(limit)
-    assert finding.margin == pytest.approx(-limit * EPS, rel=1e-3)
+    assert finding.margin == pytest.approx(-abs(beyond - limit), rel=1e-3)
+
+
+def test_quantity_dangerous_both_ways_is_judged_by_size(ready):
+    bench, rule, _ = ready
+    negative = -beyond_and_inside(rule)[0]
+    both = REGISTER[rule["quantity"]].danger == "both"
+    assert both is (rule["quantity"] in {"thrust", "torque", "power"})
+    if rule["sense"] == "at most":
+        assert (verdict_at(ready, negative) is Verdict.NO_GO) is both
+    if both:
+        assert bench.finding(rule["id"]).margin < 0.0
 
 
 def test_inside_the_limit_is_not_no_go(ready):
     rule = ready[1]
     limit = expected_number(rule["limit"])
-    inside = limit * (1.0 - EPS) if rule["sense"] == "at most" else limit * (1.0 + EPS)
+    _, inside = beyond_and_inside(rule)
     wanted = Verdict.CAUTION if "caution" in rule else Verdict.GO
     assert verdict_at(ready, inside) is wanted
     assert verdict_at(ready, limit) is wanted
@@ -110,9 +135,8 @@ def test_caution_level_turns_go_into_caution(ready):
 
 def test_only_the_allowance_beyond_the_limit_is_no_go(ready):
     bench, rule, row = ready
-    limit = expected_number(rule["limit"])
-    end, factor = ("high", 1.0 + EPS) if rule["sense"] == "at most" else ("low", 1.0 - EPS)
-    bench.put(rule["quantity"], row, **{end: limit * factor})
+    end = "high" if rule["sense"] == "at most" else "low"
+    bench.put(rule["quantity"], row, **{end: beyond_and_inside(rule)[0]})
     assert bench.finding(rule["id"]).verdict is Verdict.NO_GO
 
 
@@ -133,9 +157,7 @@ def test_number_that_is_not_finite_is_not_assessed(ready, column, number):
     assert bench.judge().verdict is Verdict.NOT_ASSESSED
 
 
-@pytest.mark.parametrize(
-    "status", [Status.NOT_COMPUTED, Status.NOT_CONVERGED, Status.OUTSIDE_VALIDITY]
-)
+@pytest.mark.parametrize("status", WITHOUT_STANDING)
 def test_status_that_is_not_ok_is_not_assessed(ready, status):
     bench, rule, row = ready
     bench.flag(rule["quantity"], row, status, "grid too coarse")
@@ -161,9 +183,7 @@ def test_quantity_without_rows_is_not_assessed(used_quantity, chosen):
     assert chosen.judge().verdict is Verdict.NOT_ASSESSED
 
 
-@pytest.mark.parametrize(
-    "status", [Status.NOT_COMPUTED, Status.NOT_CONVERGED, Status.OUTSIDE_VALIDITY]
-)
+@pytest.mark.parametrize("status", WITHOUT_STANDING)
 def test_study_that_refused_as_a_whole_is_not_assessed(used_quantity, chosen, status):
     chosen.drop(used_quantity, chosen.rows(used_quantity)[1:])
     chosen.flag(used_quantity, [0], status, "refused")
@@ -184,9 +204,7 @@ def test_each_segment_left_out_is_not_assessed(used_quantity, chosen):
         chosen.drop(used_quantity, chosen.rows(used_quantity, segment=segment))
         quantity_rules = [r for r in chosen.plan.rule_book.rules if r.quantity == used_quantity]
         kind = next(s.kind for s in chosen.segments if s.id == segment)
-        if any(kind in r.where for r in quantity_rules) and not (
-            used_quantity == "droop_stop_clearance" and segment in {"1.1h", "1.1r"}
-        ):
+        if any(kind in r.where for r in quantity_rules):
             assert chosen.judge().verdict is Verdict.NOT_ASSESSED, segment
             assert chosen.judge().segment_verdicts[segment] is Verdict.NOT_ASSESSED
         chosen.predictions = kept

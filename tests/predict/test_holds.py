@@ -236,3 +236,15 @@ def test_speed_of_the_wind_lifts_the_lift_off_speed(articulated, run_predict):
         for gust in (0.0, 6.0, 12.0)
     ]
     assert speeds == sorted(speeds)
+
+
+def test_inverted_rotor_leaves_its_rest_position_unassessed(short, run_predict):
+    stand = dataclasses.replace(short.stand, mounting="inverted")
+    found = run_predict(dataclasses.replace(short, stand=stand))
+    for quantity in ("droop_stop_rest_moment", "lift_off_speed_still_air"):
+        assert found[quantity].status == (Status.OUTSIDE_VALIDITY,)
+        assert "hang on their up stops" in found[quantity].reasons[0]
+    i = row(found["flap_mean"], "1.2h")
+    upright = run_predict(short)["flap_mean"]
+    assert found["flap_mean"].status[i] is Status.OK
+    assert found["flap_mean"].value[i] > upright.value[row(upright, "1.2h")]
