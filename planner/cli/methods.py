@@ -37,6 +37,7 @@ def describe(quantity_id: str) -> str:
         ("dangerous", quantity.danger),
         ("method", quantity.method),
         ("validity", quantity.validity),
+        ("accuracy", quantity.accuracy or "not compared with measurements"),
         ("source", quantity.source),
         ("hand check", quantity.hand_check + band),
         ("allowance", allowance),

@@ -68,6 +68,8 @@ class Quantity:
     hand_floor: float = 0.0
     """Difference in SI below which the two agree in any case."""
     method: str = ""
+    accuracy: str = ""
+    """What is known of its error against measurements, printed on paper."""
 
 
 @dataclass(frozen=True)

@@ -27,7 +27,8 @@ RESONANCE = (
         "frequency allowance.",
         validity="straight slender blades, uncoupled modes; speeds 0 to 120 % rpm",
         source=_BEAM_SOURCE,
-        hand_check="first flap and lag modes: rigid blade about its hinge (articulated hubs)",
+        hand_check="first flap mode (hingeless: about the equivalent hinge) and first lag mode of "
+        "articulated hubs: rigid blade about its hinge",
         hand_band=0.06,
         allowance="frequency",
     ),
@@ -75,6 +76,7 @@ RESONANCE = (
         validity="as for the natural frequencies",
         source="common practice",
         hand_check="none: read off the fan chart",
+        allowance="frequency",
     ),
     Quantity(
         id="crossing_cover",

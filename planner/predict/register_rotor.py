@@ -51,7 +51,8 @@ def _rotor(  # noqa: PLR0913, PLR0917 - one line of a table
         danger=danger,  # type: ignore[arg-type]  # literal checked by a test
         study="holds",
         method=_METHOD + detail,
-        validity=_VALIDITY + THEORY_BAND,
+        validity=_VALIDITY.strip(),
+        accuracy=THEORY_BAND,
         source=_SOURCE,
         hand_check=hand_check,
         hand_band=hand_band,

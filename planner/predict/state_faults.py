@@ -81,6 +81,12 @@ def _of_the_method(quantity: str, found: SegmentResults, scope: Scope) -> Iterat
 
 def _of_contact(quantity: str, found: SegmentResults, scope: Scope) -> Iterator[_Fault]:
     feels_contact = quantity not in AIR_LOADS
+    parked = found.segment.kind == "hold" and found.segment.top_rad_s == 0.0
+    yield (
+        quantity in {"droop_stop_clearance", "up_stop_clearance"} and parked,
+        Status.NOT_APPLICABLE,
+        "the rotor is at rest: judged by the moment on the stop",
+    )
     yield (
         quantity == "droop_stop_clearance" and found.rests,
         Status.NOT_APPLICABLE,
@@ -92,14 +98,16 @@ def _of_contact(quantity: str, found: SegmentResults, scope: Scope) -> Iterator[
         "the ramp passes the region of the stops in wind; its quasi-static states are "
         "information only until the ramp is marched in gusts",
     )
+    # a teetering pair at rest lies on one stop or the other, whichever way it tips
+    can_knock = feels_contact and not (parked and found.rotor.hub.kind == "teetering")
     yield (
-        feels_contact and found.knocks and quantity != "droop_stop_clearance",
+        can_knock and found.knocks and quantity != "droop_stop_clearance",
         Status.OUTSIDE_VALIDITY,
         "a blade touches its droop stop in part of each turn; what the impact does is not "
         "predicted by a periodic solution",
     )
     yield (
-        feels_contact and found.reaches_up_stop and quantity != "up_stop_clearance",
+        can_knock and found.reaches_up_stop and quantity != "up_stop_clearance",
         Status.OUTSIDE_VALIDITY,
         "a blade reaches its up stop; what the impact does is not predicted by a periodic "
         "solution",

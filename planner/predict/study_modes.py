@@ -13,7 +13,9 @@ from planner.methods.beam_modes import frequencies
 from planner.model.results import Labels, Status
 from planner.predict.rows import Rows
 from planner.predict.study import Inputs, Study
+from planner.predict.study_inertia import moment_by_trapezia
 from planner.rotor.blade_views import beam, flap_inertia
+from planner.rotor.setup import hub_freedom
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -23,7 +25,7 @@ if TYPE_CHECKING:
     from planner.methods.beam import BeamMatrices
     from planner.model.plan import Segment
     from planner.model.results import Prediction
-    from planner.model.rotor import Blade, Hub
+    from planner.model.rotor import Blade, Hub, Rotor
     from planner.model.stand import GivenMode
 
     FloatArray = NDArray[np.float64]
@@ -79,7 +81,7 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
             _damping_row(rows["mode_damping"], track, hold, float(frequency[0]), inputs)
             _spacing_rows(rows["harmonic_spacing"], track, label, (speed, frequency, allowance))
     for track in tracks(inputs, fan_speeds(inputs)):
-        _crossing_rows(rows["crossing_speed"], track, fan_speeds(inputs))
+        _crossing_rows(rows["crossing_speed"], track, fan_speeds(inputs), allowance)
     return {quantity: filled.prediction() for quantity, filled in rows.items()}
 
 
@@ -257,31 +259,52 @@ def _spacing_rows(rows: Rows, track: Track, label: Labels, window: _Window) -> N
         )
 
 
-def _crossing_rows(rows: Rows, track: Track, speed: FloatArray) -> None:
+def _crossing_rows(
+    rows: Rows, track: Track, speed: FloatArray, allowance: tuple[float, float]
+) -> None:
     for n in track.harmonics or range(1, GREATEST_HARMONIC + 1):
-        gap = track.frequency_rad_s - n * speed
-        for i in np.flatnonzero((gap[:-1] > 0.0) != (gap[1:] > 0.0)):
-            if speed[i] == 0.0 and gap[0] <= 0.0:
-                continue  # a free hinge starts at zero on every harmonic
-            share = gap[i] / (gap[i] - gap[i + 1])
-            at = float(speed[i] + share * (speed[i + 1] - speed[i]))
-            rows.add(Labels(mode=track.name, harmonic=str(n)), at, speed_rad_s=at)
+        nominal, low, high = (
+            _crossings(track.frequency_rad_s * share, n, speed) for share in (1.0, *allowance)
+        )
+        alike = len(nominal) == len(low) == len(high)
+        for i, at in enumerate(nominal):
+            ends = (low[i], high[i]) if alike else (at, at)
+            label = Labels(mode=track.name, harmonic=str(n))
+            rows.add(label, at, low=min(ends), high=max(ends), speed_rad_s=at)
+
+
+def _crossings(frequency: FloatArray, n: int, speed: FloatArray) -> list[float]:
+    """Speeds where a frequency meets a harmonic, between computed speeds by straight lines."""
+    gap = frequency - n * speed
+    found = []
+    for i in np.flatnonzero((gap[:-1] > 0.0) != (gap[1:] > 0.0)):
+        if speed[i] == 0.0 and gap[0] <= 0.0:
+            continue  # a free hinge starts at zero on every harmonic
+        share = gap[i] / (gap[i] - gap[i + 1])
+        found.append(float(speed[i] + share * (speed[i + 1] - speed[i])))
+    return found
 
 
 def hand_frequency(mode: str, inputs: Inputs, speed_rad_s: float) -> float:
-    """First flap and lag frequency of a rigid blade about its hinge; NaN for other modes."""
-    hub = inputs["rotor.hub"]
-    if hub.kind != "articulated" or mode not in {"flap 1", "lag 1"} or speed_rad_s <= 0.0:
+    """First flap and lag frequency of a rigid blade about its hinge; NaN for other modes.
+
+    A hingeless blade flaps about its equivalent hinge, stated or found: a statement that does not
+    fit the blade's own stiffness shows here. Mass moments come from a trapezoidal sum.
+    """
+    rotor: Rotor = inputs["rotor"]
+    if speed_rad_s <= 0.0 or mode not in {"flap 1", "flap 1 cyclic", "lag 1"}:
         return math.nan
-    in_flap = mode == "flap 1"
-    hinge = hub.flap_hinge_m if in_flap else hub.lag_hinge_m
-    spring = hub.flap_spring_N_m_rad if in_flap else hub.lag_spring_N_m_rad
-    body = flap_inertia(inputs["rotor.blade"], hinge)
-    inertia, first = float(body.second_moment_kg_m2), float(body.first_moment_kg_m)
-    ratio = (
-        hinge * first / inertia + spring / (inertia * speed_rad_s**2) + (1.0 if in_flap else 0.0)
-    )
-    return speed_rad_s * math.sqrt(ratio)
+    if mode == "lag 1":
+        hub = rotor.hub
+        if hub.kind != "articulated":
+            return math.nan
+        hinge, spring, turning = hub.lag_hinge_m, hub.lag_spring_N_m_rad, 0.0
+    else:
+        freedom = hub_freedom(rotor)
+        hinge, spring, turning = freedom.hinge_m, freedom.spring_N_m_rad, 1.0
+    inertia = moment_by_trapezia(rotor.blade, hinge, 2)
+    offset = hinge * moment_by_trapezia(rotor.blade, hinge, 1) / inertia
+    return speed_rad_s * math.sqrt(turning + offset + spring / (inertia * speed_rad_s**2))
 
 
 MODES = Study(
@@ -289,6 +312,7 @@ MODES = Study(
     1,
     (
         "segments",
+        "rotor",
         "rotor.blade",
         "rotor.hub",
         "rotor.n_blades",
