@@ -16,6 +16,7 @@ from planner.predict.cases import (
     nominal_points,
     to_cases,
 )
+from planner.predict.fineness import SETTINGS
 from planner.rotor.loads import Loads
 from planner.rotor.result import TrimResult
 from planner.rotor.trim import trim
@@ -94,7 +95,7 @@ def _batch(points: Sequence[Point], inputs: Inputs, rotor: RotorArrays) -> Batch
     cases = to_cases(list(different), stops, inputs["stand.mounting"])
     return Batch(
         tuple(points),
-        _taken(trim(rotor, cases), np.array(where, dtype=np.int64)),
+        _taken(trim(rotor, cases, SETTINGS), np.array(where, dtype=np.int64)),
         np.array([p.segment for p in points], dtype=np.int64),
         np.array([p.speed_rad_s for p in points]),
     )

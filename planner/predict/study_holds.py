@@ -9,13 +9,13 @@ import numpy as np
 
 from planner.model.results import Labels, Status
 from planner.predict.cases import air_of
+from planner.predict.fineness import STATIONS
 from planner.predict.hover_hand import HoverHand, compares, hover_hand
 from planner.predict.register_rotor import ROTOR
 from planner.predict.rows import Rows
 from planner.predict.segment_results import SegmentResults, segment_results
 from planner.predict.solving import Solved, solve_run
 from planner.predict.state_faults import AIR_LOADS, STOPS, Scope, state_fault
-from planner.predict.stations import STATIONS
 from planner.predict.study import Inputs, Study
 from planner.predict.study_inertia import moment_by_trapezia
 from planner.rotor.blade_views import flap_inertia, lift_slope_per_rad, section_at

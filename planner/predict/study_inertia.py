@@ -7,8 +7,8 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from planner.methods.blade_inertia import lock_number, resample
+from planner.predict.fineness import STATIONS
 from planner.predict.rows import single
-from planner.predict.stations import STATIONS
 from planner.predict.study import Inputs, Study
 from planner.rotor.blade_views import lift_slope_per_rad, section_at
 from planner.rotor.setup import rotor_arrays

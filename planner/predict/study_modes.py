@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -63,8 +63,13 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
         for q in ("mode_frequency", "mode_damping", "harmonic_spacing", "crossing_speed")
     }
     allowance = inputs.allowance("frequency")
-    for track in tracks(inputs, speeds.reshape(-1)):
-        at_holds = track.frequency_rad_s.reshape(speeds.shape)
+    fan = fan_speeds(inputs)
+    for track in tracks(inputs, np.concatenate([speeds.reshape(-1), fan])):
+        at_holds = track.frequency_rad_s[: speeds.size].reshape(speeds.shape)
+        over_fan = track.frequency_rad_s[speeds.size :]
+        _crossing_rows(
+            rows["crossing_speed"], replace(track, frequency_rad_s=over_fan), fan, allowance
+        )
         for hold, speed, frequency in zip(holds, speeds, at_holds, strict=True):
             label = Labels(segment=hold.id, mode=track.name)
             status, reason = mode_fault(track.given)
@@ -80,8 +85,6 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
             )
             _damping_row(rows["mode_damping"], track, hold, float(frequency[0]), inputs)
             _spacing_rows(rows["harmonic_spacing"], track, label, (speed, frequency, allowance))
-    for track in tracks(inputs, fan_speeds(inputs)):
-        _crossing_rows(rows["crossing_speed"], track, fan_speeds(inputs), allowance)
     return {quantity: filled.prediction() for quantity, filled in rows.items()}
 
 

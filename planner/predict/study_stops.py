@@ -13,9 +13,9 @@ from planner.methods.hand_checks import resting_stop_moment_n_m
 from planner.model.plan import Cyclic
 from planner.model.results import Labels, Status
 from planner.predict.cases import Point, air_of, to_cases
+from planner.predict.fineness import SETTINGS, STATIONS
 from planner.predict.hover_hand import hinge_by_hand
 from planner.predict.rows import Rows
-from planner.predict.stations import STATIONS
 from planner.predict.stop_free import stop_free_speed_rad_s
 from planner.predict.study import Inputs, NotAssessedError, Study
 from planner.rotor.lift_off import lift_off_in_wind, still_air_lift_off
@@ -96,7 +96,7 @@ def _rest_moment(rows: Rows, inputs: Inputs, arrays: RotorArrays, known: tuple[A
     pitches = pitches_at_rest(inputs["segments"])
     points = _points(pitches[:1], [0.0], air)[:1]
     points += _points(pitches, sorted({air.wind_m_s, air.gust_m_s}), air)
-    result = trim(arrays, _cases(points, inputs, droop))
+    result = trim(arrays, _cases(points, inputs, droop), SETTINGS)
     moments = result.stop_moment_N_m
     numbers = (float(moments[0]), float(np.min(moments)), float(np.max(moments)))
     if inputs["stand.mounting"] == "axis level" and air.gust_m_s > 0.0:
@@ -141,7 +141,7 @@ def _lift_off(
         ("lift_off_speed_in_wind", sorted({air.wind_m_s, air.gust_m_s}), lift_off_in_wind),
     ):
         cases = _cases(_points(pitches, winds, air), inputs, droop)
-        found = search(arrays, cases, np.full(cases.count, top))
+        found = search(arrays, cases, np.full(cases.count, top), SETTINGS)
         speeds = found.speed_rad_s
         if inputs["stand.mounting"] == "axis level" and winds[-1] > 0.0:
             rows[quantity].flag(Labels(), Status.OUTSIDE_VALIDITY, _LEVEL)
