@@ -94,6 +94,8 @@ def _outcomes(
     selection = select(rule, quantity, known[quantity.id], case)
     bench = Bench(rule, quantity, selection.speeds, damping, case)
     outcomes = tuple(judge_row(row, bench) for row in selection.rows)
+    if all(row.set_aside for row in selection.rows):
+        outcomes = ()
     return outcomes, "" if outcomes else _nothing_matches(rule, quantity)
 
 
@@ -101,6 +103,8 @@ def _nothing_matches(rule: Rule, quantity: Quantity) -> str:
     words = f"the rule matches nothing: no {quantity.id} at {', '.join(rule.where) or 'nowhere'}"
     if rule.mode_family:
         words += f" for {rule.mode_family} modes"
+    if rule.harmonics:
+        words += f" per revolution {', '.join(str(n) for n in rule.harmonics)}"
     if "segment" not in quantity.axes and "run" not in rule.where:
         words += '; it is a number of the whole run, so where must have "run"'
     elif rule.speed_range.from_rad_s or rule.speed_range.to_rad_s is not None:

@@ -1,17 +1,19 @@
 """Predictions held against the plan's rule book: findings, coverage and the verdict.
 
 A wrong GO can hurt someone. These are the ways in which one could come out, and what stops each;
-``tests/judge/test_wrong_go.py`` tries every one of them.
+tests of the same numbers in ``tests/judge`` try every one of them.
 
 1. A number is NaN or infinite: comparisons are written so that only a finite number inside passes.
 2. A number was not computed, did not converge or lies outside validity: the status is read before
    the number; such a row is NOT ASSESSED even where its number looks harmless. It is not NO-GO
    either where its number looks bad: the number is unproven, so it is told in the reason only.
-3. Only the nominal value is inside: "at most" reads the greatest of value, low and high, "at
-   least" the least.
+3. Only the nominal value is inside, or only the sign is harmless: "at most" reads the greatest of
+   value, low and high, "at least" the least. Thrust, torque and power are dangerous both ways: "at
+   most" reads their size, and "at least" closes nothing.
 4. Rounding: nothing is rounded before judging.
 5. A quantity is not predicted, or a rule names one that does not exist: NOT ASSESSED.
-6. A rule matches no row, because of its part of the run, speed range or mode family: NOT ASSESSED.
+6. A rule matches no row, because of its part of the run, speed range, mode family or harmonics:
+   NOT ASSESSED, and its class is open.
 7. Prediction left out a segment, mode or keep-out band, or labelled it wrongly: the expected
    places are listed from the plan and each missing one is NOT ASSESSED.
 8. A hold's window or a ramp reaches into a rule's speed range with one end only: it is judged
@@ -22,15 +24,25 @@ A wrong GO can hurt someone. These are the ways in which one could come out, and
     ASSESSED.
 11. A limit is in another dimension than the quantity, or refers to a value of another: NOT
     ASSESSED.
-12. The model allowance is missing from the book: rows that need it lose their OK.
+12. The plan or book lacks a value that it must have (a model allowance, the overspeed trip, the
+    margin on lift-off speed, whether a mode was found with the rotor fitted): NOT ASSESSED, and no
+    document closes it.
 13. A mode is exempt by damping that was not assessed: only assessed damping, at its least, counts.
-14. A part does not apply or everything is exempt: the rule gives GO but closes no hazard class.
-15. A thin rule book: every class is listed here, and each asks for numbers that speak of its
-    hazard; a rule that guards the harmless side does not count.
+14. A part does not apply, or a rule sets harmonics aside or exempts modes: the rule gives GO, but
+    what it set aside or exempted closes no hazard class (the first flap mode may be exempt: it
+    lives near once per revolution). Where every number that a built-in class asks for was looked
+    at and does not apply, there is no such hazard, and the rules that looked close it.
+15. A thin rule book: every class is listed, part by part, and each asks for the numbers that speak
+    of its hazard, down to the order of a blade mode, each mode of the stand and the harmonic that
+    drives it: held spacing and distance from keep-out bands, resonances passed in ramps and the
+    stop, both stops and the moment of resting on one, also at rest, the overspeed trip, torque and
+    power while speed changes. A rule that guards the harmless side, or one of another part of the
+    run, does not count.
 16. One hold is judged, another is outside every rule's range: each segment is asked by itself.
-17. An outside document is for less wind or speed, another part or class, or names no approver: it
+17. An outside document is for less speed or less wind (at the anemometer or the hub, whichever is
+    more), is for another part or class, is dated after the card's issue, or names no approver: it
     does not close. It never closes what did not converge, a missing limit, a gap, or NO-GO.
-18. The plan's wind is above the book's cap, or there is no cap.
+18. The plan's wind, with the anemometer's error, is above the book's cap, or there is no cap.
 19. The main path has a slip: an independent hand check that disagrees is a finding.
 20. A step looks good although its class is open: a class that is not closed in holds, ramps or
     the stop marks all of those segments.

@@ -224,7 +224,7 @@ def table(
 
 def _labels(quantity: Quantity, run: Plan, walk: tuple[Segment, ...]) -> list[Labels]:
     if "segment" not in quantity.axes:
-        return [Labels()]
+        return _labels_of_run(quantity, run)
     found = []
     for segment in walk:
         inside = segment.from_rad_s != segment.to_rad_s and (
@@ -239,6 +239,16 @@ def _labels(quantity: Quantity, run: Plan, walk: tuple[Segment, ...]) -> list[La
                     for band in (bands if "band" in quantity.axes else [""])
                 ]
     return found
+
+
+def _labels_of_run(quantity: Quantity, run: Plan) -> list[Labels]:
+    if "band" in quantity.axes:
+        return [Labels(band=band.id) for band in run.keep_outs]
+    if "mode" in quantity.axes:
+        return [
+            Labels(mode=m, harmonic=n) for m, harmonics in HARMONICS.items() for n in harmonics
+        ]
+    return [Labels()]
 
 
 def _harmonics(quantity: Quantity, mode: str) -> tuple[str, ...]:
