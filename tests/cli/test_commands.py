@@ -196,6 +196,8 @@ def test_a_reader_that_goes_away_does_not_change_the_status():
     code = "from planner.cli import run; run()"
     command = [sys.executable, "-c", code, "check", str(SAMPLES / "articulated-gusty")]
     with subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE) as process:
+        assert process.stdout is not None
+        assert process.stderr is not None
         process.stdout.close()
         assert process.wait() == 3
         assert process.stderr.read() == b""

@@ -88,9 +88,10 @@ def test_ramp_from_rest_in_wind_is_information_only(short, run_predict):
 def test_ramp_from_rest_without_wind_is_assessed(short, run_predict):
     found = run_predict(calm(short))
     for quantity in ("flap_lowest", "droop_stop_clearance", "droop_stop_moment"):
-        i = row(found[quantity], "1.1r")
-        assert found[quantity].status[i] is Status.OK
-    assert found["droop_stop_moment"].high[i] < found["droop_stop_rest_moment"].value[0]
+        assert found[quantity].status[row(found[quantity], "1.1r")] is Status.OK
+    moment = found["droop_stop_moment"]
+    rest = found["droop_stop_rest_moment"]
+    assert moment.high[row(moment, "1.1r")] < rest.value[0]
 
 
 def test_ramp_wholly_below_the_release_speed_is_outside_validity(short, run_predict):
