@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from planner import units
-from planner.files.faults import did_you_mean, listed, shown
+from planner.files.faults import did_you_mean, listed, minus_mend, shown
 from planner.files.schema_rules import OverSpeedTable, ShareTable
 from planner.files.schema_values import Measured, Unknown
 from planner.model.rules import Limit, Sense, SpeedRange
@@ -94,7 +94,7 @@ def _constant(
             else f"a value in {listed(units.unit_names(*scale.dimensions))},"
             " the unit of the quantity"
         )
-        mend = error.mend.replace("'", '"') or "correct the unit"
+        mend = minus_mend(value) or error.mend.replace("'", '"') or "correct the unit"
         document.fault(path, expected, mend)
         return math.nan
     if not math.isfinite(number):

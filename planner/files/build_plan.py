@@ -38,6 +38,7 @@ def check_plan(
 ) -> None:
     """Add the faults between values of the plan file, and between plan and stand."""
     _check_papers(document, file)
+    _check_abort(document, file)
     _check_site(document, file.site)
     if stand is not None:
         _check_shear(document, file.site, stand.hub_height)
@@ -50,6 +51,9 @@ def check_plan(
 
 def _check_papers(document: Document, file: PlanFile) -> None:
     start, finish = file.planned_start, file.planned_finish
+    if file.issued and start and moment_of(file.issued) > moment_of(start):
+        expected = f"a time at or before planned_start {start}"
+        document.fault(("issued",), expected, "correct one of the two", file.issued)
     if start and finish and moment_of(finish) <= moment_of(start):
         expected = f"a time after planned_start {start}"
         document.fault(("planned_finish",), expected, "correct one of the two", finish)
@@ -60,6 +64,15 @@ def _check_papers(document: Document, file: PlanFile) -> None:
         for i, name in enumerate(names):
             if name and name in names[:i]:
                 document.fault((key, i), "each entry once", "remove one")
+
+
+def _check_abort(document: Document, file: PlanFile) -> None:
+    """An abort that adds pitch to the whole schedule would add load; unknown pitch is no fault."""
+    held = [step.collective for block in file.block for step in block.step]
+    if held and all(collective < file.abort.collective for collective in held):
+        highest = from_si(max(held), "deg")
+        expected = f"at most {highest:g} deg, the highest collective of the schedule"
+        document.fault(("abort", "collective"), expected, "lower it, or correct the schedule")
 
 
 def _check_site(document: Document, site: SiteTable) -> None:

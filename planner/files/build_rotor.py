@@ -100,7 +100,7 @@ def check_rotor(document: Document, file: RotorFile) -> None:
 
 
 def check_stations(rows: StationRows, file: RotorFile) -> list[Fault]:
-    """Find stations out of order, not covering the blade, or without chord where it lifts."""
+    """Find stations out of order, not covering the blade, without chord, or with odd offsets."""
     radius = rows.values["radius"]
     if radius.size == 0:
         return []
@@ -123,6 +123,19 @@ def check_stations(rows: StationRows, file: RotorFile) -> list[Fault]:
     for row in np.flatnonzero((radius >= file.aero_root - near) & (rows.values["chord"] <= 0.0)):
         expected = f"a chord above 0 from aero_root {_metres(file.aero_root)} on"
         faults.append(rows.fault(int(row), "chord", expected, "0 m", "correct chord or aero_root"))
+    return faults + _offset_faults(rows)
+
+
+def _offset_faults(rows: StationRows) -> list[Fault]:
+    """Find offsets that lie beyond the section: a wrong unit, most likely."""
+    chord = rows.values["chord"]
+    faults: list[Fault] = []
+    for name in ("c.g. offset", "a.c. offset"):
+        offset = rows.values[name]
+        for row in np.flatnonzero((chord > 0.0) & (np.abs(offset) > chord)):
+            expected = f"an offset of at most the chord {_metres(chord[row])}, either way"
+            mend = "correct the offset or its unit"
+            faults.append(rows.fault(int(row), name, expected, _metres(offset[row]), mend))
     return faults
 
 

@@ -6,13 +6,16 @@ import math
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
+from planner.files.faults import shown
 from planner.files.schema_plan import BlockTable, CyclicTable, PlanFile, StepTable
 from planner.model.plan import Block, Cyclic, Step, Window
 
 if TYPE_CHECKING:
     from planner.files.positions import KeyPath
+    from planner.files.schema_values import Measured
     from planner.files.source import Document
 
+_SHORTEST_RAMP_S = 0.1
 _SAME = 1e-9
 """Speeds that differ by less than this share are one speed, written in two ways."""
 
@@ -91,14 +94,25 @@ class _Walk:
             if changes and start.speed == to.speed:
                 expected = "ramp_time, because only pitch changes"
                 self._key_fault((*path, "ramp_rate"), expected, "ramp_rate")
-            return abs(to.speed - start.speed) / rate.resolved(self.full_speed)
+            return self._time_at_rate(path, rate, to.speed - start.speed)
         elif time is None and changes:
             expected = f"exactly one of ramp_time and ramp_rate{why}"
             self._key_fault((*path, "ramp_time"), expected, "neither")
         elif time == 0.0 and changes:
             expected = f"a ramp longer than 0 s{why}"
             self.document.fault((*path, "ramp_time"), expected, "give the ramp its time")
+        elif time is not None and 0.0 < time < _SHORTEST_RAMP_S:
+            expected = f"a ramp of at least {_SHORTEST_RAMP_S:g} s"
+            self.document.fault((*path, "ramp_time"), expected, "give the ramp its time")
         return time or 0.0
+
+    def _time_at_rate(self, path: KeyPath, rate: Measured, change: float) -> float:
+        time = abs(change) / rate.resolved(self.full_speed)
+        if 0.0 < time < _SHORTEST_RAMP_S:
+            expected = f"a rate that gives the ramp at least {_SHORTEST_RAMP_S:g} s"
+            found = f"{shown(self.document.value((*path, 'ramp_rate')))}, which gives {time:.2g} s"
+            self.document.fault((*path, "ramp_rate"), expected, "lower the rate", found)
+        return time
 
     def _check_way_back(self, path: KeyPath, step: StepTable, entry: _State | None) -> None:
         """A repeated block returns to its first step in that step's ramp time."""

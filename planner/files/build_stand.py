@@ -2,13 +2,20 @@
 
 from __future__ import annotations
 
+import math
 from typing import TYPE_CHECKING
 
+import numpy as np
+
+from planner.files.build_rotor import hinge_radius
+from planner.files.faults import shown
+from planner.files.schema_rotor import HingelessTable
 from planner.model.stand import Drive, GivenMode, Obstruction, Ratings, Stand
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
+    from planner.files.schema_rotor import RotorFile
     from planner.files.schema_stand import (
         DriveTable,
         ModeTable,
@@ -17,6 +24,13 @@ if TYPE_CHECKING:
     )
     from planner.files.schema_values import Measured
     from planner.files.source import Document
+
+
+_LARGEST_GAUGE_ERROR = 0.05
+"""Share of full speed; a gauge worse than this is a slip of the pen."""
+_DROOP_WITHOUT_STOPS = 0.15
+"""Share of the radius that the tips of a hub without stops may come below the hub."""
+_ROUNDING = 1e-9
 
 
 def check_stand(document: Document, file: StandFile) -> None:
@@ -30,6 +44,44 @@ def check_stand(document: Document, file: StandFile) -> None:
     ):
         expected = "a trip at or below the drive's maximum_speed"
         document.fault(("drive", "overspeed_trip"), expected, "correct one of the two")
+    allowed = _LARGEST_GAUGE_ERROR * file.full_speed * (1.0 + _ROUNDING)
+    if file.speed_gauge_error.resolved(file.full_speed) > allowed:
+        expected = f"at most {_LARGEST_GAUGE_ERROR:.0%} of full_speed"
+        document.fault(("speed_gauge_error",), expected, "correct the error or full_speed")
+
+
+def check_surroundings(document: Document, file: StandFile, rotor: RotorFile) -> None:
+    """Add a fault for each thing or person inside the rotor disc."""
+    lowest = _lowest_tip(file, rotor)
+    for key, places in (("obstruction", file.obstruction), ("position", file.position)):
+        for i, place in enumerate(places):
+            if place.distance <= rotor.radius + _ROUNDING and place.height >= lowest - _ROUNDING:
+                expected = (
+                    f"a distance above the rotor radius {rotor.radius:g} m, because blade tips"
+                    f" reach down to {lowest:.2f} m above ground"
+                )
+                distance = shown(document.value((key, i, "distance")))
+                found = f"{distance} at height {shown(document.value((key, i, 'height')))}"
+                mend = "move it out of the disc, or correct distance or height"
+                document.fault((key, i, "distance"), expected, mend, found)
+
+
+def _lowest_tip(file: StandFile, rotor: RotorFile) -> float:
+    """Lowest height above ground that a blade tip can reach; NaN where a value is unknown.
+
+    An inverted or level rotor is taken to reach one radius below its hub.
+    """
+    if file.mounting != "upright":
+        known = file.mounting in {"inverted", "axis level"}
+        return file.hub_height - rotor.radius if known else math.nan
+    if isinstance(rotor.hub, HingelessTable):
+        return file.hub_height - _DROOP_WITHOUT_STOPS * rotor.radius
+    stop = rotor.droop_stop
+    if stop is None:
+        return math.nan
+    retracted = stop.retraction.retracted_angle if stop.retraction else stop.angle
+    lowest_angle = float(np.min([0.0, stop.angle, retracted]))
+    return file.hub_height + (rotor.radius - hinge_radius(rotor)) * math.sin(lowest_angle)
 
 
 def _check_names(

@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Literal
 import numpy as np
 
 from planner import units
-from planner.files.faults import Fault, did_you_mean, listed, shown
+from planner.files.faults import Fault, did_you_mean, listed, minus_mend, shown
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -221,7 +221,8 @@ class _Reader:
         signs = {"any": "", "positive": " above 0", "not negative": " of at least 0"}
         expected = f"a number{signs[column.sign]}"
         if not _NUMBER.fullmatch(cell.text):
-            self._note(cell, column.name, expected, "write a plain number")
+            mend = minus_mend(cell.text) or "write a plain number"
+            self._note(cell, column.name, expected, mend)
             return 0.0
         number = float(cell.text)
         if not math.isfinite(number):

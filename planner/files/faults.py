@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import difflib
+import re
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -10,6 +11,10 @@ if TYPE_CHECKING:
     from collections.abc import Iterable
 
 _LONGEST_SHOWN = 60
+_MINUS_LIKE = (
+    "\N{MINUS SIGN}\N{EN DASH}\N{EM DASH}\N{HYPHEN}\N{NON-BREAKING HYPHEN}\N{FIGURE DASH}"
+    "\N{SMALL HYPHEN-MINUS}\N{FULLWIDTH HYPHEN-MINUS}"
+)
 
 
 @dataclass(frozen=True)
@@ -83,6 +88,17 @@ def did_you_mean(word: str, known: Iterable[str]) -> str:
     """
     close = difflib.get_close_matches(word, sorted(known), n=1, cutoff=0.6)
     return f'did you mean "{close[0]}"?' if close else ""
+
+
+def minus_mend(text: str) -> str:
+    r"""Say how to write a minus sign that is not the keyboard's, or give an empty text.
+
+    Example:
+        >>> minus_mend("\N{MINUS SIGN}1.5 deg"), minus_mend("-1.5 deg")
+        ('write the minus sign as the keyboard\'s "-"', '')
+    """
+    sign = re.match(rf"\s*[{_MINUS_LIKE}]\s*[\d.]|[\s\d.+-]*[eE][{_MINUS_LIKE}]\d", text)
+    return 'write the minus sign as the keyboard\'s "-"' if sign else ""
 
 
 def listed(words: Iterable[str], joint: str = "or") -> str:

@@ -25,7 +25,7 @@ from planner.files.build_rules import (
 )
 from planner.files.build_schedule import read_blocks
 from planner.files.build_sections import check_polar
-from planner.files.build_stand import build_stand, check_stand
+from planner.files.build_stand import build_stand, check_stand, check_surroundings
 from planner.files.csv_tables import POLAR_COLUMNS, STATION_COLUMNS, Column, CsvTable, read_csv
 from planner.files.faults import Fault, PlanFaults
 from planner.files.schema_plan import PlanFile
@@ -68,7 +68,7 @@ def read_plan(
         path: The folder, or its ``plan.toml``.
         vocabulary: Quantity id to its display unit and axes; rules refer to these.
         references: Reference id to a unit of its dimension; shares refer to these.
-        printable: Returns the characters of a text that paper cannot print; such texts are
+        printable: Names the characters of a text that paper cannot print; such texts are
             refused. Left out, only control characters and their kin are.
 
     Returns:
@@ -106,9 +106,7 @@ class _Reading:
         if document is None:
             raise PlanFaults(self.faults, self.shelf.files)
         rotor = self._rotor(document)
-        stand_document, stand = self._named(document, ("stand",), StandFile)
-        if stand_document is not None and stand is not None:
-            check_stand(stand_document, stand)
+        stand = self._stand(document, rotor)
         full_speed = stand.full_speed if stand is not None else math.nan
         extra = file.extra_classes if file is not None else []
         library = Library(self.vocabulary, self.references, full_speed)
@@ -165,6 +163,15 @@ class _Reading:
         if stations is not None:
             self.faults.extend(check_stations(stations, file))
         return _RotorParts(file, stations, self._polars(document, file))
+
+    def _stand(self, plan: Document, rotor: _RotorParts | None) -> StandFile | None:
+        document, file = self._named(plan, ("stand",), StandFile)
+        if document is None or file is None:
+            return None
+        check_stand(document, file)
+        if rotor is not None:
+            check_surroundings(document, file, rotor.file)
+        return file
 
     def _polars(self, document: Document, file: RotorFile) -> dict[str, CsvTable]:
         polars: dict[str, CsvTable] = {}

@@ -15,7 +15,7 @@ Prose = Annotated[str, Text()]
 Label = Annotated[str, Text(longest=120)]
 Id = Annotated[str, Identifier()]
 Date = Annotated[str, Moment()]
-File = Annotated[str, FileName()]
+RuleBookFile = Annotated[str, FileName(example="rules.toml")]
 Angle = Annotated[float, Quantity("angle", minimum="-90 deg", maximum="90 deg", example="8 deg")]
 Speed = Annotated[
     Measured, Quantity("rotor speed", "relative speed", minimum="0 rpm", example="245 rpm")
@@ -138,7 +138,7 @@ class StepTable(Table):
     hold_time: Time = Field(description="Time of the hold.")
     window_rpm: Speed = Field(description="Hold rotor speed within this, either way.")
     window_collective: Annotated[
-        float, Quantity("angle", minimum="0 deg", maximum="90 deg", example="0.2 deg")
+        float, Quantity("angle", minimum="0 deg", maximum="10 deg", example="0.2 deg")
     ] = Field(description="Hold collective within this, either way.")
     note: Annotated[str, Text(empty=True)] = Field(
         default="", description="Printed beside the step."
@@ -162,7 +162,9 @@ class BlockTable(Table):
 class ShutdownTable(Table):
     """The way from the last hold to zero speed."""
 
-    time: Time = Field(description="Time to zero speed.")
+    time: Annotated[float, Quantity("time", minimum="1 s", example="60 s")] = Field(
+        description="Time to zero speed."
+    )
     collective: Angle = Field(description="Collective during the run-down.")
     powered: Annotated[bool, Flag()] = Field(description="Does the drive control the run-down?")
     brake: Annotated[bool, Flag()] = Field(description="Is the rotor brake used?")
@@ -181,9 +183,11 @@ class PlanFile(Table):
     objective: Prose = Field(description="What the run is for.")
     planned_start: Date = Field(description="Planned start, with zone.")
     planned_finish: Date = Field(description="Planned finish, with zone.")
-    rotor: File = Field(description="Rotor file, relative to this file.")
-    stand: File = Field(description="Stand file, relative to this file.")
-    rule_books: list[File] = Field(
+    rotor: Annotated[str, FileName()] = Field(description="Rotor file, relative to this file.")
+    stand: Annotated[str, FileName(example="stand.toml")] = Field(
+        description="Stand file, relative to this file."
+    )
+    rule_books: list[RuleBookFile] = Field(
         description="Rule books, relative to this file; several are merged.", min_length=1
     )
     extra_classes: list[Id] = Field(

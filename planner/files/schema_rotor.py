@@ -16,8 +16,9 @@ Angle = Annotated[float, Quantity("angle", example="-4 deg")]
 FlapAngle = Annotated[
     float, Quantity("angle", minimum="-90 deg", maximum="90 deg", example="-4 deg")
 ]
+Precone = Annotated[float, Quantity("angle", minimum="-20 deg", maximum="20 deg", example="2 deg")]
 Coupling = Annotated[
-    float, Quantity("angle", minimum="-80 deg", maximum="80 deg", example="0 deg")
+    float, Quantity("angle", minimum="-60 deg", maximum="60 deg", example="0 deg")
 ]
 PositiveAngle = Annotated[float, Quantity("angle", positive=True, maximum="90 deg")]
 AbsoluteSpeed = Annotated[float, Quantity("rotor speed", positive=True, example="380 rpm")]
@@ -47,8 +48,14 @@ class Station(Table):
     pitch_inertia: Annotated[
         float, Quantity("pitch inertia per length", positive=True, example="0.04 kg m")
     ] = Field(description="Pitch inertia per length about the pitch axis.")
-    cg_offset: Offset = Field(description="Centre of gravity, positive aft of the pitch axis.")
-    ac_offset: Offset = Field(description="Aerodynamic centre, positive aft of the pitch axis.")
+    cg_offset: Offset = Field(
+        description="Centre of gravity, positive aft of the pitch axis;"
+        " kept for the record, not used yet."
+    )
+    ac_offset: Offset = Field(
+        description="Aerodynamic centre, positive aft of the pitch axis;"
+        " kept for the record, not used yet."
+    )
 
 
 class PointMassTable(Table):
@@ -67,7 +74,7 @@ class BladeTable(Table):
     serials: list[Label] = Field(
         description="Serial number of each blade, in the order of the hub arms.", min_length=1
     )
-    stations: Annotated[str, FileName()] | None = Field(
+    stations: Annotated[str, FileName(example="blade.csv")] | None = Field(
         default=None, description="CSV file with the spanwise stations, units in its header."
     )
     station: list[Station] = Field(
@@ -105,7 +112,7 @@ class PolarTable(Table):
     kind: Literal["polar"] = Field(description='"symmetric" or "polar".')
     from_: Length = Field(alias="from", description="Radius where this section begins.")
     to: PositiveLength = Field(description="Radius where this section ends.")
-    polar: Annotated[str, FileName()] = Field(
+    polar: Annotated[str, FileName(example="polar.csv")] = Field(
         description="CSV file: angle [deg], lift, drag, optional moment, mach."
     )
 
@@ -126,7 +133,7 @@ class ArticulatedTable(Table):
     pitch_flap_coupling: Coupling = Field(
         description="Delta-three: pitch falls by its tangent times flap."
     )
-    precone: FlapAngle = Field(description="Built-in cone angle, up positive.")
+    precone: Precone = Field(description="Built-in cone angle, up positive.")
 
 
 class HingelessTable(Table):
@@ -134,7 +141,7 @@ class HingelessTable(Table):
 
     kind: Literal["hingeless"] = Field(description='"articulated", "hingeless" or "teetering".')
     root: Length = Field(description="Radius where the blade is clamped.")
-    precone: FlapAngle = Field(description="Built-in cone angle, up positive.")
+    precone: Precone = Field(description="Built-in cone angle, up positive.")
     pitch_flap_coupling: Coupling = Field(
         description="Delta-three: pitch falls by its tangent times flap."
     )
@@ -152,7 +159,7 @@ class TeeteringTable(Table):
     """Hub with two blades on one hinge at the shaft axis."""
 
     kind: Literal["teetering"] = Field(description='"articulated", "hingeless" or "teetering".')
-    precone: FlapAngle = Field(description="Built-in cone angle, up positive.")
+    precone: Precone = Field(description="Built-in cone angle, up positive.")
     teeter_spring: Spring = Field(description="Teeter hinge spring.")
     teeter_damper: Damper = Field(description="Teeter hinge damper.")
     pitch_flap_coupling: Coupling = Field(
@@ -172,8 +179,12 @@ class UpStopTable(Table):
     """A one-sided flap stop above the blade."""
 
     angle: FlapAngle = Field(description="Flap angle of first contact, up positive.")
-    stiffness: StiffSpring = Field(description="Contact stiffness about the hinge.")
-    damping: Damper = Field(description="Contact damping about the hinge.")
+    stiffness: StiffSpring = Field(
+        description="Contact stiffness about the hinge; kept for the record, not used yet."
+    )
+    damping: Damper = Field(
+        description="Contact damping about the hinge; kept for the record, not used yet."
+    )
     moment_rating: MomentRating = Field(description="Moment that the stop carries.")
 
 

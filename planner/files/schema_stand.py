@@ -22,7 +22,7 @@ class DriveTable(Table):
 
     name: Label = Field(description="Name of the drive.")
     gear_ratio: Annotated[float, Number(positive=True, example=4.0)] = Field(
-        description="Motor turns for one rotor turn."
+        description="Motor turns for one rotor turn; kept for the record, not used yet."
     )
     torque_rating: Annotated[float, Quantity("moment", positive=True, example="22 kN m")] = Field(
         description="Continuous torque at the rotor shaft."
@@ -109,6 +109,12 @@ class StandFile(Table):
     ratings: RatingsTable = Field(description="What the stand carries.")
     mode: list[ModeTable] = Field(default=[], description="Stand and shaft modes.")
     obstruction: list[PlaceTable] = Field(
-        default=[], description="Things within reach of a blade."
+        default=[],
+        description="Things near the rotor; refused inside its disc,"
+        " otherwise kept for the record, not used yet.",
     )
-    position: list[PlaceTable] = Field(default=[], description="Places where people stay.")
+    position: list[PlaceTable] = Field(
+        default=[],
+        description="Places where people stay; refused inside the rotor disc,"
+        " otherwise kept for the record, not used yet.",
+    )

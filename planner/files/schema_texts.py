@@ -72,13 +72,14 @@ class Identifier(Leaf):
 class FileName(Leaf):
     """A path to another file, relative to the file that names it, with forward slashes."""
 
+    example: str = "rotor.toml"
     blank: Any = ""
 
     def read(self, value: object, printable: Printable | None) -> str:
         """Refuse absolute paths, backslashes and unprintable characters."""
         expected = "a relative path with forward slashes"
         if not isinstance(value, str) or not value.strip() or len(value) > _LONGEST_FILE_NAME:
-            refuse(expected, shown(value), 'write for example "rotor.toml"')
+            refuse(expected, shown(value), f'write for example "{self.example}"')
         if "\\" in value:
             refuse(expected, shown(value), 'write "/" instead of "\\"')
         if PurePosixPath(value).is_absolute() or re.match(r"[A-Za-z]:", value):
@@ -96,7 +97,7 @@ class FileName(Leaf):
 
     def json_schema(self) -> dict[str, Any]:
         """String without a leading slash or any backslash."""
-        return {"type": "string", "pattern": r"^[^/\\][^\\]*$", "examples": ["rotor.toml"]}
+        return {"type": "string", "pattern": r"^[^/\\][^\\]*$", "examples": [self.example]}
 
 
 @dataclass(frozen=True)
@@ -116,8 +117,8 @@ class Moment(Leaf):
                 refuse(expected, shown(value), "write year-month-day hour:minute zone")
             try:
                 moment = datetime.datetime.fromisoformat(re.sub(r" (?=[+-]\d\d:\d\d$)", "", text))
-            except ValueError as error:
-                refuse(expected, shown(value), f"correct it: {error}")
+            except ValueError:
+                refuse(expected, shown(value), "write a day, time and zone that exist")
         if not isinstance(moment, datetime.datetime):
             refuse(expected, shown(value), "write date, time and zone")
         if moment.tzinfo is None:
@@ -154,8 +155,8 @@ class Day(Leaf):
             refuse(expected, shown(value), "write year-month-day")
         try:
             return datetime.date.fromisoformat(value).isoformat()
-        except ValueError as error:
-            refuse(expected, shown(value), f"correct it: {error}")
+        except ValueError:
+            refuse(expected, shown(value), "write a day that exists")
 
     def json_schema(self) -> dict[str, Any]:
         """String with the form of a date."""
@@ -175,5 +176,4 @@ def _refuse_unprintable(text: str, printable: Printable | None) -> None:
         refuse("text without control characters", codes, "remove them")
     missing = printable(re.sub(r"[\n\r\t]", " ", text)) if printable else ""
     if missing:
-        codes = listed([f"U+{ord(c):04X} ({c})" for c in dict.fromkeys(missing[:5])], "and")
-        refuse("characters that the printed card has", codes, "write them in other characters")
+        refuse("characters that the printed card has", missing, "write them in other characters")

@@ -18,10 +18,10 @@ from pydantic import BaseModel, ConfigDict
 from pydantic_core import PydanticCustomError, core_schema
 
 from planner import units
-from planner.files.faults import did_you_mean, listed, shown
+from planner.files.faults import did_you_mean, listed, minus_mend, shown
 
 Printable = Callable[[str], str]
-"""Returns the characters of a text that paper cannot print, empty when it can print all."""
+"""Names the characters of a text that paper cannot print, empty when it can print all."""
 
 _LONGEST_VALUE = 80
 _LARGEST = 1e300
@@ -315,4 +315,4 @@ def _unit_mend(text: str, mend: str) -> str:
         return "use a point as decimal sign"
     if re.fullmatch(r"\s*[+-]?[\d.eE+-]+\s*", text):
         return "add the unit"
-    return mend.replace("'", '"') or "use one of these units"
+    return minus_mend(text) or mend.replace("'", '"') or "use one of these units"

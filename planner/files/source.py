@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import errno
 import hashlib
 import os
 import posixpath
@@ -12,6 +13,7 @@ from typing import TYPE_CHECKING, Any
 
 from planner.files.faults import Fault, did_you_mean, shown, visible
 from planner.files.positions import KeyPath, Positions, index
+from planner.files.syntax import deep_key, long_integer, reason_of, too_deep
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -19,6 +21,12 @@ if TYPE_CHECKING:
 LARGEST_FILE_BYTES = 2_000_000
 _BYTE_ORDER_MARK = b"\xef\xbb\xbf"
 _DIGITS_MEND = "write a number of reasonable length"
+_OPEN_ERRORS = {
+    errno.EACCES: "you have no permission",
+    errno.EPERM: "you have no permission",
+    errno.ENAMETOOLONG: "the name is too long",
+    errno.EIO: "the disk failed",
+}
 
 
 @dataclass(frozen=True)
@@ -101,17 +109,28 @@ class Shelf:
         text = self.text(name, mention)
         if text is None:
             return None
+        deep = deep_key(text)
+        if deep is not None:
+            self._note_depth(name, _place(text, deep))
+            return None
         try:
-            return Document(name, tomllib.loads(text), index(text), self.faults)
+            data = tomllib.loads(text)
+            if not too_deep(data):
+                return Document(name, data, index(text), self.faults)
+            self._note_depth(name, (1, 1))
         except tomllib.TOMLDecodeError as error:
             place, reason = _syntax_place(str(error), text)
             self._file_fault(name, place, "valid TOML", reason, "correct the text at this place")
         except RecursionError:
-            found = "arrays or tables nested too deeply"
-            self._file_fault(name, (1, 1), "a plain structure", found, "nest less")
-        except ValueError as error:  # an integer of thousands of digits
-            self._file_fault(name, (1, 1), "valid TOML", visible(str(error)), _DIGITS_MEND)
+            self._note_depth(name, (1, 1))
+        except ValueError:
+            place, found = _place(text, long_integer(text)), "an integer of thousands of digits"
+            self._file_fault(name, place, "valid TOML", found, _DIGITS_MEND)
         return None
+
+    def _note_depth(self, name: str, place: tuple[int, int]) -> None:
+        found = "arrays or tables nested too deeply"
+        self._file_fault(name, place, "a plain structure", found, "nest less")
 
     def text(self, name: str, mention: Mention | None) -> str | None:
         """Read a text file; None, with faults noted, where that fails."""
@@ -130,7 +149,8 @@ class Shelf:
                 with path.open("rb") as stream:
                     raw = stream.read(LARGEST_FILE_BYTES + 1)
         except OSError as error:
-            reason = f"{shown(path.name)}, which cannot be read ({error.strerror})"
+            why = _OPEN_ERRORS.get(error.errno or 0, "the system refuses to open it")
+            reason = f"{shown(path.name)}, which cannot be read: {why}"
             mend = "check its name and permissions"
         if reason:
             at = mention or Mention(name, 1, 1, "")
@@ -165,14 +185,21 @@ class Shelf:
 
 
 def _why_unreadable(path: Path) -> tuple[str, str]:
-    """Say why a path is no plain file, and the mend; empty when it is one."""
+    """Say why a path is no regular file, and the mend; empty when it is one."""
     shown_name = f'"{visible(path.name or str(path))}"'
     if path.is_dir():
         return f"{shown_name}, which is a directory", "name a file in it"
     if path.is_file():
         return "", ""
     if path.exists():
-        return f"{shown_name}, which is no plain file", "name a plain file"
+        return f"{shown_name}, which is no regular file", "name a regular file"
+    return _why_missing(path, shown_name)
+
+
+def _why_missing(path: Path, shown_name: str) -> tuple[str, str]:
+    if path.is_symlink():
+        found = f"{shown_name}, a link that leads to no file"
+        return found, "correct the link, or name the file itself"
     try:
         beside = os.listdir(path.parent)  # noqa: PTH208 (names only, and no follow-up look)
     except OSError:
@@ -184,8 +211,7 @@ def _why_unreadable(path: Path) -> tuple[str, str]:
 def _syntax_place(message: str, text: str) -> tuple[tuple[int, int], str]:
     """Take line and column out of the parser's message."""
     match = re.search(r" \(at (?:line (\d+), column (\d+)|end of document)\)$", message)
-    reason = visible(message[: match.start()] if match else message)
-    reason = reason[:1].lower() + reason[1:]
+    reason = reason_of(message[: match.start()] if match else message)
     if match and match[1]:
         return (int(match[1]), int(match[2])), reason
     plain = text.replace("\r\n", "\n")

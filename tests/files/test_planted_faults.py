@@ -66,7 +66,7 @@ PLANTED = {
         "planned_start: expected a date and time with its zone, .* add the zone"),
     "local toml time": (PLAN, "2026-11-30T08:00:00Z", "¦2026-11-30T08:00:00", "add the zone"),
     "impossible date": (PLAN, '"2026-12-01 09:00 UTC"', '¦"2026-13-01 09:00 UTC"',
-        "correct it: month must be in 1..12"),
+        "write a day, time and zone that exist"),
     "no date": (PLAN, '"2026-12-01 09:00 UTC"', '¦"tomorrow"', "write year-month-day hour"),
     "impossible day": (PLAN, "date = 2026-10-01", 'date = ¦"2026-02-30"',
         "outside_document.date: expected a date such as"),

@@ -229,7 +229,9 @@ def test_a_broken_rotor_file_does_not_hide_faults_elsewhere(folder):
     folder.edit("stand.toml", "gear_ratio = 4", "gear_ratio = ¦0")
     lines = folder.lines()
     assert len(lines) == 2
-    assert lines[0].startswith("rotor.toml:1:8: expected valid TOML, found invalid value; ")
+    assert lines[0].startswith(
+        "rotor.toml:1:8: expected valid TOML, found no text, number, date, "
+    )
     assert lines[1].startswith("stand.toml:9:14: drive.gear_ratio: expected a bare number above 0")
 
 
@@ -261,7 +263,9 @@ def test_a_repeated_block_needs_time_for_its_way_back(folder):
 def test_a_broken_plan_file_is_one_fault(folder):
     folder.write("plan.toml", b"title = 'x'\n[site\n")
     (line,) = folder.lines()
-    assert line.startswith("plan.toml:2:6: expected valid TOML, found expected ']'")
+    assert line.startswith(
+        "plan.toml:2:6: expected valid TOML, found a table header without its ]; "
+    )
 
 
 def test_empty_files_name_every_missing_key(folder):
@@ -301,7 +305,7 @@ def test_a_device_instead_of_a_file_is_a_fault(folder):
     (folder.path / "stand.toml").unlink()
     (folder.path / "stand.toml").symlink_to("/dev/zero")
     (line,) = folder.lines()
-    assert 'found "stand.toml", which is no plain file; name a plain file' in line
+    assert 'found "stand.toml", which is no regular file; name a regular file' in line
 
 
 def test_a_file_that_cannot_be_read_is_a_fault(folder, monkeypatch):
@@ -315,7 +319,7 @@ def test_a_file_that_cannot_be_read_is_a_fault(folder, monkeypatch):
 
     monkeypatch.setattr(kind, "open", refuse)
     (line,) = folder.lines()
-    assert 'found "stand.toml", which cannot be read (Permission denied); check its' in line
+    assert 'found "stand.toml", which cannot be read: you have no permission; check its' in line
 
 
 def test_a_name_that_no_file_can_have_is_a_fault(folder):
@@ -359,10 +363,10 @@ def test_an_enormous_file_is_refused_unread(folder, name):
         (b"\xef\xbb\xbfname = '\xff'", "stand.toml:1:9: expected UTF-8 text, found byte 0xFF;"),
         (b"a = 1\x00", "stand.toml:1:6: expected valid TOML, found "),
         (b"x = " + b"[" * 20_000, "stand.toml:1:1: expected a plain structure, found arrays"),
-        (b"x = " + b"9" * 10_000, "stand.toml:1:1: expected valid TOML, found Exceeds the limit"),
-        (b"x = 1\nx = 2\n", "stand.toml:2:6: expected valid TOML, found cannot overwrite a value"),
-        (b"x = 2026-02-31", "stand.toml:1:5: expected valid TOML, found invalid date or datetime"),
-        (b'x = """\n\n', "stand.toml:3:1: expected valid TOML, found unterminated string"),
+        (b"x = " + b"9" * 10_000, "stand.toml:1:5: expected valid TOML, found an integer of thou"),
+        (b"x = 1\nx = 2\n", "stand.toml:2:6: expected valid TOML, found a key or table that"),
+        (b"x = 2026-02-31", "stand.toml:1:5: expected valid TOML, found a date or time that"),
+        (b'x = """\n\n', "stand.toml:3:1: expected valid TOML, found a text without its"),
     ],
 )
 def test_text_that_is_no_toml_is_a_fault_with_its_place(folder, raw, message):

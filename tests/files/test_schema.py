@@ -123,3 +123,37 @@ def test_temperatures_below_zero_are_no_negative_values():
     site = json_schemas()["plan.schema.json"]["$defs"]["SiteTable"]["properties"]
     assert re.search(site["temperature"]["pattern"], "-12.5 degC")
     assert not re.search(site["wind_mean"]["pattern"], "-3 m/s")
+
+
+@pytest.mark.parametrize(
+    ("kind", "table", "key", "example"),
+    [
+        ("rotor", "BladeTable", "stations", "blade.csv"),
+        ("rotor", "PolarTable", "polar", "polar.csv"),
+        ("plan", "", "rotor", "rotor.toml"),
+        ("plan", "", "stand", "stand.toml"),
+    ],
+)
+def test_file_names_have_examples_of_their_own(kind, table, key, example):
+    schema = json_schemas()[f"{kind}.schema.json"]
+    owner = schema["$defs"][table] if table else schema
+    assert owner["properties"][key]["examples"] == [example]
+
+
+@pytest.mark.parametrize(
+    ("kind", "table", "key"),
+    [
+        ("rotor", "DroopStopTable", "stiffness"),
+        ("rotor", "UpStopTable", "damping"),
+        ("rotor", "Station", "cg_offset"),
+        ("rotor", "Station", "ac_offset"),
+        ("stand", "DriveTable", "gear_ratio"),
+        ("stand", "", "obstruction"),
+        ("stand", "", "position"),
+    ],
+)
+def test_keys_that_change_no_number_say_so(kind, table, key):
+    schema = json_schemas()[f"{kind}.schema.json"]
+    owner = schema["$defs"][table] if table else schema
+    description = owner["properties"][key]["description"]
+    assert description.endswith(" kept for the record, not used yet.")

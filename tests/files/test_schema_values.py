@@ -10,7 +10,7 @@ from planner.files.schema_values import UNKNOWN, Measured, Quantity, Table
 
 
 def lacking_greek(text):
-    return "".join(c for c in text if c in "βΩ")
+    return ", ".join(f"U+{ord(c):04X} letter" for c in text if c in "βΩ")
 
 
 def test_characters_that_paper_lacks_are_refused(folder):
@@ -19,7 +19,7 @@ def test_characters_that_paper_lacks_are_refused(folder):
     (line,) = folder.lines(printable=lacking_greek)
     assert line == (
         f"{folder.marks[0]}: objective: expected characters that the printed card has,"
-        " found U+03A9 (Ω) and U+03B2 (β); write them in other characters"
+        " found U+03A9 letter, U+03B2 letter; write them in other characters"
     )
 
 
