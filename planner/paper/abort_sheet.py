@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from planner.model.results import Verdict
 from planner.paper.boxes import Box, Ruled, gap, heading, paragraph
-from planner.paper.closing import abort_facts
+from planner.paper.closing import abort_facts, abort_settings
 from planner.paper.ink import ABORT, BOLD, Face
 from planner.paper.tables import Cell, Row, Table, table_boxes
 
@@ -36,6 +36,8 @@ def abort_boxes(reading: Reading, frame: Frame) -> list[Box]:
     who = ", ".join(role["role"] for role in plan["roles"] if role["may_abort"])
     return [
         heading("ABORT, ABORT, ABORT", frame.width, face=_TITLE),
+        paragraph(abort_settings(plan), frame.width, ABORT.bold, keep_next=True),
+        gap(4.0),
         *table_boxes(steps, actions),
         gap(6.0),
         *table_boxes(state, [values]),

@@ -17,6 +17,7 @@ from planner.paper.front import (
     weather_boxes,
 )
 from planner.paper.limits import finding_boxes, limit_boxes
+from planner.paper.numbers import number_boxes
 from planner.paper.pages import frame_for, paginate, render
 from planner.paper.reading import Json, Reading
 from planner.paper.steps import rule_boxes, step_boxes
@@ -60,14 +61,15 @@ def _body(reading: Reading, frame: Frame) -> list[Box]:
         weather_boxes(reading, frame),
         limit_boxes(reading, frame),
         finding_boxes(reading, frame),
+        number_boxes(reading, frame),
         rule_boxes(frame),
         step_boxes(reading, frame),
         coast_boxes(reading, frame),
         reentry_boxes(frame),
         as_run_boxes(frame),
-        fan_boxes(reading, frame, "12  Fan chart"),
+        fan_boxes(reading, frame, "13  Fan chart"),
         _flap_boxes(reading, frame),
-        [new_page(), *signature_boxes(reading, frame)],
+        signature_boxes(reading, frame),
     )
     return [box for part in parts for box in (*part, gap(_GAP))]
 

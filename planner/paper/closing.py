@@ -6,7 +6,7 @@ from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from planner.paper import texts
-from planner.paper.boxes import Box, Ruled, gap, heading, new_page, numbered, paragraph
+from planner.paper.boxes import Box, Ruled, gap, heading, numbered, paragraph
 from planner.paper.front import INK_HEIGHT
 from planner.paper.ink import BODY
 from planner.paper.steps import band_text, speed_text
@@ -53,7 +53,7 @@ def coast_boxes(reading: Reading, frame: Frame) -> list[Box]:
     said += " Time runs from the start of the stop row."
     none = "NOT ASSESSED: the record holds no way to rest. Do not run."
     return [
-        heading("9  Coast-down", frame.width),
+        heading("10  Coast-down", frame.width),
         paragraph(said, frame.width, keep_next=True),
         gap(3.0),
         *(table_boxes(table, rows) if points else [paragraph(none, frame.width, BODY.bold)]),
@@ -118,7 +118,7 @@ def reentry_boxes(frame: Frame) -> list[Box]:
     """What comes before any further run after an abort."""
     table = Table(frame.shares(7, 57, 8, 14, 14), ("Row", "Action", "Done", "Initials", "Time"))
     rows = [_tick_row(f"A{i}", action) for i, action in enumerate(_REENTRY, 1)]
-    return [heading("10  Re-entry after an abort", frame.width), *table_boxes(table, rows)]
+    return [heading("11  Re-entry after an abort", frame.width), *table_boxes(table, rows)]
 
 
 _REENTRY = (
@@ -153,8 +153,7 @@ def as_run_boxes(frame: Frame) -> list[Box]:
     blanks = [Row(tuple(Cell() for _ in range(n)), least_height=30.0) for n in (4, 5)]
     checks = [plain_row(text, "", "", "", least_height=30.0) for text in _INSPECTION]
     return [
-        new_page(),
-        heading("11  As run", frame.width),
+        heading("12  As run", frame.width),
         heading("Deviations", frame.width, level=1),
         *table_boxes(deviations, [blanks[0]] * 5),
         gap(),
@@ -216,10 +215,10 @@ def signature_boxes(reading: Reading, frame: Frame) -> list[Box]:
         "that nothing was changed; it does not show who signed."
     )
     return [
-        heading("13  Cautions", frame.width),
+        heading("14  Cautions", frame.width),
         *(numbered("•", text, frame.width) for text in _cautions(reading)),
         gap(),
-        heading("14  Signatures", frame.width),
+        heading("15  Signatures", frame.width),
         paragraph(
             "This card is a DRAFT until it has been approved here in ink.",
             frame.width,
@@ -246,6 +245,9 @@ def _cautions(reading: Reading) -> list[str]:
         "Predictions are made with allowances, not with certainty. A reading outside its range "
         "means that the rotor is not the one that was predicted: HOLD.",
     ]
+    accuracy = reading.vocabulary.get("thrust", {}).get("accuracy")
+    if accuracy:
+        cautions.append(f"How good: {texts.sentence(accuracy)}".replace(" %", f"{texts.GLUE}%"))
     if not reading.book["approved"]:
         cautions.insert(
             0,
@@ -253,6 +255,19 @@ def _cautions(reading: Reading) -> list[str]:
             "by the facility's own approved book before any run.",
         )
     return cautions
+
+
+def abort_settings(plan: Json) -> str:
+    """The settings of an abort in one line, numbers first."""
+    abort, below = plan["abort"], plan["stand"]["brake_below_rad_s"]
+    parts = (
+        f"Collective to {texts.setting(abort['collective_rad'], 'deg')}",
+        f"cyclic {abort['cyclic'] or texts.NOT_ASSESSED}",
+        f"brake only below {texts.limit(below, 'rpm', 'at most')}"
+        if below is not None
+        else "DO NOT BRAKE",
+    )
+    return " — ".join(parts)
 
 
 def abort_facts(plan: Json) -> tuple[tuple[str, str], ...]:

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from itertools import groupby
 from typing import TYPE_CHECKING
 
-from planner.paper.ink import clipped
+from planner.paper.ink import PLAIN, clipped
 from planner.paper.plot import DASHES, LABEL, Area, Plot, spread, text_width, time_scale
 from planner.units import from_si
 
@@ -62,7 +62,7 @@ def fan_drawing(reading: Reading, width: float, height: float) -> Drawing:
     """Draw the chart; below it the run goes downward in time at its rotor speeds."""
     from reportlab.graphics.shapes import Drawing  # noqa: PLC0415  # only charts pay
 
-    drawing = Drawing(width, height)
+    drawing = Drawing(width, height, initialFontName=PLAIN)
     modes = curves(reading)
     harmonics = [int(n) for n in reading.record["series"]["fan"]["harmonics"]]
     top_rpm = _top_speed(reading)

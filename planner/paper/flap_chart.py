@@ -7,6 +7,7 @@ from itertools import groupby, pairwise
 from typing import TYPE_CHECKING, Any
 
 from planner.model.results import Verdict
+from planner.paper.ink import PLAIN
 from planner.paper.plot import Area, Plot, text_width, time_scale
 from planner.paper.texts import NOT_ASSESSED
 from planner.units import from_si
@@ -27,7 +28,7 @@ def flap_drawing(reading: Reading, width: float, height: float) -> Drawing:
     """Draw lowest and highest flap with both stops; below it the rotor speed at the same time."""
     from reportlab.graphics.shapes import Drawing  # noqa: PLC0415  # only charts pay
 
-    drawing = Drawing(width, height)
+    drawing = Drawing(width, height, initialFontName=PLAIN)
     samples = _samples(reading)
     times = [sample["time_s"] for sample in samples] or [0.0]
     first, last = min(times), max(*times, min(times) + 1.0)

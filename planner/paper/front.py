@@ -267,6 +267,8 @@ def _weather(site: Json, caps: tuple[float | None, float | None]) -> list[tuple[
          f"{spread}"),
         ("Humidity", "no cap", texts.setting(site["relative_humidity"], "%")),
         ("Air", "no cap", air),
+        ("Lightning", "see prerequisites", "—"),
+        ("Icing", "see prerequisites", "—"),
     ]  # fmt: skip
 
 
@@ -284,10 +286,11 @@ def _document_limits(reading: Reading, frame: Frame) -> list[Box]:
         ]
         listed = " and ".join(part for part in limits if part) or "limits that it does not state"
         said.setdefault(listed, []).append(document["number"])
-    return [
+    lines: list[Box] = [
         paragraph(f"{', '.join(dict.fromkeys(numbers))}: only up to {listed}.", frame.width)
         for listed, numbers in said.items()
     ]
+    return [gap(3.0), *lines] if lines else []
 
 
 def _given(value: float | None) -> bool:

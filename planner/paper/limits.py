@@ -7,23 +7,27 @@ from typing import TYPE_CHECKING
 from planner.model.results import Verdict
 from planner.paper import texts
 from planner.paper.boxes import Box, gap, heading, paragraph
-from planner.paper.ink import BODY
+from planner.paper.ink import BODY, REFERENCE
 from planner.paper.reading import Json, Reading, with_symbol
-from planner.paper.tables import Cell, Row, Table, plain_row, table_boxes
+from planner.paper.tables import Cell, Row, Table, fitted, plain_row, table_boxes
 from planner.paper.texts import sentence
 
 if TYPE_CHECKING:
     from planner.paper.pages import Frame
 
 UNWATCHED = "UNWATCHED"
+_NOTHING = "nothing to watch"
+_UNSEEN_STUDIES = {"schedule", "modes", "passages", "tip"}
+_UNSEEN_AXES = {"mode", "band"}
 _WIND_CAP = "wind cap:"
 
 
 def limit_boxes(reading: Reading, frame: Frame) -> list[Box]:
     """Every predicted and watched rule with its numbers, its channel and its basis."""
     table = Table(
-        frame.shares(25, 16, 15, 16, 16, 12),
-        ("Rule", "Limit", "Caution", "Channel / watcher", "Worst predicted", "Margin"),
+        frame.shares(22, 19, 15, 16, 17, 11),
+        ("Rule", "Limit", "Caution", "Channel / watcher", "Worst", "Verdict, margin"),
+        tail_face=REFERENCE,
     )
     rules = reading.rules_of_kind("predicted", "watched")
     rows = [_limit_row(reading, rule) for rule in rules]
@@ -31,19 +35,17 @@ def limit_boxes(reading: Reading, frame: Frame) -> list[Box]:
     return [
         heading("5  Limits", frame.width),
         paragraph(
-            "Worst predicted values are read at the end of the model allowance that is nearer to "
+            "Worst: predicted values, read at the end of the model allowance that is nearer to "
             "the limit, over the whole hold window; margins are rounded down.",
             frame.width,
             keep_next=True,
         ),
         gap(3.0),
-        *(table_boxes(table, rows) or [paragraph(none, frame.width, BODY.bold)]),
+        *(table_boxes(fitted(table, rows), rows) or [paragraph(none, frame.width, BODY.bold)]),
     ]
 
 
 def _limit_row(reading: Reading, rule: Json) -> Row:
-    channel = rule["channel"] or "no channel"
-    watcher = rule["watcher"] or UNWATCHED
     if rule["kind"] == "watched":
         cells = (rule["abort_text"], rule["caution_text"] or "none")
         worst, margin, word = "watched only", "—", ""
@@ -53,18 +55,27 @@ def _limit_row(reading: Reading, rule: Json) -> Row:
             limit_text(reading, rule, rule["caution"]) if rule["caution"] else "none",
         )
         worst, margin, word = _worst(reading, rule)
-    title = f"{rule['title']}\n{word}" if word else rule["title"]
     return Row(
         (
-            Cell(title, bold=True),
+            Cell(rule["title"], bold=True),
             Cell(cells[0]),
             Cell(cells[1]),
-            Cell(f"{channel}\n{watcher}"),
+            Cell(_watch(reading, rule)),
             Cell(worst),
-            Cell(margin),
+            Cell(margin, lead=word),
         ),
         tails=(Cell(_basis(rule)),),
     )
+
+
+def _watch(reading: Reading, rule: Json) -> str:
+    """Channel and watcher; what no reading can show says so, other gaps are UNWATCHED."""
+    quantity = reading.vocabulary.get(rule["quantity"])
+    if quantity is not None and not (rule["channel"] or rule["watcher"]):
+        unseen = _UNSEEN_AXES.intersection(quantity["axes"])
+        if quantity["study"] in _UNSEEN_STUDIES or unseen:
+            return _NOTHING
+    return f"{rule['channel'] or 'no channel'}\n{rule['watcher'] or UNWATCHED}"
 
 
 def _basis(rule: Json) -> str:
@@ -98,7 +109,7 @@ def _limit_at_worst(reading: Reading, rule: Json) -> str:
     if not findings or limit is None or limit["constant"] is not None:
         return ""
     at = findings[0]["limit"]
-    return "" if at is None else f":\n{texts.limit(at, reading.unit_of(rule), rule['sense'])}"
+    return "" if at is None else f": {texts.limit(at, reading.unit_of(rule), rule['sense'])}"
 
 
 def _worst(reading: Reading, rule: Json) -> tuple[str, str, str]:
@@ -191,16 +202,18 @@ def _reason(reading: Reading, rule: Json | None, finding: Json) -> str:
 
 
 def _coverage_boxes(reading: Reading, frame: Frame) -> list[Box]:
-    table = Table(frame.shares(30, 8, 44, 18), ("Hazard class", "Part", "Closed by", "Verdict"))
-    rows = [
-        plain_row(
-            reading.class_title(covered["hazard_class"]),
-            covered["where"],
+    table = Table(frame.shares(30, 16, 38, 16), ("Hazard class", "Part", "Closed by", "Verdict"))
+    parts: dict[tuple[str, str, str], list[str]] = {}
+    for covered in reading.record["coverage"]:
+        said = (
             _closers(reading, covered["closed_by"])
-            or f"nothing: {covered.get('reason') or 'no reason recorded'}",
-            with_symbol(covered["verdict"]),
+            or f"nothing: {covered.get('reason') or 'no reason recorded'}"
         )
-        for covered in reading.record["coverage"]
+        row = (reading.class_title(covered["hazard_class"]), said, covered["verdict"])
+        parts.setdefault(row, []).append(covered["where"])
+    rows = [
+        plain_row(title, ", ".join(where), said, with_symbol(verdict))
+        for (title, said, verdict), where in parts.items()
     ]
     none = "NOT ASSESSED: no hazard class is recorded. Do not run."
     return [

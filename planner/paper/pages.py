@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from planner.paper.boxes import Box, Gap, NewPage
-from planner.paper.ink import BODY, REFERENCE, clipped, draw_lines, width_of
+from planner.paper.ink import BODY, PLAIN, REFERENCE, clipped, draw_lines, width_of
 from planner.paper.tables import Table, TableRow
 from planner.paper.texts import printable, shipped_fonts
 
@@ -224,7 +224,14 @@ def render(pages: list[Page], frame: Frame, banner: Banner) -> bytes:
     shipped_fonts()
     stream = io.BytesIO()
     size = (frame.page_width, frame.page_height)
-    canvas = Canvas(stream, pagesize=size, invariant=1, pageCompression=1, lang="en-GB")
+    canvas = Canvas(
+        stream,
+        pagesize=size,
+        invariant=1,
+        pageCompression=1,
+        lang="en-GB",
+        initialFontName=PLAIN,  # type: ignore[arg-type]  # the stubs want a number
+    )
     canvas.setTitle(f"{banner.document}: {banner.title}")
     canvas.setSubject(banner.reference)
     canvas.setAuthor(banner.maker)

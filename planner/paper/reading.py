@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import Any
@@ -30,6 +30,13 @@ _BANNERS = {
     Verdict.NOT_ASSESSED: "NOT ASSESSED — do not run",
     Verdict.NO_GO: "NO-GO — do not run",
 }
+
+
+def _worst_of(row: Json, danger: str) -> float:
+    """The end of a prediction's range that is nearer to harm; the value where neither is."""
+    if danger == "both":
+        return texts.worst_end(row["low"], row["high"], "at most", danger)[0]
+    return float(row[danger if danger in _ENDS else "value"])
 
 
 def verdict_of(word: str) -> Verdict:
@@ -160,8 +167,7 @@ class Reading:
         fault = self._fault(entry, row)
         if fault:
             return Shown(texts.NOT_ASSESSED, why=fault)
-        worst = row[entry["danger"] if entry["danger"] in _ENDS else "value"]
-        text = texts.toward_danger(worst, entry["unit"], entry["danger"])
+        text = texts.toward_danger(_worst_of(row, entry["danger"]), entry["unit"], entry["danger"])
         return Shown(text, row["value"], row["low"], row["high"], is_number=True)
 
     def _fault(self, entry: Json, row: Json) -> str:
@@ -180,15 +186,16 @@ class Reading:
         rows = self.record["predictions"].get(quantity, {"rows": []})["rows"]
         return not rows or any(row["status"] != Status.NOT_APPLICABLE.value for row in rows)
 
-    def margin(self, quantity: str, segment_id: str) -> str:
-        """Smallest distance to a limit on a quantity in a stretch of the run.
+    def margin(self, segment_id: str, *quantities: str) -> str:
+        """Smallest distance to a limit on quantities of one unit in a stretch of the run.
 
         A finding holds the margin of its own segment, and may hold those of others under
         ``segment_margins``; a margin that the record does not hold is not made up.
         """
         margins: list[float] = []
         said = "no limit"
-        for finding in self._findings_by_quantity.get(quantity, ()):
+        found = (f for q in quantities for f in self._findings_by_quantity.get(q, ()))
+        for finding in found:
             word = finding["segment_verdicts"].get(segment_id)
             if word == Verdict.NOT_ASSESSED.value:
                 return texts.NOT_ASSESSED
@@ -203,19 +210,51 @@ class Reading:
             margins.append(margin)
         if not margins:
             return said
-        return texts.number(min(margins), self.vocabulary[quantity]["unit"], "down")
+        return texts.number(min(margins), self.vocabulary[quantities[0]]["unit"], "down")
 
-    def documents_for(self, quantities: tuple[str, ...], segment_id: str) -> list[str]:
-        """Outside documents that stand in for numbers which are not there, in this stretch."""
-        return [
-            number
-            for quantity in quantities
-            if not self.shown(quantity, segment_id).is_number
-            for finding in self._findings_by_quantity.get(quantity, ())
-            if finding["segment_verdicts"].get(segment_id) == Verdict.GO.value
-            for number in finding["closed_by"].split(", ")
-            if number
-        ]
+    def documents_behind(self, segment_id: str, quantities: Iterable[str] = ()) -> list[str]:
+        """Outside documents that a stretch's verdict rests on, each once.
+
+        A finding rests on its documents where the stretch came to GO although a number that
+        the rule looks at is not there. Of several documents of one finding those count that are
+        about this part of the run, or all where none is.
+
+        Args:
+            segment_id: the stretch.
+            quantities: only findings on these; empty: on all.
+        """
+        found: dict[str, None] = {}
+        for quantity in tuple(quantities) or tuple(self._findings_by_quantity):
+            for finding in self._findings_by_quantity.get(quantity, ()):
+                word = finding["segment_verdicts"].get(segment_id)
+                if not finding["closed_by"] or word != Verdict.GO.value:
+                    continue
+                if self._is_missing(quantity, segment_id, self.rules[finding["rule"]]):
+                    found |= dict.fromkeys(self._documents_about(finding, segment_id))
+        return list(found)
+
+    def _is_missing(self, quantity: str, segment_id: str, rule: Json) -> bool:
+        """Say whether a number that a rule looks at in a stretch is not there."""
+        rows = self.record["predictions"].get(quantity, {"rows": []})["rows"]
+        told = {Status.OK.value, Status.NOT_APPLICABLE.value}
+        here = [row for row in rows if row["segment"] in {segment_id, ""}]
+        return not here or any(
+            row["status"] not in told
+            for row in here
+            if not (row["mode"] and rule["mode_family"])
+            or row["mode"].startswith(f"{rule['mode_family']} ")
+        )
+
+    def _documents_about(self, finding: Json, segment_id: str) -> list[str]:
+        numbers = [number for number in finding["closed_by"].split(", ") if number]
+        hazard_class = self.rules[finding["rule"]]["hazard_class"]
+        about = {
+            document["number"]
+            for document in self.plan["documents"]
+            if document["hazard_class"] == hazard_class
+            and self._kinds.get(segment_id, "") in document["where"]
+        }
+        return [number for number in numbers if number in about] or numbers
 
     def reasons_against(self, segment_id: str) -> list[tuple[str, str]]:
         """Verdict and title of every rule or open hazard class that keeps a stretch from GO.

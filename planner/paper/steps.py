@@ -6,8 +6,9 @@ from dataclasses import dataclass, replace
 from itertools import groupby
 from typing import TYPE_CHECKING
 
+from planner.model.results import Verdict
 from planner.paper import texts
-from planner.paper.boxes import Box, Tally, gap, heading, new_page, numbered, paragraph
+from planner.paper.boxes import Box, Tally, gap, heading, numbered, paragraph
 from planner.paper.ink import BODY
 from planner.paper.reading import Json, Reading, with_symbol
 from planner.paper.tables import Cell, Row, Table, table_row
@@ -16,28 +17,33 @@ if TYPE_CHECKING:
     from planner.paper.pages import Frame
 
 MOST_ROWS = 12
+_ENTRY = "Entry to every row: the row before is done and CONTINUE has been called."
+_EXIT = "then: check data,\nCONTINUE called? ☐"
+_OF_CROSSING = ("band_rate", "band_time", "crossing_cover")
 MOST_TALLIES = 60
 _MOST_REASONS = 3
-_LEAST_WIDTHS = (82.5, 185.0, 71.5, 95.0, 118.0, 72.0, 64.0, 48.0)
+_LEAST_WIDTHS = (82.5, 175.0, 71.5, 94.0, 118.0, 81.0, 69.5, 44.5)
 _SHARES_OF_REST = (0.0, 0.2, 0.0, 0.0, 0.3, 0.0, 0.5, 0.0)
 """How the columns divide what the sheet is wider than the least widths."""
 _HEAD = (
-    "Row, verdict",
+    "Row",
     "Call, action, setting",
     "Watch",
     "Predicted",
-    "Outside this: HOLD",
+    "Outside: HOLD",
     "Margin",
     "Reading",
-    "Done, init.",
+    "Done",
 )
+_GAPS = (("Droop gap", "droop_stop_clearance"), ("Up gap", "up_stop_clearance"))
 _WATCHED = (
-    ("Droop gap", "droop_stop_clearance"),
-    ("Up gap", "up_stop_clearance"),
+    *_GAPS,
     ("Thrust", "thrust"),
     ("Torque", "torque"),
     ("Power", "power"),
 )
+_WATCHED_MOVING = (("Torque", "torque"),)
+"""On the way no readings are written: flap stands for both gaps and has the least margin."""
 _ROOT = (("Root", "root_flap_moment"),)
 _FLAP = ("flap_lowest", "flap_highest")
 _SUB_FROM = 2
@@ -62,7 +68,10 @@ class Action:
 
 def step_boxes(reading: Reading, frame: Frame) -> list[Box]:
     """All blocks of the schedule, then the stop."""
-    boxes: list[Box] = [new_page(), heading("8  Steps", frame.width)]
+    boxes: list[Box] = [
+        heading("9  Steps", frame.width),
+        paragraph(_ENTRY, frame.width, keep_next=True),
+    ]
     segments = reading.record["segments"]
     rest = frame.width - sum(_LEAST_WIDTHS)
     widths = (w + rest * s for w, s in zip(_LEAST_WIDTHS, _SHARES_OF_REST, strict=True))
@@ -131,32 +140,27 @@ def _hold_rows(reading: Reading, segment: Json) -> list[Row]:
             f"pitch {texts.setting(segment['to_collective_rad'], 'deg')} ± "
             f"{texts.setting(window['collective_rad'], 'deg')}",
             _cyclic_text(segment["cyclic"]),
+            _EXIT,
         ),
         (*note, *inside),
     )
-    recover = Action(
-        segment["id"].removesuffix("h") + "c",
-        segment["id"],
-        "RECOVER: check the data",
-        ("Exit: data good, call made",),
-    )
-    return [_measured_row(reading, hold, _WATCHED), _gate_row(reading, recover)]
+    return [_measured_row(reading, hold, _WATCHED)]
 
 
 def _ramp_rows(reading: Reading, segment: Json) -> list[Row]:
     start, end = segment["from_rad_s"], segment["to_rad_s"]
     pitch = (segment["from_collective_rad"], segment["to_collective_rad"])
-    settings = [f"to {speed_text(reading, end)}"]
-    if start != end:
-        settings.append(f"from {texts.setting(start, 'rpm')}")
-    moved = f" from {texts.setting(pitch[0], 'deg')}" if pitch[0] != pitch[1] else ""
-    settings.append(f"pitch to {texts.setting(pitch[1], 'deg')}{moved}")
+    from_rpm = texts.setting(start, "rpm").removesuffix(f"{texts.GLUE}rpm")
+    moved = f"{from_rpm} to " if start != end else "stay at "
+    settings = [f"{moved}{speed_text(reading, end)}"]
+    turned = f"{texts.setting(pitch[0], 'deg')} to " if pitch[0] != pitch[1] else "stays "
+    settings.append(f"pitch {turned}{texts.setting(pitch[1], 'deg')}")
     if segment["cyclic"] != segment["from_cyclic"]:
         settings.append(_cyclic_text(segment["cyclic"]))
     call, words = _ramp_call(reading, segment)
     action = Action(segment["id"], segment["id"], call, (*words, *settings))
     bands = bands_met(reading, segment)
-    ramp = _measured_row(reading, action, _WATCHED[:2] + _WATCHED[3:4], keep_next=bool(bands))
+    ramp = _measured_row(reading, action, _WATCHED_MOVING, keep_next=bool(bands))
     if end < start:
         bands = bands[::-1]
     last = len(bands) - 1
@@ -172,7 +176,7 @@ def _ramp_call(reading: Reading, segment: Json) -> tuple[str, tuple[str, ...]]:
         return f"STOP: in {time}", (_stop_text(reading.plan["shutdown"]),)
     if segment["id"].endswith("b"):
         return f"RETURN: in {time}", (f"after each round but the last ({segment['times']})",)
-    return f"SET-UP: in {time}", ("Entry: CONTINUE called",)
+    return f"SET-UP: in {time}", ()
 
 
 def _stop_text(shutdown: Json) -> str:
@@ -198,8 +202,8 @@ def _cyclic_text(cyclic: Json) -> str:
 
 def band_text(band: Json) -> str:
     """Print a keep-out band's speeds."""
-    ends = (texts.setting(band[key], "rpm").removesuffix(" rpm") for key in _BAND_ENDS)
-    return f"{'–'.join(ends)} rpm"
+    ends = (texts.setting(band[key], "rpm").removesuffix(f"{texts.GLUE}rpm") for key in _BAND_ENDS)
+    return f"{'–'.join(ends)}{texts.GLUE}rpm"
 
 
 def bands_met(reading: Reading, segment: Json) -> list[Json]:
@@ -221,12 +225,14 @@ def _band_row(reading: Reading, segment: Json, band: Json, *, keep_next: bool) -
     rate = reading.shown("band_rate", segment["id"], band["id"]).text
     ends = "\nThe plan starts or ends inside this band." if inside else ""
     cells = [Cell() for _ in _HEAD]
-    cells[0] = Cell(f"{segment['id']}\n{band['id']}", bold=True)
+    by = reading.documents_behind(segment["id"], _OF_CROSSING)
+    rests = f"\nGO by {', '.join(by)}" if by else ""
+    cells[0] = Cell(f"{segment['id']}\n{band['id']}{rests}", bold=True)
     cells[1] = Cell(f"{band['why']}{ends}", lead=f"PASS WITHOUT STOPPING {band_text(band)}")
     cells[2] = Cell("Rate")
     cells[3] = Cell(f"{rate} of full rpm a second" if rate.endswith("%") else rate)
     cells[4] = Cell("No HOLD inside: leave the band, then HOLD")
-    cells[5] = Cell(reading.margin("band_rate", segment["id"]))
+    cells[5] = Cell(reading.margin(segment["id"], "band_rate"))
     cells[-1] = Cell(tick=True)
     return Row(tuple(cells), keep_next=keep_next, grey=True, least_height=40.0)
 
@@ -240,7 +246,9 @@ def _measured_row(
 ) -> Row:
     if _is_hingeless(reading):
         watched = (*_ROOT, *watched)
-    subs = [_flap_sub_row(reading, action.segment_id)]
+    gaps = tuple(gap_id for _, gap_id in _GAPS)
+    judged = _FLAP if gaps[0] in dict(watched).values() else (*_FLAP, *gaps)
+    subs = [_flap_sub_row(reading, action.segment_id, judged)]
     subs += [
         _sub_row(reading, name, quantity, action.segment_id)
         for name, quantity in watched
@@ -250,8 +258,7 @@ def _measured_row(
     cells[0] = Cell(_number_and_verdict(reading, action), bold=True)
     cells[1] = action.cell
     cells[-1] = Cell(tick=True)
-    quantities = (*_FLAP, *(quantity for _, quantity in watched))
-    notes = (*_document_note(reading, quantities, action.segment_id), *action.notes)
+    notes = (*_document_note(reading, action.segment_id), *action.notes)
     tails = (*_reason_tails(reading, action.segment_id), *(Cell(note) for note in notes))
     return Row(
         tuple(cells),
@@ -276,14 +283,16 @@ def _gate_row(reading: Reading, action: Action) -> Row:
 
 
 def _number_and_verdict(reading: Reading, action: Action) -> str:
-    return f"{action.number}\n{with_symbol(reading.segment_verdict(action.segment_id))}"
+    word = reading.segment_verdict(action.segment_id)
+    by = reading.documents_behind(action.segment_id) if word == Verdict.GO.value else []
+    rests = f" by {', '.join(by)}" if by else ""
+    return f"{action.number}\n{with_symbol(word)}{rests}"
 
 
-def _document_note(
-    reading: Reading, quantities: tuple[str, ...], segment_id: str
-) -> tuple[str, ...]:
-    numbers = dict.fromkeys(reading.documents_for(quantities, segment_id))
-    if not numbers:
+def _document_note(reading: Reading, segment_id: str) -> tuple[str, ...]:
+    """Documents under a verdict that is not GO; a GO names them beside itself."""
+    numbers = reading.documents_behind(segment_id)
+    if not numbers or reading.segment_verdict(segment_id) == Verdict.GO.value:
         return ()
     return (f"What is NOT ASSESSED here rests on {', '.join(numbers)}, not on a prediction.",)
 
@@ -298,12 +307,11 @@ def _reason_tails(reading: Reading, segment_id: str) -> tuple[Cell, ...]:
     return (Cell(f"Not GO: {listed}{rest}.", bold=True),)
 
 
-def _flap_sub_row(reading: Reading, segment_id: str) -> tuple[Cell, ...]:
+def _flap_sub_row(reading: Reading, segment_id: str, judged: tuple[str, ...]) -> tuple[Cell, ...]:
     low, high = (reading.shown(quantity, segment_id) for quantity in _FLAP)
-    margins = [reading.margin(quantity, segment_id) for quantity in _FLAP]
-    margin = next((m for m in margins if m == texts.NOT_ASSESSED), "")
-    given = [m for m in margins if m != "no limit"]
-    margin = margin or (given[0] if given else _flap_judged_by(reading))
+    margin = reading.margin(segment_id, *judged)
+    if margin == "no limit":
+        margin = _flap_judged_by(reading)
     if not (low.is_number and high.is_number):
         missing = high if low.is_number else low
         return (Cell("Flap"), Cell(missing.text), Cell(missing.why), Cell(margin), Cell())
@@ -322,7 +330,7 @@ def _flap_judged_by(reading: Reading) -> str:
 
 def _sub_row(reading: Reading, name: str, quantity: str, segment_id: str) -> tuple[Cell, ...]:
     shown = reading.shown(quantity, segment_id)
-    margin = reading.margin(quantity, segment_id)
+    margin = reading.margin(segment_id, quantity)
     if not shown.is_number:
         return (Cell(name), Cell(shown.text), Cell(shown.why), Cell(margin), Cell())
     unit = reading.vocabulary[quantity]["unit"]
@@ -339,7 +347,7 @@ def _sub_row(reading: Reading, name: str, quantity: str, segment_id: str) -> tup
 def rule_boxes(frame: Frame) -> list[Box]:
     """The build-up rule and the calls, defined for this card."""
     boxes: list[Box] = [
-        heading("7  Build-up rule and calls", frame.width),
+        heading("8  Build-up rule and calls", frame.width),
         paragraph(
             "Build-up rule: the next row is begun only when the data of this row have been "
             "checked and CONTINUE has been called. Rows are run in order; none is left out.",

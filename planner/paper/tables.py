@@ -7,7 +7,8 @@ from functools import cached_property
 from typing import TYPE_CHECKING
 
 from planner.paper.boxes import HAIR, RULE, Box
-from planner.paper.ink import BODY, Face, draw_lines, lines_of
+from planner.paper.ink import BODY, Face, draw_lines, lines_of, width_of
+from planner.paper.texts import printable
 
 if TYPE_CHECKING:
     from reportlab.pdfgen.canvas import Canvas
@@ -16,6 +17,7 @@ PAD_X = 4.0
 PAD_Y = 3.0
 _TICK = 13.0
 _THICK = 1.0
+_SLACK = 0.01
 
 Place = tuple[float, float]
 """Left edge and top."""
@@ -59,7 +61,8 @@ class Table:
     face: Face = BODY
     most_rows: int = 0
     """Rows of such a kind that a page may hold; 0: as many as fit."""
-    sub_pitch: float = 18.0
+    sub_pitch: float = 16.2
+    tail_face: Face = BODY
 
     @cached_property
     def lefts(self) -> tuple[float, ...]:
@@ -111,18 +114,18 @@ class TableRow(Box):
         self._draw_rules(canvas, left, top)
         face, lefts = self.table.face, self.table.lefts
         for i, (cell, lines) in enumerate(zip(self.row.cells, self.lines, strict=True)):
-            self._draw_cell(canvas, cell, lines, (left + lefts[i], top))
+            self._draw_cell(canvas, cell, lines, (left + lefts[i], top), face)
         y = top
         for sub, texts, tall in zip(
             self.row.sub_rows, self.sub_lines, self.sub_heights, strict=True
         ):
             middle = y - 0.5 * (tall - face.leading * max(len(lines) for lines in texts)) + PAD_Y
             for j, (cell, lines) in enumerate(zip(sub, texts, strict=True), self.row.sub_from):
-                self._draw_cell(canvas, cell, lines, (left + lefts[j], middle))
+                self._draw_cell(canvas, cell, lines, (left + lefts[j], middle), face)
             y -= tall
         y = top - self.cells_height
         for cell, lines in zip(self.row.tails, self.tail_lines, strict=True):
-            self._draw_cell(canvas, cell, lines, (left, y))
+            self._draw_cell(canvas, cell, lines, (left, y), self.table.tail_face)
             y -= self._tail_height(lines)
 
     def split(self, room: float) -> tuple[Box, Box] | None:
@@ -146,7 +149,7 @@ class TableRow(Box):
         left_over = room - self.cells_height
         for i, lines in enumerate(self.tail_lines):
             if self._tail_height(lines) > left_over:
-                n = max(0, int((left_over - 2.0 * PAD_Y) / self.table.face.leading))
+                n = max(0, int((left_over - 2.0 * PAD_Y) / self.table.tail_face.leading))
                 parts = (*self.tail_lines[:i], lines[:n]), (lines[n:], *self.tail_lines[i + 1 :])
                 tails = self.row.tails[: i + 1], self.row.tails[i:]
                 first = replace(self.row, tails=tails[0])
@@ -159,11 +162,12 @@ class TableRow(Box):
         return None
 
     def _tail_height(self, lines: Broken) -> float:
-        return len(lines) * self.table.face.leading + 2.0 * PAD_Y if lines else 0.0
+        return len(lines) * self.table.tail_face.leading + 2.0 * PAD_Y if lines else 0.0
 
-    def _draw_cell(self, canvas: Canvas, cell: Cell, lines: Broken, place: Place) -> None:
+    def _draw_cell(
+        self, canvas: Canvas, cell: Cell, lines: Broken, place: Place, face: Face
+    ) -> None:
         left, top = place[0] + PAD_X, place[1] - PAD_Y
-        face = self.table.face
         for i, (line, bold) in enumerate(lines):
             place = (left, top - i * face.leading)
             draw_lines(canvas, (line,), face.bold if bold else face, place)
@@ -197,10 +201,10 @@ class TableRow(Box):
 def table_row(table: Table, row: Row) -> TableRow:
     """Break a row's cells into lines by the table's column widths."""
 
-    def broken(cell: Cell, width: float) -> Broken:
+    def broken(cell: Cell, width: float, plain: Face = table.face) -> Broken:
         room = width - 2.0 * PAD_X
-        face = table.face.bold if cell.bold else table.face
-        lead = lines_of(cell.lead, table.face.bold, room) if cell.lead else ()
+        face = plain.bold if cell.bold else plain
+        lead = lines_of(cell.lead, plain.bold, room) if cell.lead else ()
         text = lines_of(cell.text, face, room) if cell.text or not lead else ()
         return (*((line, True) for line in lead), *((line, cell.bold) for line in text))
 
@@ -216,7 +220,40 @@ def table_row(table: Table, row: Row) -> TableRow:
             tuple(broken(c, w) for c, w in zip(sub, table.widths[ends[0] : ends[1]], strict=True))
             for sub in row.sub_rows
         ),
-        tail_lines=tuple(broken(cell, table.lefts[-1]) for cell in row.tails),
+        tail_lines=tuple(broken(cell, table.lefts[-1], table.tail_face) for cell in row.tails),
+    )
+
+
+def fitted(table: Table, rows: list[Row]) -> Table:
+    """Widen columns until their longest word stands whole, at the cost of those with room.
+
+    Where the words do not fit side by side the widths stay as they are.
+    """
+    head = Row(tuple(Cell(text, bold=True) for text in table.head))
+    needs = [
+        max(_longest_word(row.cells[i], table.face) for row in (head, *rows) if row.cells)
+        + 2.0 * PAD_X
+        + _SLACK
+        for i in range(len(table.widths))
+    ]
+    missing = sum(max(0.0, need - width) for need, width in zip(needs, table.widths, strict=True))
+    spare = sum(max(0.0, width - need) for need, width in zip(needs, table.widths, strict=True))
+    if missing == 0.0 or missing > spare:
+        return table
+    widths = (
+        need if need > width else width - (width - need) * missing / spare
+        for need, width in zip(needs, table.widths, strict=True)
+    )
+    return replace(table, widths=tuple(widths))
+
+
+def _longest_word(cell: Cell, face: Face) -> float:
+    words = printable(cell.text).replace("\n", " ").replace("\t", " ").split(" ")
+    leads = printable(cell.lead).replace("\n", " ").replace("\t", " ").split(" ")
+    text_face = face.bold if cell.bold else face
+    return max(
+        *(width_of(word, text_face) for word in words),
+        *(width_of(word, face.bold) for word in leads),
     )
 
 

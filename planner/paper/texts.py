@@ -18,6 +18,8 @@ Rounding = Literal["up", "down", "nearest"]
 FONT_FOLDER = Path(__file__).parent / "fonts"
 FONT_FILES = {"DejaVuSans": "DejaVuSans.ttf", "DejaVuSans-Bold": "DejaVuSans-Bold.ttf"}
 MINUS = "\N{MINUS SIGN}"
+GLUE = "\N{NO-BREAK SPACE}"
+"""Drawn as a space; a line is never broken at it, so that a unit stays with its number."""
 NOT_ASSESSED = "NOT ASSESSED"
 """Printed wherever a number is missing, with the reason in brackets."""
 DOES_NOT_APPLY = "does not apply"
@@ -83,7 +85,7 @@ def number(value_si: float, unit: str, rounding: Rounding = "nearest") -> str:
 
 
 def toward_danger(value_si: float, unit: str, danger: str) -> str:
-    """Print a predicted number so that rounding never flatters it.
+    r"""Print a predicted number so that rounding never flatters it.
 
     Args:
         value_si: the number in SI.
@@ -92,7 +94,7 @@ def toward_danger(value_si: float, unit: str, danger: str) -> str:
 
     Example:
         >>> toward_danger(1231.0, "N m", "high"), toward_danger(1239.0, "N", "low")
-        ('1240 N m', '1230 N')
+        ('1240\xa0N\xa0m', '1230\xa0N')
     """
     if danger == "both":
         return number(value_si, unit, "up" if value_si >= 0.0 else "down")
@@ -149,8 +151,8 @@ def setting(value_si: float, unit: str) -> str:
     """Print a value that the plan orders, to five digits and without trailing zeros.
 
     Example:
-        >>> setting(25.656340, "rpm"), setting(0.0, "deg")
-        ('245 rpm', '0°')
+        >>> setting(25.656340, "rpm").split(), setting(0.0, "deg")
+        (['245', 'rpm'], '0°')
     """
     shown = _in_unit(value_si, unit)
     whole_digits = math.floor(math.log10(abs(shown)) + 1e-12) + 1 if shown else 1
@@ -180,14 +182,14 @@ def duration(time_s: float) -> str:
     """Print a stretch of time in seconds, or in minutes and seconds from two minutes on.
 
     Example:
-        >>> duration(90.0), duration(330.0), duration(600.0)
-        ('90 s', '5 min 30 s', '10 min')
+        >>> [duration(time_s).replace(GLUE, "_") for time_s in (90.0, 330.0, 600.0)]
+        ['90_s', '5_min 30_s', '10_min']
     """
     if time_s < _SECONDS_ONLY_BELOW:
         return setting(time_s, "s")
     minutes, seconds = divmod(round(time_s, 1), 60.0)
     rest = f" {setting(seconds, 's')}" if seconds > 0.0 else ""
-    return f"{minutes:.0f} min{rest}"
+    return f"{minutes:.0f}{GLUE}min{rest}"
 
 
 def sentence(text: str) -> str:
@@ -311,5 +313,5 @@ def _range(low_si: float, high_si: float, unit: str, ends: tuple[Rounding, Round
 
 
 def _with_mark(text: str, unit: str) -> str:
-    mark = unit_mark(unit)
-    return f"{text}{'' if mark == '°' else ' '}{mark}".rstrip()
+    mark = unit_mark(unit).replace(" ", GLUE)
+    return f"{text}{'' if mark in {'°', ''} else GLUE}{mark}"

@@ -9,13 +9,14 @@ from hypothesis import strategies as st
 from reportlab.pdfbase.ttfonts import TTFontFile
 
 from planner.paper import texts
+from planner.paper.ink import BODY, lines_of, width_of
 from planner.units import DIMENSIONS, from_si, to_si
 
 UNITS = sorted({u for table in DIMENSIONS.values() for u in table if u})
 
 
 def shown_number(text: str) -> float:
-    return float(text.split(" ", maxsplit=1)[0].rstrip("°CF").replace(texts.MINUS, "-"))
+    return float(text.split(maxsplit=1)[0].rstrip("°CF").replace(texts.MINUS, "-"))
 
 
 @given(st.floats(-1e7, 1e7), st.sampled_from(UNITS))
@@ -29,7 +30,7 @@ def test_rounding_toward_danger_never_flatters(value: float, unit: str) -> None:
 @given(st.floats(-1e5, 1e5), st.floats(0.0, 1e4))
 def test_hold_band_lies_inside_or_is_narrower_than_its_digits(low: float, width: float) -> None:
     text = texts.hold_band(low, low + width, "N")
-    first, second = text.removesuffix(" N").replace(texts.MINUS, "-").split(" to ")
+    first, second = text.removesuffix(f"{texts.GLUE}N").replace(texts.MINUS, "-").split(" to ")
     ends = float(first), float(second)
     assert ends[0] <= ends[1]
     inside = ends[0] >= low - 1e-3 and ends[1] <= low + width + 1e-3
@@ -48,7 +49,7 @@ def test_hold_band_lies_inside_or_is_narrower_than_its_digits(low: float, width:
     ],
 )
 def test_limit_is_exact_or_strict(value: float, unit: str, sense: str, expected: str) -> None:
-    assert texts.limit(value, unit, sense) == expected
+    assert texts.limit(value, unit, sense).replace(texts.GLUE, " ") == expected
 
 
 @pytest.mark.parametrize("value", [math.nan, math.inf, -math.inf])
@@ -68,7 +69,29 @@ def test_zero_carries_no_sign_and_a_hair_below_zero_shows() -> None:
     [(62.0, "62 s"), (179.99999, "3 min"), (3600.0, "60 min"), (119.9, "119.9 s")],
 )
 def test_duration_carries_whole_minutes(value: float, expected: str) -> None:
-    assert texts.duration(value) == expected
+    assert texts.duration(value).replace(texts.GLUE, " ") == expected
+
+
+@pytest.mark.parametrize("unit", UNITS)
+def test_unit_never_leaves_its_number(unit: str) -> None:
+    for text in (
+        texts.number(1.0, unit),
+        texts.setting(1.0, unit),
+        texts.limit(1.0, unit, "at most"),
+        texts.span(1.0, 2.0, unit).rsplit(" ", maxsplit=1)[1],
+        texts.hold_band(1.0, 2.0, unit).rsplit(" ", maxsplit=1)[1],
+    ):
+        assert " " not in text
+        assert lines_of(text, BODY, 1.0e4) == (text,)
+        assert text.split()[-1] == text.split(texts.GLUE)[-1]
+
+
+def test_no_break_space_is_drawn_and_holds_a_line_together() -> None:
+    text = f"at most {texts.number(29600.0, 'N m')}"
+    assert lines_of(text, BODY, width_of("29600 N m", BODY) + 1.0) == (
+        "at most",
+        f"29600{texts.GLUE}N{texts.GLUE}m",
+    )
 
 
 @pytest.mark.parametrize(
