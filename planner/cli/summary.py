@@ -49,7 +49,8 @@ def summary(record: Mapping[str, Any]) -> str:
             width,
         ),
     ]
-    return "\n".join(lines)
+    # paper glues units to their numbers with no-break spaces; a terminal wraps by itself
+    return "\n".join(lines).replace("\N{NO-BREAK SPACE}", " ")
 
 
 def _finding(

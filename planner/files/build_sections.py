@@ -17,6 +17,7 @@ if TYPE_CHECKING:
 
 FloatArray = NDArray[np.float64]
 _NEAR_DEG = 1e-6
+_FEWEST_ROWS = 5
 _POLAR_END_DEG = (4.0, 60.0)
 """Where a polar that is not a full circle may end, on both sides."""
 
@@ -38,6 +39,10 @@ def check_polar(table: CsvTable) -> list[Fault]:
             mend = "order the rows by angle"
             found = f"{degrees[i]:g} deg"
             faults.append(table.fault(int(first + i), "angle", expected, found, mend))
+        if degrees.size < _FEWEST_ROWS:
+            expected = f"at least {_FEWEST_ROWS} angles for each mach"
+            found = f"{degrees.size}"
+            faults.append(table.fault(last, "angle", expected, found, "tabulate more angles"))
         faults += _polar_ends(table, degrees, (first, last))
     return faults
 

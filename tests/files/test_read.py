@@ -60,9 +60,10 @@ def test_rotor_is_read(folder):
     assert inner.lift_slope_per_rad == pytest.approx(0.1 * 180.0 / math.pi)
     assert isinstance(outer, PolarSection)
     assert outer.mach == pytest.approx([0.3, 0.6])
-    assert outer.angle_rad[0] == pytest.approx([-math.pi, 0.0, math.pi])
-    assert outer.drag[1] == pytest.approx([0.06, 0.06])
-    assert outer.moment[0] == pytest.approx([0.0, 0.0, 0.0])
+    ten = math.radians(10.0)
+    assert outer.angle_rad[0] == pytest.approx([-math.pi, -ten, 0.0, ten, math.pi])
+    assert outer.drag[1] == pytest.approx([0.06, 0.03, 0.02, 0.03, 0.06])
+    assert outer.moment[0] == pytest.approx([0.0] * 5)
     assert rotor.droop_stop is not None
     assert rotor.droop_stop.retraction is not None
     assert rotor.droop_stop.retraction.release_rad_s == pytest.approx(190.0 * RPM)
