@@ -106,7 +106,7 @@ def momentum_thrust_in_wind(
     Example:
         >>> thrust, inflow = momentum_thrust_in_wind(0.61, np.radians(8.0), 1.0, 0.0)
         >>> round(float(thrust), 5), round(float(inflow), 5)
-        (0.00591, 0.05434)
+        (0.00591, 0.05435)
     """
     sa = np.asarray(solidity_lift_slope, dtype=np.float64)
     B = np.asarray(tip_fraction, dtype=np.float64)
