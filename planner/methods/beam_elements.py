@@ -134,7 +134,7 @@ def quadrature(nodes_m: FloatArray, breaks_m: FloatArray) -> Quadrature:
         Points and weights from root to tip, exact to degree 7 on each piece.
     """
     inside = (breaks_m > nodes_m[0]) & (breaks_m < nodes_m[-1])
-    ends = np.unique(np.concatenate([nodes_m, breaks_m[inside]]))
+    ends = np.array(sorted({*nodes_m.tolist(), *breaks_m[inside].tolist()}))
     half = 0.5 * np.diff(ends)[:, None]
     middle = 0.5 * (ends[:-1] + ends[1:])[:, None]
     return Quadrature(

@@ -100,8 +100,10 @@ def station_tables(tables: Sequence[SectionTable], weights: Array) -> StationSec
     """
     share = np.asarray(weights, dtype=np.float64)
     _check_weights(share, len(tables))
-    mach = np.unique(np.concatenate([table.mach for table in tables]))
-    distinct, row = np.unique(share, axis=0, return_inverse=True)
+    mach = np.array(sorted({float(m) for table in tables for m in table.mach}))
+    rows = [tuple(station) for station in share.tolist()]
+    different = list(dict.fromkeys(rows))
+    distinct, row = np.array(different), np.array([different.index(station) for station in rows])
     takes_part = distinct > 0.0
     lift_drag = [_at_mach(table.lift + 1j * table.drag, table.mach, mach) for table in tables]
     moment = [_at_mach(table.moment, table.mach, mach).real for table in tables]

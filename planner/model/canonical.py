@@ -46,5 +46,10 @@ def plain(value: Any) -> Any:  # noqa: ANN401, PLR0911 - one return for each kin
 
 def digest(value: Any) -> str:  # noqa: ANN401 - whatever plain accepts
     """SHA-256 of the canonical JSON form, in hex."""
-    text = json.dumps(plain(value), sort_keys=True, separators=(",", ":"), ensure_ascii=False)
+    return digest_of_plain(plain(value))
+
+
+def digest_of_plain(value: Any) -> str:  # noqa: ANN401 - JSON values
+    """SHA-256 of JSON values that ``plain`` has made already."""
+    text = json.dumps(value, sort_keys=True, separators=(",", ":"), ensure_ascii=False)
     return hashlib.sha256(text.encode()).hexdigest()

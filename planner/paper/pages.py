@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+from contextlib import contextmanager
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -12,7 +13,8 @@ from planner.paper.tables import Table, TableRow
 from planner.paper.texts import printable, shipped_fonts
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterator, Sequence
+    from types import ModuleType
 
     from reportlab.pdfgen.canvas import Canvas
 
@@ -219,6 +221,7 @@ def _divides(chain: Sequence[Box], filler: _Filler) -> bool:
 
 def render(pages: list[Page], frame: Frame, banner: Banner) -> bytes:
     """Draw pages into a PDF whose bytes depend on nothing but the arguments."""
+    from reportlab import rl_config  # noqa: PLC0415  # only printing pays
     from reportlab.pdfgen.canvas import Canvas  # noqa: PLC0415  # only printing pays
 
     shipped_fonts()
@@ -241,8 +244,19 @@ def render(pages: list[Page], frame: Frame, banner: Banner) -> bytes:
         for placed in page:
             placed.box.draw(canvas, MARGIN_X, frame.top - placed.down)
         canvas.showPage()
-    canvas.save()
+    with _binary_streams(rl_config):
+        canvas.save()
     return stream.getvalue()
+
+
+@contextmanager
+def _binary_streams(settings: ModuleType) -> Iterator[None]:
+    """Compressed page contents as bytes, not wrapped into text once more."""
+    before, settings.useA85 = settings.useA85, 0  # type: ignore[attr-defined]  # not in the stubs
+    try:
+        yield
+    finally:
+        settings.useA85 = before  # type: ignore[attr-defined]  # not in the stubs
 
 
 def _draw_banner(canvas: Canvas, frame: Frame, banner: Banner, page: str) -> None:

@@ -289,7 +289,8 @@ _STOPS = (
         danger="high",
         study="stops",
         method="Searched downward from the top speed for the highest speed at which the periodic "
-        "solution touches the static stop anywhere around the azimuth, in the gust at the hub.",
+        "solution touches the static stop anywhere around the azimuth, in the gust at the hub; "
+        "for fixed stops also in the mean wind and with every collective used at rest.",
         validity="steady wind equal to the gust; no transients: contact in gusts below this speed "
         "is not predicted",
         source="periodic blade-element solution, see flap_lowest",

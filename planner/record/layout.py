@@ -30,7 +30,7 @@ import planner
 from planner.judge.judge import judge
 from planner.judge.references import reference_table
 from planner.judge.requests import requests
-from planner.model.canonical import digest, plain
+from planner.model.canonical import digest_of_plain, plain
 from planner.model.plan import segments
 from planner.predict.register import REGISTER
 from planner.predict.run import predict
@@ -84,14 +84,15 @@ def build(
     predictions = predict(plan, walk, wanted, progress)
     progress("judging")
     judgement = judge(plan, walk, REGISTER, predictions)
+    meaning = plain(plan)
     listed = [{"name": name, "sha256": sha256} for name, sha256 in files]
     record = {
         "layout": LAYOUT,
         "made_by": plain(versions()),
         "files": listed,
-        "files_digest": digest(listed),
-        "meaning_digest": digest(plan),
-        "plan": plain(plan),
+        "files_digest": digest_of_plain(listed),
+        "meaning_digest": digest_of_plain(meaning),
+        "plan": meaning,
         "segments": plain(walk),
         "vocabulary": plain(list(REGISTER.values())),
         "predictions": {key: rows_of(predictions[key]) for key in sorted(predictions)},
@@ -102,7 +103,7 @@ def build(
         "verdict": judgement.verdict.value,
         "segment_verdicts": plain(judgement.segment_verdicts),
     }
-    return {**record, "content_digest": digest(record)}
+    return {**record, "content_digest": digest_of_plain(record)}
 
 
 def versions() -> dict[str, str]:
@@ -180,9 +181,9 @@ def from_bytes(data: bytes, name: str) -> dict[str, Any]:
 def _check_digests(record: Mapping[str, Any], name: str) -> None:
     content = {key: value for key, value in record.items() if key != "content_digest"}
     for key, value in (("meaning", record["plan"]), ("content", content)):
-        if digest(value) != record[f"{key}_digest"]:
+        if digest_of_plain(value) != record[f"{key}_digest"]:
             msg = (
                 f"{name}: expected the {key} digest {record[f'{key}_digest']!s:.12}..., found "
-                f"{digest(value):.12}...; the record was edited, build it again from the plan"
+                f"{digest_of_plain(value):.12}...; the record was edited: build it again"
             )
             raise RecordError(msg)
