@@ -7,6 +7,7 @@ import pathlib
 from typing import TYPE_CHECKING
 
 import pytest
+from hypothesis import settings
 
 from planner.files.read import read_plan
 from planner.judge.requests import requests
@@ -19,6 +20,9 @@ if TYPE_CHECKING:
 
     from planner.model.plan import Plan
     from planner.model.results import Prediction
+
+settings.register_profile("repeatable", derandomize=True, deadline=None, database=None)
+settings.load_profile("repeatable")
 
 SAMPLES = pathlib.Path(__file__).parent.parent / "sample_plans"
 SAMPLE_NAMES = (
