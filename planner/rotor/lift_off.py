@@ -27,7 +27,7 @@ GRID = np.concatenate([np.arange(1, 21) * 0.02, np.arange(5, 11) * 0.1])
 """Speeds tried as shares of the top speed, in steps of 2 % up to 40 % of it and of 10 % above:
 contact in a narrower range of speeds may be missed."""
 STEPS_AT_ONCE = 5
-ROUNDS = 6
+ROUNDS = 4
 """Rounds of false position (Illinois), which close in from both sides."""
 
 
@@ -206,14 +206,17 @@ def _false_position(
     ends: tuple[FloatArray, FloatArray],
     margin: Callable[[FloatArray], tuple[FloatArray, BoolArray]],
 ) -> tuple[FloatArray, BoolArray]:
-    """Zero of a margin, below zero at the first end and not at the second; its faster side."""
+    """Zero of a margin, below zero at the first end and not at the second; its faster side.
+
+    Lines are drawn over the square of the speed, with which centrifugal force grows.
+    """
     (below, low), (above, high) = (ends[0], margin(ends[0])[0]), (ends[1], margin(ends[1])[0])
     share, solved = ends[1], np.ones(ends[0].shape, dtype=bool)
     side = np.zeros(ends[0].shape)
     for _ in range(ROUNDS):
         slope = np.where(high > low, high - low, 1.0)
         share = np.clip(
-            above - high * (above - below) / slope,
+            np.sqrt(np.maximum(above**2 - high * (above**2 - below**2) / slope, 0.0)),
             np.minimum(below, above),
             np.maximum(below, above),
         )
