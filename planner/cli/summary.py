@@ -59,8 +59,8 @@ def _finding(
     units: Mapping[str, Any],
     width: int,
 ) -> list[str]:
-    title = rule["title"] if rule else finding["rule"]
-    lines = _entry(finding["verdict"], f"{finding['rule']}: {title}", width)
+    title = f"{finding['rule']}: {rule['title']}" if rule else str(finding["rule"])
+    lines = _entry(finding["verdict"], title, width)
     details = []
     if rule and None not in (finding["low"], finding["high"]):
         details.append(_numbers(finding, rule, units[rule["quantity"]]))
