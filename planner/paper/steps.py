@@ -33,7 +33,7 @@ _HEAD = (
     "Outside: HOLD",
     "Margin",
     "Reading",
-    "Done, init.",
+    "Done init.",
 )
 _GAPS = (("Droop gap", "droop_stop_clearance"), ("Up gap", "up_stop_clearance"))
 _WATCHED = (
