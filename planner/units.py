@@ -75,6 +75,7 @@ DIMENSIONS: dict[str, dict[str, Unit]] = {
     "angular damping": {"N m s/rad": Unit(1.0), "kN m s/rad": Unit(1e3)},
     "moment": {"N m": Unit(1.0), "kN m": Unit(1e3), "lb ft": Unit(_POUND_FORCE * _FOOT)},
     "force": {"N": Unit(1.0), "kN": Unit(1e3), "lbf": Unit(_POUND_FORCE)},
+    "energy": {"J": Unit(1.0), "kJ": Unit(1e3)},
     "power": {"W": Unit(1.0), "kW": Unit(1e3), "hp": Unit(550.0 * _POUND_FORCE * _FOOT)},
     "inertia": {"kg m2": Unit(1.0)},
     "first moment": {"kg m": Unit(1.0)},

@@ -30,6 +30,8 @@ from planner import units
         ("62 % rpm", "relative speed", 0.62),
         ("1e3 N m/rad", "angular stiffness", 1000.0),
         ("1 hp", "power", 745.699872),
+        ("12 deg/s", "angle rate", math.radians(12.0)),
+        ("2.5 kJ", "energy", 2500.0),
     ],
 )
 def test_parse_reads_text_as_si(text: str, dimension: str, expected: float) -> None:

@@ -33,6 +33,11 @@ class Paper(StrEnum):
 PlanArgument = Annotated[
     Path, typer.Argument(help="Plan folder, its plan.toml, or a record (.json).", metavar="PLAN")
 ]
+KeptOption = Annotated[
+    Path | None,
+    typer.Option("--kept", help="Folder of kept results [user's cache folder].", metavar="DIR"),
+]
+FreshOption = Annotated[bool, typer.Option("--fresh", help="Compute everything anew and keep it.")]
 
 
 def main() -> None:
@@ -79,13 +84,15 @@ def check(
     as_json: Annotated[
         bool, typer.Option("--json", help="Print the whole record as JSON instead.")
     ] = False,
+    kept: KeptOption = None,
+    fresh: FreshOption = False,
 ) -> None:
     """Predict, judge against the rule book, and print the findings."""
-    from planner.cli.sources import load_record
+    from planner.cli.sources import Keeping, load_record
     from planner.cli.summary import summary
     from planner.record.layout import to_bytes
 
-    record = load_record(plan)
+    record = load_record(plan, Keeping(kept, fresh))
     say(to_bytes(record, ascii_only=True).decode().rstrip() if as_json else summary(record))
     _finish(record)
 
@@ -97,17 +104,19 @@ def card(
         Path | None, typer.Option("--out", "-o", help="PDF to write [CARD.pdf].")
     ] = None,
     paper: Annotated[Paper, typer.Option(help="Page size.")] = Paper.a4,
+    kept: KeptOption = None,
+    fresh: FreshOption = False,
 ) -> None:
     """Print the test card as PDF, with its JSON record beside it."""
     from planner.cli.screen import check_target
-    from planner.cli.sources import load_record, write
+    from planner.cli.sources import Keeping, load_record, write
     from planner.cli.summary import headline
     from planner.paper.card import card_pdf
     from planner.record.layout import to_bytes
 
     if out is not None:
         check_target(out, (".pdf",))
-    record = load_record(plan)
+    record = load_record(plan, Keeping(kept, fresh))
     target = out or Path(f"{safe_name(record)}.pdf")
     files = {target: card_pdf(record, paper.value)}
     beside = target.with_suffix(".json")
@@ -129,15 +138,17 @@ def fan(
         Path | None, typer.Option("--out", "-o", help="File ending in .pdf, .svg or .csv.")
     ] = None,
     paper: Annotated[Paper, typer.Option(help="Page size of a PDF.")] = Paper.a4,
+    kept: KeptOption = None,
+    fresh: FreshOption = False,
 ) -> None:
     """Draw natural frequencies over rotor speed with harmonics and the run's speeds."""
     from planner.cli.screen import check_target
-    from planner.cli.sources import load_record, write
+    from planner.cli.sources import Keeping, load_record, write
     from planner.paper.fan import fan_csv, fan_pdf, fan_svg
 
     if out is not None:
         check_target(out, (".pdf", ".svg", ".csv"))
-    record = load_record(plan)
+    record = load_record(plan, Keeping(kept, fresh))
     target = out or Path(f"{safe_name(record)}-fan.pdf")
     kind = target.suffix.lower()
     if kind == ".pdf":

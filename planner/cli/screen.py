@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import os
 import sys
+from contextlib import suppress
 from typing import TYPE_CHECKING, NoReturn
 
 import typer
@@ -30,6 +31,13 @@ def say(text: str) -> None:
     except OSError as fault:
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         fail(f"standard output: {fault.strerror or fault}")
+
+
+def mention(message: str) -> None:
+    """Print on stderr what changes neither result nor status; nobody need hear it."""
+    if sys.stderr is not None:
+        with suppress(OSError):
+            print(message, file=sys.stderr)
 
 
 def fail(message: str) -> NoReturn:

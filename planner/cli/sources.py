@@ -2,25 +2,41 @@
 
 from __future__ import annotations
 
-import sys
-import time
+import os
 from contextlib import contextmanager
+from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
-from planner.cli.screen import fail
+from planner.cli.progress import ProgressLine
+from planner.cli.screen import fail, mention
 from planner.files.faults import PlanFaults
+from planner.files.kept import FolderStore, kept_folder
 from planner.files.read import read_plan
 from planner.files.start import StarterRefusedError
 from planner.files.write import write_whole
 from planner.paper.texts import unprintable
+from planner.predict.kept import NOTHING_KEPT
 from planner.predict.register import REFERENCES, REGISTER
 from planner.record.layout import RecordError, build, from_bytes
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator
+    from collections.abc import Callable, Iterator
     from pathlib import Path
 
-PATIENCE_S = 1.0
+    from planner.predict.kept import Store
+
+
+@dataclass(frozen=True)
+class Keeping:
+    """What the command line says of kept results."""
+
+    folder: Path | None = None
+    """Where they are; None: as the environment says, or the user's cache folder."""
+    fresh: bool = False
+    """Compute all anew, and keep it."""
+
+
+USUAL = Keeping()
 
 
 @contextmanager
@@ -34,15 +50,37 @@ def stop_on_fault() -> Iterator[None]:
         fail(f"{fault.filename or 'file'}: {fault.strerror or fault}")
 
 
-def load_record(source: Path) -> dict[str, Any]:
-    """Read a record, or read a plan folder and build its record."""
+def load_record(source: Path, keeping: Keeping = USUAL) -> dict[str, Any]:
+    """Read a record, or read a plan folder and build its record.
+
+    A folder for kept results that cannot be written is mentioned on stderr and changes nothing.
+    """
     with stop_on_fault():
         if source.suffix.lower() == ".json" and not source.is_dir():
             return from_bytes(source.read_bytes(), str(source))
         vocabulary = {entry.id: (entry.unit, entry.axes) for entry in REGISTER.values()}
         loaded = read_plan(source, vocabulary, REFERENCES, unprintable)
         files = [(file.name, file.sha256) for file in loaded.files]
-        return build(loaded.plan, files, Progress())
+        notes: list[str] = []
+        with ProgressLine() as progress:
+            record = build(loaded.plan, files, progress, open_store(keeping, notes.append))
+        for note in notes:
+            mention(note)
+        return record
+
+
+def open_store(keeping: Keeping, tell: Callable[[str], None]) -> Store:
+    """The store of kept results that the command line and the environment name.
+
+    Args:
+        keeping: what the command line says.
+        tell: called with one line when nothing can be kept.
+    """
+    folder = kept_folder(keeping.folder, os.environ)
+    if folder is None:
+        tell("kept results: expected a home folder to keep them in, found none; name one: --kept")
+        return NOTHING_KEPT
+    return FolderStore(folder, fresh=keeping.fresh, tell=tell)
 
 
 def write(path: Path, data: bytes) -> None:
@@ -51,20 +89,3 @@ def write(path: Path, data: bytes) -> None:
         write_whole(path.resolve(), data)
     except OSError as fault:
         fail(f"{path}: {fault.strerror or fault}")
-
-
-class Progress:
-    """Names the part in work on stderr, on a terminal, once a second has passed."""
-
-    def __init__(self) -> None:
-        """Start the clock."""
-        self._begin = time.monotonic()
-
-    def __call__(self, part: str) -> None:
-        """Say which part starts now."""
-        if (
-            sys.stderr is not None
-            and sys.stderr.isatty()
-            and time.monotonic() - self._begin > PATIENCE_S
-        ):
-            print(f"whirlcard: {part} ...", file=sys.stderr)

@@ -6,6 +6,7 @@ import math
 from typing import TYPE_CHECKING
 
 from planner.files.build_rules import check_class
+from planner.files.build_wind import check_wind, gust_lengths, sector_of, turbulence
 from planner.files.schema_texts import moment_of
 from planner.model.plan import (
     AbortActions,
@@ -22,8 +23,15 @@ from planner.units import from_si
 if TYPE_CHECKING:
     from collections.abc import Iterable
 
-    from planner.files.schema_plan import DocumentTable, PlanFile, SiteTable
+    from planner.files.schema_plan import (
+        AbortTable,
+        DocumentTable,
+        PlanFile,
+        ShutdownTable,
+        SiteTable,
+    )
     from planner.files.schema_stand import StandFile
+    from planner.files.schema_values import Measured
     from planner.files.source import Document
     from planner.model.rotor import Rotor
     from planner.model.rules import RuleBook
@@ -31,6 +39,8 @@ if TYPE_CHECKING:
 
 _SAME_HEIGHT = 0.1
 """Anemometer and hub within this share of the hub height count as one height."""
+_ROUNDING = 1e-9
+"""Speeds that differ by less than this share are one speed, written in two ways."""
 
 
 def check_plan(
@@ -40,13 +50,16 @@ def check_plan(
     _check_papers(document, file)
     _check_abort(document, file)
     _check_site(document, file.site)
+    check_wind(document, file)
     if stand is not None:
         _check_shear(document, file.site, stand.hub_height)
     full_speed = stand.full_speed if stand is not None else math.nan
     _check_keep_outs(document, file, full_speed)
     for i, paper in enumerate(file.outside_document):
         check_class(document, ("outside_document", i, "class"), paper.class_, classes)
-    _check_shutdown(document, file, stand)
+    highest = _highest_speed(file, full_speed)
+    _check_brake(document, "abort", file.abort, stand, highest)
+    _check_brake(document, "shutdown", file.shutdown, stand, highest)
 
 
 def _check_papers(document: Document, file: PlanFile) -> None:
@@ -106,25 +119,46 @@ def _check_keep_outs(document: Document, file: PlanFile, full_speed: float) -> N
             document.fault(("keep_out", i, "to"), expected, "correct from or to")
 
 
-def _check_shutdown(document: Document, file: PlanFile, stand: StandFile | None) -> None:
-    shutdown = file.shutdown
-    if shutdown.brake is True and shutdown.brake_from is None:
+def _check_brake(
+    document: Document,
+    key: str,
+    table: ShutdownTable | AbortTable,
+    stand: StandFile | None,
+    highest: float,
+) -> None:
+    """Judge when ``[shutdown]`` or ``[abort]`` brakes."""
+    path = (key, "brake_from")
+    if table.brake is True and table.brake_from is None:
         expected = 'key "brake_from", because brake = true'
         mend = "say from which speed the brake is used"
-        document.fault_at_key(("shutdown", "brake_from"), expected, mend, "no such key")
-    if shutdown.brake is False and shutdown.brake_from is not None:
+        document.fault_at_key(path, expected, mend, "no such key")
+    if table.brake is False and table.brake_from is not None:
         expected = "no brake_from, because brake = false"
         mend = "remove it or set brake = true"
-        document.fault_at_key(("shutdown", "brake_from"), expected, mend, "one")
-    if shutdown.brake is True and stand is not None and stand.brake is None:
+        document.fault_at_key(path, expected, mend, "one")
+    if table.brake is True and stand is not None and stand.brake is None:
         expected = "brake = false, because the stand has no [brake]"
-        document.fault(("shutdown", "brake"), expected, "add [brake] to the stand, or use none")
-    if stand is not None and stand.brake is not None and shutdown.brake_from is not None:
-        allowed = stand.brake.below.resolved(stand.full_speed)
-        if shutdown.brake_from.resolved(stand.full_speed) > allowed:
-            expected = f"at most {from_si(allowed, 'rpm'):g} rpm, the stand's [brake] below"
-            mend = "brake later, or correct the stand"
-            document.fault(("shutdown", "brake_from"), expected, mend)
+        document.fault((key, "brake"), expected, "add [brake] to the stand, or use none")
+    if stand is not None and table.brake_from is not None:
+        brake_from = table.brake_from.resolved(stand.full_speed)
+        allowed, why = _brake_bound(stand, highest)
+        if brake_from > allowed * (1.0 + _ROUNDING):
+            expected = f"at most {from_si(allowed, 'rpm'):g} rpm, {why}"
+            document.fault(path, expected, "brake later, or correct that speed")
+
+
+def _brake_bound(stand: StandFile, highest: float) -> tuple[float, str]:
+    """The lower of the two speeds above which the brake is never meant to act."""
+    below = stand.brake.below.resolved(stand.full_speed) if stand.brake else math.inf
+    if highest < below:
+        return highest, "the highest speed of the schedule"
+    return below, "the stand's [brake] below"
+
+
+def _highest_speed(file: PlanFile, full_speed: float) -> float:
+    """Highest speed of the schedule, infinite where a speed is unknown."""
+    speeds = [step.rpm.resolved(full_speed) for block in file.block for step in block.step]
+    return max(speeds) if speeds and all(map(math.isfinite, speeds)) else math.inf
 
 
 def build_plan(
@@ -142,23 +176,24 @@ def build_plan(
         planned_start=file.planned_start,
         planned_finish=file.planned_finish,
         roles=tuple(Role(r.role, r.name, r.duties, r.may_abort) for r in file.role),
-        site=_site(file.site),
+        site=_site(file),
         blocks=blocks,
-        shutdown=_shutdown(file, full_speed),
+        shutdown=_shutdown(file.shutdown, full_speed),
         keep_outs=tuple(
             KeepOut(b.id, b.from_.resolved(full_speed), b.to.resolved(full_speed), b.why)
             for b in file.keep_out
         ),
         documents=tuple(_document(paper, full_speed) for paper in file.outside_document),
         extra_classes=tuple(file.extra_classes),
-        abort=AbortActions(file.abort.collective, file.abort.cyclic, tuple(file.abort.actions)),
+        abort=_abort(file.abort, full_speed),
         rotor=rotor,
         stand=stand,
         rule_book=rule_book,
     )
 
 
-def _site(site: SiteTable) -> Site:
+def _site(file: PlanFile) -> Site:
+    site = file.site
     return Site(
         elevation_m=site.elevation,
         pressure_Pa=site.pressure,
@@ -172,19 +207,36 @@ def _site(site: SiteTable) -> Site:
         anemometer_error_m_s=site.anemometer_error,
         # left out only where anemometer and hub are at one height: nothing to convert
         shear_exponent=0.0 if site.shear_exponent is None else site.shear_exponent,
+        gust_lengths=gust_lengths(file.gust),
+        turbulence=turbulence(file.turbulence),
+        sectors=tuple(sector_of(table) for table in file.sector),
     )
 
 
-def _shutdown(file: PlanFile, full_speed: float) -> Shutdown:
-    shutdown = file.shutdown
-    brake_from = shutdown.brake_from
+def _abort(abort: AbortTable, full_speed: float) -> AbortActions:
+    return AbortActions(
+        collective_rad=abort.collective,
+        cyclic=abort.cyclic,
+        actions=tuple(abort.actions),
+        collective_rate_rad_s=abort.collective_rate,
+        reaction_time_s=abort.reaction_time,
+        brake=abort.brake,
+        brake_from_rad_s=_or_zero(abort.brake_from, full_speed),
+    )
+
+
+def _shutdown(shutdown: ShutdownTable, full_speed: float) -> Shutdown:
     return Shutdown(
         time_s=shutdown.time,
         collective_rad=shutdown.collective,
         powered=shutdown.powered,
         brake=shutdown.brake,
-        brake_from_rad_s=0.0 if brake_from is None else brake_from.resolved(full_speed),
+        brake_from_rad_s=_or_zero(shutdown.brake_from, full_speed),
     )
+
+
+def _or_zero(speed: Measured | None, full_speed: float) -> float:
+    return 0.0 if speed is None else speed.resolved(full_speed)
 
 
 def _document(paper: DocumentTable, full_speed: float) -> OutsideDocument:

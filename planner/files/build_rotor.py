@@ -15,6 +15,7 @@ from planner.files.schema_rotor import (
     ArticulatedTable,
     DroopStopTable,
     HingelessTable,
+    LagStopTable,
     RotorFile,
     TeeteringTable,
     UpStopTable,
@@ -24,6 +25,7 @@ from planner.model.rotor import (
     Blade,
     HingelessHub,
     Hub,
+    LagStop,
     PointMass,
     Retraction,
     Rotor,
@@ -95,6 +97,7 @@ def check_rotor(document: Document, file: RotorFile) -> None:
     _check_hub(document, file)
     _check_stops(document, file)
     _check_retraction(document, file.droop_stop)
+    _check_lag_stop(document, file)
     _check_sections(document, file)
     _check_blade_set(document, file)
 
@@ -200,6 +203,19 @@ def _check_retraction(document: Document, stop: DroopStopTable | None) -> None:
         document.fault((*path, "release"), expected, "correct release or reseat")
 
 
+def _check_lag_stop(document: Document, file: RotorFile) -> None:
+    stop = file.lag_stop
+    if stop is None:
+        return
+    if not isinstance(file.hub, ArticulatedTable):
+        expected = f"no lag stop on a hub of kind {file.hub.kind}, which has no lag hinge"
+        mend = "remove the table or correct hub.kind"
+        document.fault_at_key(("lag_stop",), expected, mend, "table lag_stop")
+    if stop.lead >= stop.lag:
+        expected = f"an angle above the lead stop's {_degrees(stop.lead)}"
+        document.fault(("lag_stop", "lag"), expected, "correct the stops: they cross")
+
+
 def _check_sections(document: Document, file: RotorFile) -> None:
     if not file.section:
         return
@@ -255,6 +271,7 @@ def build_rotor(file: RotorFile, rows: StationRows, polars: dict[str, CsvTable])
         design_maximum_rad_s=file.design_maximum_speed,
         proven_rad_s=file.proven_speed,
         root_force_rating_N=file.root_force_rating,
+        lag_stop=_lag_stop(file.lag_stop),
     )
 
 
@@ -334,6 +351,18 @@ def _stop(stop: UpStopTable | None) -> Stop | None:
         retraction=None
         if retraction is None
         else Retraction(retraction.release, retraction.reseat, retraction.retracted_angle),
+    )
+
+
+def _lag_stop(stop: LagStopTable | None) -> LagStop | None:
+    if stop is None:
+        return None
+    return LagStop(
+        lead_angle_rad=stop.lead,
+        lag_angle_rad=stop.lag,
+        stiffness_N_m_rad=stop.stiffness,
+        damping_N_m_s_rad=stop.damping,
+        moment_rating_N_m=stop.moment_rating,
     )
 
 

@@ -6,7 +6,7 @@ import math
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
-from planner.files.faults import shown
+from planner.files.faults import listed, shown
 from planner.files.schema_plan import BlockTable, CyclicTable, PlanFile, StepTable
 from planner.model.plan import Block, Cyclic, Step, Window
 
@@ -16,6 +16,7 @@ if TYPE_CHECKING:
     from planner.files.source import Document
 
 _SHORTEST_RAMP_S = 0.1
+_RAMP_KEYS = 'ramp_time, ramp_rate and ramp = "drive"'
 _SAME = 1e-9
 """Speeds that differ by less than this share are one speed, written in two ways."""
 
@@ -24,6 +25,11 @@ def read_blocks(document: Document, file: PlanFile, full_speed: float) -> tuple[
     """Walk the schedule from rest, adding faults; sound only when there are none."""
     walk = _Walk(document, full_speed)
     return tuple(walk.block(("block", b), table) for b, table in enumerate(file.block))
+
+
+def _ramp_keys(step: StepTable) -> list[str]:
+    keys = ("ramp_time", "ramp_rate", "ramp")
+    return [key for key in keys if getattr(step, key) is not None]
 
 
 @dataclass(frozen=True)
@@ -82,29 +88,46 @@ class _Walk:
             hold_time_s=step.hold_time,
             window=Window(window, step.window_collective),
             note=step.note,
+            own_run_up=step.ramp is not None,
         )
 
     def _ramp_time(self, path: KeyPath, step: StepTable, start: _State, to: _State) -> float:
         changes = start.known and to.known and start != to
-        time, rate = step.ramp_time, step.ramp_rate
         why = ", because rpm or pitch changes"
-        if time is not None and rate is not None:
-            self._key_fault((*path, "ramp_rate"), "exactly one of ramp_time and ramp_rate", "both")
-        elif rate is not None:
+        given = _ramp_keys(step)
+        if len(given) > 1:
+            self._key_fault(
+                (*path, given[-1]), f"exactly one of {_RAMP_KEYS}", listed(given, "and")
+            )
+        elif step.ramp_rate is not None:
             if changes and start.speed == to.speed:
                 expected = "ramp_time, because only pitch changes"
                 self._key_fault((*path, "ramp_rate"), expected, "ramp_rate")
-            return self._time_at_rate(path, rate, to.speed - start.speed)
-        elif time is None and changes:
-            expected = f"exactly one of ramp_time and ramp_rate{why}"
-            self._key_fault((*path, "ramp_time"), expected, "neither")
-        elif time == 0.0 and changes:
+            return self._time_at_rate(path, step.ramp_rate, to.speed - start.speed)
+        elif step.ramp is not None:
+            self._check_run_up(path, start, to, "this step does not raise rotor speed")
+            return math.nan
+        elif not given and changes:
+            expected = f"exactly one of {_RAMP_KEYS}{why}"
+            self._key_fault((*path, "ramp_time"), expected, "none of them")
+        else:
+            self._check_time(path, step.ramp_time, why if changes else "")
+        return step.ramp_time or 0.0
+
+    def _check_time(self, path: KeyPath, time: float | None, why: str) -> None:
+        if time == 0.0 and why:
             expected = f"a ramp longer than 0 s{why}"
             self.document.fault((*path, "ramp_time"), expected, "give the ramp its time")
         elif time is not None and 0.0 < time < _SHORTEST_RAMP_S:
             expected = f"a ramp of at least {_SHORTEST_RAMP_S:g} s"
             self.document.fault((*path, "ramp_time"), expected, "give the ramp its time")
-        return time or 0.0
+
+    def _check_run_up(self, path: KeyPath, start: _State, to: _State, why: str) -> None:
+        """The drive's own run-up can only raise the rotor's speed."""
+        if to.speed <= start.speed and start.known and to.known:
+            expected = f"ramp_time or ramp_rate, because {why}"
+            mend = "keep the drive's own run-up for rising speed"
+            self.document.fault((*path, "ramp"), expected, mend)
 
     def _time_at_rate(self, path: KeyPath, rate: Measured, change: float) -> float:
         time = abs(change) / rate.resolved(self.full_speed)
@@ -124,12 +147,15 @@ class _Walk:
         if step.ramp_rate is not None and not math.isclose(up, back, rel_tol=_SAME):
             expected = "ramp_time here, because a repeated block comes to this step in two ways"
             self._key_fault((*path, "ramp_rate"), expected, "ramp_rate")
-        if step.ramp_rate is None and not step.ramp_time:
+        if step.ramp is not None:
+            why = "a repeated block comes back to this step from no lower speed"
+            self._check_run_up(path, end, first, why)
+        elif step.ramp_rate is None and not step.ramp_time:
             expected = "a ramp longer than 0 s, because the repeated block comes back to this step"
             found = "none" if step.ramp_time is None else None
             self.document.fault((*path, "ramp_time"), expected, "give the ramp its time", found)
 
     def _key_fault(self, path: KeyPath, expected: str, found: str) -> None:
-        mends = {"both": "remove one of the two", "neither": "add one of the two"}
-        mend = mends.get(found, "give a ramp_time instead that suits all of them")
+        mends = {"ramp_rate": "give a ramp_time instead that suits all of them"}
+        mend = mends.get(found, "add one" if found == "none of them" else "keep one")
         self.document.fault_at_key(path, expected, mend, found)

@@ -11,6 +11,7 @@ from planner.files.build_rotor import hinge_radius
 from planner.files.faults import shown
 from planner.files.schema_rotor import HingelessTable
 from planner.model.stand import Drive, GivenMode, Obstruction, Ratings, Stand
+from planner.units import from_si
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -44,10 +45,31 @@ def check_stand(document: Document, file: StandFile) -> None:
     ):
         expected = "a trip at or below the drive's maximum_speed"
         document.fault(("drive", "overspeed_trip"), expected, "correct one of the two")
+    _check_torque(document, file)
     allowed = _LARGEST_GAUGE_ERROR * file.full_speed * (1.0 + _ROUNDING)
     if file.speed_gauge_error.resolved(file.full_speed) > allowed:
         expected = f"at most {_LARGEST_GAUGE_ERROR:.0%} of full_speed"
         document.fault(("speed_gauge_error",), expected, "correct the error or full_speed")
+
+
+def _check_torque(document: Document, file: StandFile) -> None:
+    """The table of the drive's torque must run from standstill to its highest speed."""
+    rows = file.drive.torque_by_speed
+    if not rows:
+        return
+    path = ("drive", "torque_by_speed")
+    speeds = [speed.resolved(file.full_speed) for speed, _ in rows]
+    if speeds[0] > 0.0:
+        document.fault((*path, 0, 0), "0 rpm in the first row", "add the torque at standstill")
+    for i in range(1, len(speeds)):
+        if speeds[i] <= speeds[i - 1]:
+            expected = f"a speed above {from_si(speeds[i - 1], 'rpm'):g} rpm of the row before"
+            document.fault((*path, i, 0), expected, "order the rows by speed")
+    highest = file.drive.maximum_speed.resolved(file.full_speed)
+    if speeds[-1] < highest * (1.0 - _ROUNDING):
+        expected = f"at least maximum_speed {from_si(highest, 'rpm'):g} rpm in the last row"
+        mend = "add the torque up to there, or correct maximum_speed"
+        document.fault((*path, len(speeds) - 1, 0), expected, mend)
 
 
 def check_surroundings(document: Document, file: StandFile, rotor: RotorFile) -> None:
@@ -118,6 +140,7 @@ def build_stand(file: StandFile) -> Stand:
         ratings=Ratings(file.ratings.thrust, file.ratings.hub_moment),
         obstructions=_places(file.obstruction),
         positions=_places(file.position),
+        brake_torque_N_m=file.brake.torque if file.brake else None,
     )
 
 
@@ -130,6 +153,10 @@ def _drive(drive: DriveTable, full_speed: float) -> Drive:
         maximum_rad_s=drive.maximum_speed.resolved(full_speed),
         inertia_kg_m2=drive.inertia,
         overspeed_trip_rad_s=_optional(drive.overspeed_trip, full_speed),
+        friction_N_m=drive.friction,
+        torque_by_speed=tuple(
+            (speed.resolved(full_speed), torque) for speed, torque in drive.torque_by_speed or ()
+        ),
     )
 
 

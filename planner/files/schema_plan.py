@@ -24,6 +24,8 @@ Time = Annotated[float, Quantity("time", positive=True, example="60 s")]
 RampTime = Annotated[float, Quantity("time", minimum="0 s", example="30 s")]
 Wind = Annotated[float, Quantity("speed", minimum="0 m/s", example="4 m/s")]
 Part = Annotated[Where, Choice(get_args(Where))]
+Intensity = Annotated[float, Quantity("share", minimum="0 %", maximum="60 %", example="15 %")]
+Bearing = Annotated[float, Quantity("angle", minimum="0 deg", maximum="360 deg", example="90 deg")]
 
 
 class SiteTable(Table):
@@ -54,6 +56,54 @@ class SiteTable(Table):
     shear_exponent: Annotated[float, Number(minimum=0.0, maximum=1.0)] | None = Field(
         default=None,
         description="Exponent of the wind profile; needed unless the anemometer is at hub height.",
+    )
+
+
+class GustTable(Table):
+    """The discrete gust: up and down again as one minus a cosine, to wind_gust and back."""
+
+    shortest: Time = Field(description="Shortest gust from start to end; the worst is sought.")
+    longest: Time = Field(description="Longest gust from start to end.")
+
+
+class TurbulenceTable(Table):
+    """Series of gusty wind beside the discrete gust."""
+
+    intensity: Intensity = Field(
+        description="Turbulence intensity: standard deviation of the wind over its mean."
+    )
+    series: Annotated[int, Whole(1, 100)] = Field(description="Number of series to march.")
+    seed: Annotated[int, Whole(0, 2**31 - 1)] = Field(
+        description="Seed of the random series; the same seed gives the same wind."
+    )
+
+
+class SectorTable(Table):
+    """Bearings from which the wind comes over ground of one kind."""
+
+    name: Label = Field(description="Name of the sector, such as what stands upwind.")
+    from_: Bearing = Field(
+        alias="from",
+        description="First bearing that the wind comes from, clockwise from north; all sectors"
+        " together cover the circle once.",
+    )
+    to: Bearing = Field(
+        description="Last bearing, clockwise from the first; may lie beyond north."
+    )
+    upflow: Annotated[
+        float, Quantity("angle", minimum="-30 deg", maximum="30 deg", example="3 deg")
+    ] = Field(description="Angle of the wind above the horizontal, up positive.")
+    turbulence_intensity: Intensity | None = Field(
+        default=None,
+        description="Turbulence intensity here; left out, that of [turbulence], which does not"
+        " hold behind a tall obstruction near by.",
+    )
+    shelter: Annotated[float, Quantity("share", positive=True, example="85 %")] | None = Field(
+        default=None,
+        description="Share of the wind that arrives, below 100 %; only where it was measured.",
+    )
+    shelter_source: Label | None = Field(
+        default=None, description="The measurement of the shelter; with shelter."
     )
 
 
@@ -98,6 +148,18 @@ class AbortTable(Table):
 
     collective: Angle = Field(description="Collective to set.")
     cyclic: Label = Field(description="What to do with cyclic.")
+    collective_rate: (
+        Annotated[float, Quantity("angle rate", positive=True, example="1 deg/s")] | None
+    ) = Field(default=None, description="Rate at which collective is set on an abort.")
+    reaction_time: Annotated[float, Quantity("time", minimum="0 s", example="2 s")] | None = Field(
+        default=None, description="Time from the cause to the crew's first action."
+    )
+    brake: Annotated[bool, Flag()] = Field(
+        default=False, description="Is the rotor brake used on an abort?"
+    )
+    brake_from: Speed | None = Field(
+        default=None, description="Speed where the brake is applied; only with brake = true."
+    )
     actions: list[Prose] = Field(description="Actions in order.", min_length=1)
 
 
@@ -127,14 +189,20 @@ class StepTable(Table):
         description='"trim" for no once-per-revolution flapping, or { cosine = ..., sine = ... }.'
     )
     ramp_time: RampTime | None = Field(
-        default=None, description="Time of the ramp into this step; or give ramp_rate."
+        default=None,
+        description="Time of the ramp into this step; or give ramp_rate or ramp.",
     )
     ramp_rate: (
         Annotated[
             Measured, Quantity("speed rate", "relative rate", positive=True, example="5 rpm/s")
         ]
         | None
-    ) = Field(default=None, description="Speed rate of the ramp; or give ramp_time.")
+    ) = Field(default=None, description="Speed rate of the ramp; or give ramp_time or ramp.")
+    ramp: Annotated[str, Choice(("drive",))] | None = Field(
+        default=None,
+        description='"drive" for the drive\'s own run-up, whose time is found; or give ramp_time'
+        " or ramp_rate.",
+    )
     hold_time: Time = Field(description="Time of the hold.")
     window_rpm: Speed = Field(description="Hold rotor speed within this, either way.")
     window_collective: Annotated[
@@ -194,6 +262,17 @@ class PlanFile(Table):
         default=[], description="Hazard classes that this plan adds to those of the books."
     )
     site: SiteTable = Field(description="Air and wind.")
+    gust: GustTable | None = Field(
+        default=None, description="Lengths of the discrete gust; without it no gust is marched."
+    )
+    turbulence: TurbulenceTable | None = Field(
+        default=None, description="Gusty wind; without it no turbulence is marched."
+    )
+    sector: list[SectorTable] = Field(
+        default=[],
+        description="Bearings with upflow, turbulence and shelter of their own; without them the"
+        " wind is level and the same from everywhere.",
+    )
     role: list[RoleTable] = Field(description="People's parts in the run.", min_length=1)
     keep_out: list[KeepOutTable] = Field(
         default=[], description="Speed bands that are passed without stopping."

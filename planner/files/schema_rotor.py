@@ -179,11 +179,10 @@ class UpStopTable(Table):
     """A one-sided flap stop above the blade."""
 
     angle: FlapAngle = Field(description="Flap angle of first contact, up positive.")
-    stiffness: StiffSpring = Field(
-        description="Contact stiffness about the hinge; kept for the record, not used yet."
-    )
+    stiffness: StiffSpring = Field(description="Contact stiffness about the hinge, on one side.")
     damping: Damper = Field(
-        description="Contact damping about the hinge; kept for the record, not used yet."
+        description="Contact damping about the hinge where the stop carries its moment_rating;"
+        " it grows with penetration from zero."
     )
     moment_rating: MomentRating = Field(description="Moment that the stop carries.")
 
@@ -194,6 +193,23 @@ class DroopStopTable(UpStopTable):
     retraction: RetractionTable | None = Field(
         default=None, description="Given only when the stop retracts with rotor speed."
     )
+
+
+class LagStopTable(Table):
+    """The two stops of a lag hinge, alike; angles count against the rotation, lag positive."""
+
+    lead: Annotated[
+        float, Quantity("angle", minimum="-90 deg", maximum="0 deg", example="-4 deg")
+    ] = Field(description="Lag angle where a leading blade meets its stop: zero or negative.")
+    lag: Annotated[
+        float, Quantity("angle", minimum="0 deg", maximum="90 deg", example="15 deg")
+    ] = Field(description="Lag angle where a lagging blade meets its stop: zero or positive.")
+    stiffness: StiffSpring = Field(description="Contact stiffness about the lag hinge.")
+    damping: Damper = Field(
+        description="Contact damping about the lag hinge where the stop carries its"
+        " moment_rating; it grows with penetration from zero."
+    )
+    moment_rating: MomentRating = Field(description="Moment that each of the two stops carries.")
 
 
 class RotorFile(Table):
@@ -230,4 +246,7 @@ class RotorFile(Table):
     )
     up_stop: UpStopTable | None = Field(
         default=None, description="Upper flap stop; articulated and teetering hubs need it."
+    )
+    lag_stop: LagStopTable | None = Field(
+        default=None, description="Lag stops; only an articulated hub has them."
     )

@@ -7,13 +7,25 @@ from typing import Annotated, Literal, get_args
 from pydantic import Field
 
 from planner.files.schema_texts import Text
-from planner.files.schema_values import Choice, Flag, Measured, Number, Quantity, Table
+from planner.files.schema_values import (
+    Choice,
+    Flag,
+    Measured,
+    Number,
+    Quantity,
+    SpeedAndQuantity,
+    Table,
+)
 from planner.model.stand import Mounting
 
 Label = Annotated[str, Text(longest=120)]
 PositiveLength = Annotated[float, Quantity("length", positive=True, example="12 m")]
 PositiveSpeed = Annotated[
     Measured, Quantity("rotor speed", "relative speed", positive=True, example="450 rpm")
+]
+SpeedAndTorque = Annotated[
+    tuple[Measured, float],
+    SpeedAndQuantity(Quantity("moment", minimum="0 N m", example="30 kN m")),
 ]
 
 
@@ -37,12 +49,30 @@ class DriveTable(Table):
     overspeed_trip: PositiveSpeed | None = Field(
         default=None, description="Rotor speed where the trip removes torque."
     )
+    friction: Annotated[float, Quantity("moment", minimum="0 N m", example="300 N m")] | None = (
+        Field(
+            default=None,
+            description="Drag torque of drive and bearings at the rotor shaft while coasting;"
+            " without it no run-down is computed.",
+        )
+    )
+    torque_by_speed: list[SpeedAndTorque] | None = Field(
+        default=None,
+        description="Greatest torque at the rotor shaft by rotor speed, from 0 rpm to"
+        " maximum_speed, with straight lines between rows; left out, torque_rating and"
+        " power_rating bound it.",
+        min_length=2,
+    )
 
 
 class BrakeTable(Table):
     """The rotor brake."""
 
     below: PositiveSpeed = Field(description="Speed below which the brake may be used.")
+    torque: Annotated[float, Quantity("moment", positive=True, example="1.3 kN m")] | None = Field(
+        default=None,
+        description="Torque of the brake at the rotor shaft; without it no braking is computed.",
+    )
 
 
 class RatingsTable(Table):
@@ -83,7 +113,7 @@ class PlaceTable(Table):
     name: Label = Field(description="What or who is there.")
     bearing: Annotated[
         float, Quantity("angle", minimum="-360 deg", maximum="360 deg", example="90 deg")
-    ] = Field(description="Bearing from the stand's axis.")
+    ] = Field(description="Bearing from the stand's axis, clockwise from north.")
     distance: PositiveLength = Field(description="Distance from the shaft axis.")
     height: Annotated[float, Quantity("length", example="1.7 m")] = Field(
         description="Height above the stand's ground."
@@ -110,8 +140,8 @@ class StandFile(Table):
     mode: list[ModeTable] = Field(default=[], description="Stand and shaft modes.")
     obstruction: list[PlaceTable] = Field(
         default=[],
-        description="Things near the rotor; refused inside its disc,"
-        " otherwise kept for the record, not used yet.",
+        description="Things near the rotor; refused inside its disc, otherwise the blade tips'"
+        " clearance to them is computed.",
     )
     position: list[PlaceTable] = Field(
         default=[],

@@ -310,6 +310,33 @@ class SpeedAndAmount(Leaf):
         return {"type": "array", "prefixItems": rows, "minItems": 2, "maxItems": 2}
 
 
+@dataclass(frozen=True)
+class SpeedAndQuantity(Leaf):
+    """One row of a table over rotor speed whose unit is known: ``["245 rpm", "30 kN m"]``."""
+
+    quantity: Quantity
+
+    @property
+    def blank(self) -> Any:  # noqa: ANN401 (as for every leaf)
+        """Unknown on both sides."""
+        return SPEED.blank, self.quantity.blank
+
+    def read(self, value: object, printable: Printable | None) -> tuple[Measured, object]:
+        """Refuse what is not a pair of a speed and a value."""
+        if not isinstance(value, list) or len(value) != _PAIR:
+            expected = f'a speed and a value, such as ["245 rpm", "{self.quantity.example}"]'
+            refuse(expected, shown(value), "write two texts in brackets")
+        speed = SPEED.read(value[0], printable)
+        if not isinstance(speed, Measured):
+            raise TypeError
+        return speed, self.quantity.read(value[1], printable)
+
+    def json_schema(self) -> dict[str, Any]:
+        """Array of exactly two."""
+        rows = [SPEED.json_schema(), self.quantity.json_schema()]
+        return {"type": "array", "prefixItems": rows, "minItems": 2, "maxItems": 2}
+
+
 def _unit_mend(text: str, mend: str) -> str:
     if re.match(r"\s*[+-]?\d+,\d", text):
         return "use a point as decimal sign"

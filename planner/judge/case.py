@@ -1,4 +1,4 @@
-"""What one judgement reads, and the speeds that a stretch of the run covers."""
+"""What one judgement reads: places of the run with the speeds that they cover."""
 
 from __future__ import annotations
 
@@ -7,14 +7,19 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING
 
+from planner.model.plan import ABORT_CAUSES
+
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    from planner.model.plan import Plan, Segment
-    from planner.model.results import Predictions, Quantity
+    from planner.model.plan import KeepOut, Plan, Segment
+    from planner.model.results import Labels, Predictions, Quantity
 
 WHOLE_RUN = "run"
 """Where a number or a hazard belongs to the run and to no single segment."""
+
+ABORT = "abort"
+"""Where a number or a hazard belongs to an abort, from wherever it begins."""
 
 
 @dataclass(frozen=True)
@@ -48,6 +53,65 @@ EVERY_SPEED = Span(0.0, math.inf)
 
 
 @dataclass(frozen=True)
+class Place:
+    """A segment of the run, or an abort that begins in it."""
+
+    segment: Segment
+    span: Span
+    state: str = ""
+    """Cause of the abort; empty: the segment itself."""
+
+    @property
+    def kind(self) -> str:
+        """Kind of segment, or ``abort``."""
+        return ABORT if self.state else self.segment.kind
+
+    @property
+    def words(self) -> str:
+        """Where it is, for a reason."""
+        if self.state:
+            return f"the {abort_words(self.segment.id, self.state)}"
+        return self.segment.id
+
+    @property
+    def must_occur(self) -> bool:
+        """Tell whether no hub and no shutdown can make this place not apply.
+
+        With power cut the controls are either commanded or frozen, from any turning rotor; a
+        brake that is lost and a stop that does not re-seat need a brake and such a stop.
+        """
+        return self.state in ABORT_CAUSES[:2] and self.segment.top_rad_s > 0.0
+
+    def enters(self, band: KeepOut) -> bool:
+        """Tell whether its target speeds enter a keep-out band; an abort runs down to rest."""
+        if self.state:
+            return band.from_rad_s < self.segment.top_rad_s
+        return self.segment.enters(band)
+
+
+def abort_words(segment: str, state: str) -> str:
+    """Where an abort begins and what caused it, in words.
+
+    Example:
+        >>> abort_words("1.3h", "controls frozen")
+        'abort from 1.3h, controls frozen'
+    """
+    return f"abort from {segment or 'anywhere'}, {state}"
+
+
+def place_words(labels: Labels) -> str:
+    """Labels in words; the whole run where all are empty."""
+    where = abort_words(labels.segment, labels.state) if labels.state else labels.segment
+    parts = [
+        where,
+        labels.mode,
+        f"{labels.harmonic} per rev" if labels.harmonic else "",
+        f"band {labels.band}" if labels.band else "",
+    ]
+    return ", ".join(part for part in parts if part) or "whole run"
+
+
+@dataclass(frozen=True)
 class Case:
     """A plan with its segments by label, the vocabulary and the predictions."""
 
@@ -61,6 +125,28 @@ class Case:
         """Speeds of each segment: its window and the error of the speed gauge."""
         error = abs(self.plan.stand.speed_gauge_error_rad_s)
         return {s.id: Span(*s.ends_rad_s(error)) for s in self.segments.values()}
+
+    @cached_property
+    def stretches(self) -> tuple[Place, ...]:
+        """Every segment as a place of its own."""
+        return tuple(Place(s, self.spans[s.id]) for s in self.segments.values())
+
+    @cached_property
+    def aborts(self) -> tuple[Place, ...]:
+        """Aborts from every segment but the final stop, which is one itself, for every cause.
+
+        Each runs through all speeds from the segment's highest down to rest.
+        """
+        return tuple(
+            Place(s, Span(0.0, self.spans[s.id].highest_rad_s), cause)
+            for s in self.segments.values()
+            if s.kind != "stop"
+            for cause in ABORT_CAUSES
+        )
+
+    def places_of(self, quantity: Quantity) -> tuple[Place, ...]:
+        """Places where a quantity of each segment may have numbers."""
+        return (*self.stretches, *self.aborts) if "state" in quantity.axes else self.stretches
 
     @cached_property
     def whole_run(self) -> Span:

@@ -4,20 +4,19 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from planner.judge.case import WHOLE_RUN
+from planner.judge.case import ABORT, WHOLE_RUN
 from planner.judge.documents import closing_document, parts_of
 from planner.judge.evidence import Evidence, faces_danger, wanted
 from planner.judge.rows import family_of, order_of
 from planner.model.results import Coverage, Verdict
-from planner.model.rules import HAZARD_CLASSES
+from planner.model.rules import ABORTS, HAZARD_CLASSES
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from planner.judge.case import Case
+    from planner.judge.case import Case, Place
     from planner.judge.findings import Judged
     from planner.judge.outcomes import Outcome
-    from planner.model.plan import Segment
     from planner.model.rules import Rule
 
 _Said = tuple["Rule", "Outcome"]
@@ -28,7 +27,8 @@ def coverage(case: Case, judged: Sequence[Judged]) -> tuple[Coverage, ...]:
 
     A part is closed by rules where in each of its segments the numbers that the class asks for
     were judged or shown not to apply, and nothing was left open; else by a document that reaches
-    the whole part, unless something was left open that no document may close.
+    the whole part, unless something was left open that no document may close. Aborts are closed
+    by rules of any class that judge numbers of aborts, abort by abort.
     """
     classes = [
         *HAZARD_CLASSES,
@@ -36,10 +36,18 @@ def coverage(case: Case, judged: Sequence[Judged]) -> tuple[Coverage, ...]:
         *case.plan.extra_classes,
     ]
     return tuple(
-        _part(hazard_class, part, case, [j for j in judged if j.rule.hazard_class == hazard_class])
+        _part(hazard_class, part, case, [j for j in judged if _speaks_of(hazard_class, j)])
         for hazard_class in dict.fromkeys(classes)
         for part in parts_of(hazard_class)
     )
+
+
+def _speaks_of(hazard_class: str, judged: Judged) -> bool:
+    """Tell whether a rule belongs to a class; each that reaches aborts belongs to these too."""
+    reaches_aborts = ABORT in judged.rule.where or any(
+        outcome.row.kind == ABORT for outcome in judged.outcomes
+    )
+    return judged.rule.hazard_class == hazard_class or (hazard_class == ABORTS and reaches_aborts)
 
 
 def _part(hazard_class: str, part: str, case: Case, judged: Sequence[Judged]) -> Coverage:
@@ -50,8 +58,9 @@ def _part(hazard_class: str, part: str, case: Case, judged: Sequence[Judged]) ->
     opened = _left_open(said, about)
     holes = _holes(hazard_class, part, case, said)
     by_rules = _closers(said, case)
-    if not by_rules and hazard_class in HAZARD_CLASSES:
-        # nothing of the kind can occur here, and the numbers that would show it were looked at
+    if not by_rules and hazard_class in HAZARD_CLASSES and part != ABORT:
+        # nothing of the kind can occur here, and the numbers that would show it were looked at;
+        # an abort can always occur
         by_rules = list(dict.fromkeys(_rules_that(("does not apply",), said, case)))
     if not opened and not holes and by_rules:
         return Coverage(hazard_class, part, ", ".join(by_rules), Verdict.worst(verdicts))
@@ -78,21 +87,24 @@ def _left_open(said: Sequence[_Said], about: Sequence[Judged]) -> str:
 
 def _holes(hazard_class: str, part: str, case: Case, said: Sequence[_Said]) -> str:
     """Name the first number that the class asks for and that no rule looked at."""
-    segments: list[Segment | None] = [s for s in case.segments.values() if s.kind == part]
-    facing: dict[str, list[_Said]] = {}
+    places: list[Place | None] = [None]
+    if part != WHOLE_RUN:
+        places = [p for p in (*case.stretches, *case.aborts) if p.kind == part]
+    facing: dict[tuple[str, str], list[_Said]] = {}
     for rule, outcome in said:
         if faces_danger(rule, case.vocabulary[rule.quantity]):
-            place = "" if part == WHOLE_RUN else outcome.row.labels.segment
-            facing.setdefault(place, []).append((rule, outcome))
-    for segment in segments if part != WHOLE_RUN else [None]:
-        numbers = wanted(hazard_class, segment, case)
+            labels = outcome.row.labels
+            where = ("", "") if part == WHOLE_RUN else (labels.segment, labels.state)
+            facing.setdefault(where, []).append((rule, outcome))
+    for place in places:
+        numbers = wanted(hazard_class, place, case)
         if numbers is None:
             return "no quantity of this tool closes it"
-        here = facing.get("" if segment is None else segment.id, [])
+        here = facing.get((place.segment.id, place.state) if place else ("", ""), [])
         for evidence in numbers:
             if not any(_is_evidence(evidence, rule, outcome) for rule, outcome in here):
-                place = segment.id if segment else "the run"
-                return f"no rule of the class judges {evidence} at {place}"
+                at = place.words if place else "the run"
+                return f"no rule of the class judges {evidence} at {at}"
     return ""
 
 
@@ -104,6 +116,8 @@ def _is_evidence(evidence: Evidence, rule: Rule, outcome: Outcome) -> bool:
     """
     labels = outcome.row.labels
     if rule.quantity != evidence.quantity or outcome.row.set_aside:
+        return False
+    if outcome.kind == "does not apply" and evidence.must_apply:
         return False
     if outcome.kind == "exempt" and not (evidence.family == "flap" and evidence.order == 1):
         return False

@@ -1,10 +1,12 @@
 """What has to be judged before a built-in hazard class counts as closed by rules.
 
 Without this a thin rule book could close a class with a rule that says nothing about the hazard.
-Each class asks, in each segment, for every number below; a facility's book chooses the limits, not
-whether the hazard is looked at. A class without numbers is closed by an outside document only: its
-methods are not there. A method that is added later adds its
-quantities here.
+Each class asks, in each segment and each abort, for every number below; a facility's book chooses
+the limits, not whether the hazard is looked at. A class without numbers is closed by an outside
+document only: its methods are not there. A method that is added later adds its quantities here.
+
+Holds are judged by periodic states. In ramps, the stop and aborts the blades may meet their stops
+and gusts pass, so that marched numbers are asked for; no periodic state stands in for them.
 """
 
 from __future__ import annotations
@@ -17,8 +19,7 @@ from planner.model.rules import HAZARD_CLASSES
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-    from planner.judge.case import Case
-    from planner.model.plan import Segment
+    from planner.judge.case import Case, Place
     from planner.model.results import Quantity
     from planner.model.rules import Rule
 
@@ -40,6 +41,8 @@ class Evidence:
     """Order of the mode in its family; zero: any."""
     mode: str = ""
     """Label of one mode; empty: any."""
+    must_apply: bool = False
+    """Nothing can make it not apply: a row that says so is no evidence."""
 
     def __str__(self) -> str:
         """Words for a reason."""
@@ -52,12 +55,12 @@ class Evidence:
         return f"{words} at {self.harmonic} per revolution" if self.harmonic else words
 
 
-def wanted(hazard_class: str, segment: Segment | None, case: Case) -> tuple[Evidence, ...] | None:
-    """Numbers that must all be judged to close a class in a segment.
+def wanted(hazard_class: str, place: Place | None, case: Case) -> tuple[Evidence, ...] | None:
+    """Numbers that must all be judged to close a class in a segment or an abort.
 
     Args:
         hazard_class: a built-in class, or one that the book or plan adds.
-        segment: where; None for the run as a whole.
+        place: where; None for the run as a whole.
         case: plan and predictions.
 
     Returns:
@@ -67,11 +70,11 @@ def wanted(hazard_class: str, segment: Segment | None, case: Case) -> tuple[Evid
     """
     if hazard_class not in HAZARD_CLASSES:
         return ()
-    if segment is None:
+    if place is None:
         return _ON_RUN.get(hazard_class)
-    if hazard_class not in _BY_SEGMENT:
+    if hazard_class not in _BY_PLACE:
         return None
-    return _BY_SEGMENT[hazard_class](segment, case)
+    return _BY_PLACE[hazard_class](place, case)
 
 
 def faces_danger(rule: Rule, quantity: Quantity) -> bool:
@@ -81,27 +84,58 @@ def faces_danger(rule: Rule, quantity: Quantity) -> bool:
     return quantity.danger != "low" or rule.sense == "at least"
 
 
-def _stops(_: Segment, case: Case) -> tuple[Evidence, ...]:
-    """A hingeless blade by its root moment; others by both margins and the moment of resting."""
-    if case.plan.rotor.hub.kind == "hingeless":
-        return _all("root_flap_moment")
-    return _all("droop_stop_clearance", "up_stop_clearance", "droop_stop_moment")
+def _stops(place: Place, case: Case) -> tuple[Evidence, ...]:
+    """A hingeless blade by its root moment; others by both stops.
+
+    Holds: both margins and the moment of resting. Elsewhere: what the blades do to their stops,
+    and that none is met once the blades have left it.
+    """
+    hingeless = case.plan.rotor.hub.kind == "hingeless"
+    if place.kind == "hold":
+        at_holds = ("droop_stop_clearance", "up_stop_clearance", "droop_stop_moment")
+        return _all("root_flap_moment") if hingeless else _all(*at_holds)
+    marched = ("droop_stop_peak_moment", "up_stop_peak_moment", "contacts_after_lift_off")
+    flap = _all("root_flap_peak_moment") if hingeless else _all(*marched)
+    return flap if case.plan.rotor.lag_stop is None else (*flap, *_all("lag_peak"))
 
 
-def _resonance(segment: Segment, case: Case) -> tuple[Evidence, ...]:
-    if segment.kind == "hold":
-        return (*_blade_modes(segment, case), *_given_modes(case), *_bands(case))
+def _clearance(_: Place, __: Case) -> tuple[Evidence, ...]:
+    return _all("blade_clearance")
+
+
+def _aborts(place: Place, case: Case) -> tuple[Evidence, ...]:
+    """What a ramp and the stop are asked for that an abort may exceed, and that it ends."""
+    asked = ("blade_clearance", "hub_moment_peak", "time_to_rest")
+    always = tuple(Evidence(q, must_apply=place.must_occur) for q in asked)
+    return (*_stops(place, case), *always, *_unpowered(place, case))
+
+
+def _unpowered(place: Place, case: Case) -> tuple[Evidence, ...]:
+    """A passage that cannot choose its rate: by cycles, and by what each stand mode answers."""
+    if not any(place.enters(band) for band in case.plan.keep_outs):
+        return ()
+    answers = (
+        Evidence("band_amplification", "stand", mode=mode) for mode in _given("stand", case)
+    )
+    return (*_all("band_cycles"), *answers)
+
+
+def _resonance(place: Place, case: Case) -> tuple[Evidence, ...]:
+    if place.kind == "hold":
+        return (*_blade_modes(place, case), *_given_modes(case), *_bands(case))
     covers = tuple(
         Evidence("crossing_cover", "stand", "1", mode=mode) for mode in _given("stand", case)
     )
-    enters = any(segment.enters(band) for band in case.plan.keep_outs)
+    if place.kind == "stop" and not case.plan.shutdown.powered:
+        return (*covers, *_unpowered(place, case))
+    enters = any(place.enters(band) for band in case.plan.keep_outs)
     return (*covers, *_all("band_rate")) if enters else covers
 
 
-def _blade_modes(segment: Segment, case: Case) -> tuple[Evidence, ...]:
+def _blade_modes(place: Place, case: Case) -> tuple[Evidence, ...]:
     """The lowest modes of each family, at the fastest holds."""
     top = TOP_SHARE * case.whole_run.highest_rad_s
-    if case.spans[segment.id].highest_rad_s < top:
+    if place.span.highest_rad_s < top:
         return ()
     lowest = (("flap", 1), ("flap", 2), ("lag", 1), ("torsion", 1))
     return tuple(Evidence("harmonic_spacing", family, order=n) for family, n in lowest)
@@ -132,12 +166,16 @@ def _bands(case: Case) -> tuple[Evidence, ...]:
     return _all("band_distance") if case.plan.keep_outs else ()
 
 
-def _loads(_: Segment, __: Case) -> tuple[Evidence, ...]:
-    return _all("thrust", "root_centrifugal_force", "hub_moment")
+def _loads(place: Place, __: Case) -> tuple[Evidence, ...]:
+    if place.kind == "hold":
+        return _all("thrust", "root_centrifugal_force", "hub_moment")
+    return _all("thrust_peak", "root_centrifugal_force", "hub_moment_peak")
 
 
-def _drive(_: Segment, __: Case) -> tuple[Evidence, ...]:
-    return _all("torque", "power")
+def _drive(place: Place, __: Case) -> tuple[Evidence, ...]:
+    """Torque and power; in ramps also that the drive has torque left to follow the schedule."""
+    both = _all("torque", "power")
+    return (*both, *_all("drive_torque_reserve")) if place.kind == "ramp" else both
 
 
 def _all(*quantities: str) -> tuple[Evidence, ...]:
@@ -148,9 +186,11 @@ _ON_RUN: dict[str, tuple[Evidence, ...]] = {
     "drive and overspeed": _all("card_speed", "trip_above_card", "trip_below_proven"),
     "stops": _all("droop_stop_rest_moment"),
 }
-_BY_SEGMENT: dict[str, Callable[[Segment, Case], tuple[Evidence, ...]]] = {
+_BY_PLACE: dict[str, Callable[[Place, Case], tuple[Evidence, ...]]] = {
     "stops": _stops,
+    "clearance": _clearance,
     "resonance": _resonance,
     "loads": _loads,
     "drive and overspeed": _drive,
+    "aborts": _aborts,
 }

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING
 
+from planner.judge.case import place_words
 from planner.model.results import Finding, Status, Verdict
 from planner.units import from_si
 
@@ -52,12 +53,11 @@ def _finding(quantity: Quantity, prediction: Prediction) -> Finding | None:
         return None
     worst, value, hand = max(apart, key=lambda row: _difference(row[1], row[2]))
     labels = prediction.labels[worst]
-    here = [text for text in (labels.segment, labels.mode, labels.harmonic, labels.band) if text]
     unit = quantity.unit
     segments = {prediction.labels[i].segment for i, _, _ in apart} - {""}
     return Finding(
         rule=f"hand check: {quantity.id}",
-        where=", ".join(here) or "whole run",
+        where=place_words(labels),
         segment=labels.segment,
         value=value,
         low=float(prediction.low[worst]),

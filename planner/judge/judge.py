@@ -14,8 +14,8 @@ tests of the same numbers in ``tests/judge`` try every one of them.
 5. A quantity is not predicted, or a rule names one that does not exist: NOT ASSESSED.
 6. A rule matches no row, because of its part of the run, speed range, mode family or harmonics:
    NOT ASSESSED, and its class is open.
-7. Prediction left out a segment, mode or keep-out band, or labelled it wrongly: the expected
-   places are listed from the plan and each missing one is NOT ASSESSED.
+7. Prediction left out a segment, an abort, a mode or a keep-out band, or labelled it wrongly: the
+   expected places are listed from the plan and each missing one is NOT ASSESSED.
 8. A hold's window or a ramp reaches into a rule's speed range with one end only: it is judged
    whole, gauge error included.
 9. A limit over speed is read outside its table, or at the mild end of a ramp: no extrapolation;
@@ -36,8 +36,8 @@ tests of the same numbers in ``tests/judge`` try every one of them.
     of its hazard, down to the order of a blade mode, each mode of the stand and the harmonic that
     drives it: held spacing and distance from keep-out bands, resonances passed in ramps and the
     stop, both stops and the moment of resting on one, also at rest, the overspeed trip, torque and
-    power while speed changes. A rule that guards the harmless side, or one of another part of the
-    run, does not count.
+    power while speed changes and what the drive has left, the room between blade and stand. A rule
+    that guards the harmless side, or one of another part of the run, does not count.
 16. One hold is judged, another is outside every rule's range: each segment is asked by itself.
 17. An outside document is for less speed or less wind (at the anemometer or the hub, whichever is
     more), is for another part or class, is dated after the card's issue, or names no approver: it
@@ -45,15 +45,28 @@ tests of the same numbers in ``tests/judge`` try every one of them.
 18. The plan's wind, with the anemometer's error, is above the book's cap, or there is no cap.
 19. The main path has a slip: an independent hand check that disagrees is a finding.
 20. A step looks good although its class is open: a class that is not closed in holds, ramps or
-    the stop marks all of those segments.
+    the stop marks all of those segments; open aborts mark every hold and ramp, for nobody knows
+    how to leave it.
 21. No rule, no segment, no prediction at all: the worst of nothing is NOT ASSESSED.
+22. A ramp or the stop is judged by periodic states, although blades meet their stops and gusts
+    pass: there each class asks for marched numbers (peak moments of the stops, contacts once they
+    are left behind, peaks of hub moment and thrust), and a margin of the periodic solution or a
+    number of a hold does not stand in.
+23. An abort is judged for one cause, or from one hold only: the numbers are asked for every cause
+    from every hold and ramp; one that is missing is a gap. What is bad in an abort counts against
+    the segment where it begins, and a rule for ramps does not reach the aborts out of them.
+24. An abort is said not to apply: with power cut and controls commanded or frozen it always does;
+    the class of aborts is never closed by rows of which none was assessed.
+25. A passage without power is judged by its rate, which nobody chooses: an unpowered stop and each
+    abort that runs down through a keep-out band are asked for turns inside it and for the response
+    of each stand mode.
 """
 
 from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from planner.judge.case import Case
+from planner.judge.case import ABORT, Case
 from planner.judge.coverage import coverage
 from planner.judge.findings import judge_rules
 from planner.judge.hand_checks import hand_check_findings
@@ -113,5 +126,6 @@ def _segment(
         for finding in findings
         if segment.id in finding.segment_verdicts
     ]
-    open_class = any(c.where == segment.kind and not c.closed_by for c in covered)
+    parts = {segment.kind} if segment.kind == "stop" else {segment.kind, ABORT}
+    open_class = any(c.where in parts and not c.closed_by for c in covered)
     return Verdict.worst([*said, Verdict.NOT_ASSESSED] if open_class else said)

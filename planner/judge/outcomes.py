@@ -6,11 +6,12 @@ import math
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Literal
 
-from planner.judge.case import WHOLE_RUN
+from planner.judge.case import ABORT, WHOLE_RUN
 from planner.judge.documents import CLOSABLE, closing_document
 from planner.judge.limits import limit_over
 from planner.judge.references import Missing
 from planner.model.results import Status, Verdict
+from planner.model.rules import ABORTS
 from planner.units import from_si
 
 if TYPE_CHECKING:
@@ -139,8 +140,8 @@ def _keeps(margin: float, limit: float) -> bool:
 
 def _exempt(row: Row, bench: Bench) -> bool:
     least = bench.rule.exempt_damping
-    if least is None or not row.labels.mode:
-        return False
+    if least is None or not row.labels.mode or row.labels.state:
+        return False  # an abort passes other speeds than those whose damping is known
     return bench.damping.get((row.labels.segment, row.labels.mode), -math.inf) >= least
 
 
@@ -149,13 +150,17 @@ def _open(row: Row, reason: str) -> Outcome:
 
 
 def _by_document(outcome: Outcome, bench: Bench) -> Outcome:
-    """Close a row that is not assessed by an outside document that reaches it."""
+    """Close a row that is not assessed by an outside document that reaches it.
+
+    Numbers of aborts are closed by documents on aborts, whatever the class of their rule.
+    """
     row = outcome.row
     if row.status not in CLOSABLE:
         return outcome
     on_run = row.kind == WHOLE_RUN
     highest = (bench.case.whole_run if on_run else row.span).highest_rad_s
-    number, why = closing_document(bench.rule.hazard_class, row.kind, highest, bench.case)
+    hazard_class = ABORTS if row.kind == ABORT else bench.rule.hazard_class
+    number, why = closing_document(hazard_class, row.kind, highest, bench.case)
     if number:
         return replace(outcome, verdict=Verdict.GO, closed_by=number)
     return replace(outcome, reason=f"{outcome.reason}; {why}") if why else outcome

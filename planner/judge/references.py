@@ -20,7 +20,7 @@ from planner.model.rotor import HingelessHub
 if TYPE_CHECKING:
     from planner.model.plan import Plan
     from planner.model.results import Prediction, Predictions
-    from planner.model.rotor import Stop
+    from planner.model.rotor import LagStop, Stop
 
 
 @dataclass(frozen=True)
@@ -99,6 +99,17 @@ def _stop_rating(name: str, read: Callable[[Plan], Stop | None]) -> _Resolver:
     return found
 
 
+def _lag_stop(read: Callable[[LagStop], float]) -> _Resolver:
+    def found(case: Case, _: Span) -> Found:
+        stop = case.plan.rotor.lag_stop
+        if stop is None:
+            return Missing("the hub has no lag stops")
+        value = read(stop)
+        return Range(value, value)
+
+    return found
+
+
 def _root_moment_rating(case: Case, _: Span) -> Found:
     hub = case.plan.rotor.hub
     if not isinstance(hub, HingelessHub):
@@ -173,8 +184,11 @@ RESOLVERS: Mapping[str, _Resolver] = MappingProxyType(
         "root_moment_rating": _root_moment_rating,
         "droop_stop_moment_rating": _stop_rating("droop", lambda p: p.rotor.droop_stop),
         "up_stop_moment_rating": _stop_rating("up", lambda p: p.rotor.up_stop),
+        "lag_stop_moment_rating": _lag_stop(lambda s: s.moment_rating_N_m),
         "flap_travel": _flap_travel,
+        "lag_travel": _lag_stop(lambda s: (s.lag_angle_rad - s.lead_angle_rad) / 2.0),
         "cyclic_authority": _fixed(lambda p: p.rotor.cyclic_authority_rad),
+        "blade_radius": _fixed(lambda p: p.rotor.blade.radius_m),
     }
 )
 """Id to the function that finds it; the ids are those of the register's REFERENCES."""

@@ -11,7 +11,8 @@ import math
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
-from planner.judge.case import WHOLE_RUN, Case, Span
+from planner.judge.case import ABORT, WHOLE_RUN, Case, Place, Span, place_words
+from planner.model.plan import ABORT_CAUSES
 from planner.model.results import Labels, Status
 
 if TYPE_CHECKING:
@@ -28,7 +29,7 @@ class Row:
 
     labels: Labels
     kind: str
-    """Segment kind, ``run`` for a number of the whole run, empty where it cannot be placed."""
+    """Segment kind, ``abort``, or ``run`` for a number of the whole run; empty: not placed."""
     span: Span
     value: float = math.nan
     low: float = math.nan
@@ -48,13 +49,7 @@ class Row:
     @property
     def place(self) -> str:
         """The labels in words."""
-        parts = [
-            self.labels.segment,
-            self.labels.mode,
-            f"{self.labels.harmonic} per rev" if self.labels.harmonic else "",
-            f"band {self.labels.band}" if self.labels.band else "",
-        ]
-        return ", ".join(part for part in parts if part) or "whole run"
+        return place_words(self.labels)
 
 
 def rows_of(quantity: Quantity, prediction: Prediction, case: Case) -> list[Row]:
@@ -62,7 +57,8 @@ def rows_of(quantity: Quantity, prediction: Prediction, case: Case) -> list[Row]
 
     A row without segment label in a quantity that has one for each segment, and which holds no
     number to judge (a study that refused as a whole, a part that the hub does not have), stands
-    for every segment of the run.
+    for every segment of the run, and where the quantity has numbers of aborts for these too; one
+    with the cause of an abort stands for the aborts of that cause.
 
     Raises:
         ValueError: columns of different lengths, or a prediction of another quantity.
@@ -120,29 +116,42 @@ def _placed(row: Row, quantity: Quantity, case: Case, speed_rad_s: float) -> lis
     fault = _label_fault(row, quantity, case)
     if fault:
         return [replace(row, status=Status.NOT_COMPUTED, reason=fault, gap=True)]
-    segment = case.segments.get(row.labels.segment)
-    if segment is not None:
-        span = case.spans[segment.id].including(speed_rad_s)
-        return [replace(row, kind=segment.kind, span=span)]
+    if row.labels.segment:
+        place = _place(row.labels, case)
+        return [replace(row, kind=place.kind, span=place.span.including(speed_rad_s))]
     if "segment" not in quantity.axes:
         span = case.whole_run if math.isnan(speed_rad_s) else Span(speed_rad_s, speed_rad_s)
         return [replace(row, kind=WHOLE_RUN, span=span)]
     return [
         replace(
             row,
-            labels=replace(row.labels, segment=each.id),
+            labels=replace(row.labels, segment=each.segment.id, state=each.state),
             kind=each.kind,
-            span=case.spans[each.id],
+            span=each.span,
         )
-        for each in case.segments.values()
+        for each in case.places_of(quantity)
+        if row.labels.state in {"", each.state}
     ]
+
+
+def _place(labels: Labels, case: Case) -> Place:
+    """The segment of a label, or the abort that begins in it."""
+    span = case.spans[labels.segment]
+    if labels.state:
+        span = replace(span, lowest_rad_s=0.0)
+    return Place(case.segments[labels.segment], span, labels.state)
 
 
 def _label_fault(row: Row, quantity: Quantity, case: Case) -> str:
     name = row.labels.segment
     if name and name not in case.segments:
         return f"a number was predicted for segment {name}, which the plan does not have"
-    bare = [axis for axis in quantity.axes if not getattr(row.labels, axis)]
+    state = row.labels.state
+    if state and "state" not in quantity.axes:
+        return f"a number was predicted for the {ABORT} cause {state}, {quantity.id} has none"
+    if state and state not in ABORT_CAUSES:
+        return f"a number was predicted for the {ABORT} cause {state}, which is not known"
+    bare = [axis for axis in quantity.axes if axis != "state" and not getattr(row.labels, axis)]
     if bare and row.status is Status.OK:
         return f"a number was predicted without saying for which {bare[0]}"
     return ""

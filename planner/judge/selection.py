@@ -1,7 +1,7 @@
 """Which rows a rule covers, and which rows should be there and are not.
 
-A rule is only as good as the rows that reach it. So besides filtering, each segment, mode and
-keep-out band that the rule means is looked for: where prediction left one out, a gap is put in
+A rule is only as good as the rows that reach it. So besides filtering, each segment, abort, mode
+and keep-out band that the rule means is looked for: where prediction left one out, a gap is put in
 its place and judged NOT ASSESSED.
 """
 
@@ -10,7 +10,7 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
-from planner.judge.case import EVERY_SPEED, WHOLE_RUN, Case, Span
+from planner.judge.case import EVERY_SPEED, WHOLE_RUN, Case, Place, Span
 from planner.judge.limits import speed_range
 from planner.judge.references import Missing
 from planner.judge.rows import GIVEN_FAMILIES, Row, family_of, order_of
@@ -19,7 +19,6 @@ from planner.model.results import Labels, Status
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
-    from planner.model.plan import Segment
     from planner.model.results import Quantity
     from planner.model.rules import Rule
 
@@ -37,8 +36,10 @@ def select(rule: Rule, quantity: Quantity, rows: Sequence[Row], case: Case) -> S
     """Pick a rule's rows out of those of its quantity.
 
     Where it applies is read widely: a rule meets a segment if any speed of the segment's window,
-    gauge error included, lies in the rule's range. A rule for the ``run`` covers numbers of the
-    whole run and those of every segment; a number of the whole run is covered by no other rule.
+    gauge error included, lies in the rule's range; an abort passes all speeds from its segment's
+    down to rest. A rule for the ``run`` covers numbers of the whole run, of every segment and of
+    every abort; a number of the whole run is covered by no other rule. Numbers of aborts are
+    covered by rules for ``abort`` or the ``run`` alone, never by those for the segment's kind.
     """
     speeds = speed_range(rule, case)
     reach = EVERY_SPEED if isinstance(speeds, Missing) else speeds
@@ -81,18 +82,17 @@ def _gaps(
 ) -> list[Row]:
     reach, case = scope
     seen = {row.labels.mode for row in picked if row.labels.mode}
-    by_segment: dict[str, list[Labels]] = {}
+    by_place: dict[tuple[str, str], list[Labels]] = {}
     for row in picked:
-        by_segment.setdefault(row.labels.segment, []).append(row.labels)
+        by_place.setdefault((row.labels.segment, row.labels.state), []).append(row.labels)
     gaps: list[Row] = []
-    for segment in case.segments.values():
-        span = case.spans[segment.id]
-        if not (_means_kind(rule, segment.kind) and span.meets(reach)):
+    for place in case.places_of(quantity):
+        if not (_means_kind(rule, place.kind) and place.span.meets(reach)):
             continue
-        here = by_segment.get(segment.id, [])
+        here = by_place.get((place.segment.id, place.state), [])
         gaps.extend(
-            _gap(wanted, segment, span)
-            for wanted in _wanted(rule, quantity, segment, (seen, case))
+            _gap(wanted, place)
+            for wanted in _wanted(rule, quantity, place, (seen, case))
             if not any(_answers(labels, wanted) for labels in here)
         )
     return gaps
@@ -105,44 +105,48 @@ class _Wanted:
     band: str = ""
 
     def __str__(self) -> str:
-        if self.order is not None:
-            return f"order {self.order} of the mode family"
-        return self.mode or (f"band {self.band}" if self.band else "the segment")
+        mode = self.mode if self.order is None else f"order {self.order} of the mode family"
+        parts = (mode, f"band {self.band}" if self.band else "")
+        return ", ".join(part for part in parts if part)
 
 
 def _wanted(
-    rule: Rule, quantity: Quantity, segment: Segment, scope: tuple[set[str], Case]
+    rule: Rule, quantity: Quantity, place: Place, scope: tuple[set[str], Case]
 ) -> Iterator[_Wanted]:
-    """What must have a row in a segment that a rule covers."""
+    """What must have a row at a place that a rule covers."""
     seen, case = scope
+    bands = [""]
     if "band" in quantity.axes:
-        bands = case.plan.keep_outs
-        yield from (
-            _Wanted(band=b.id) for b in bands if segment.kind == "hold" or segment.enters(b)
-        )
-        return
-    if "mode" not in quantity.axes:
-        yield _Wanted()
-        return
-    given = {
-        f"{m.family} {m.name}"
-        for m in case.plan.stand.modes
-        if rule.mode_family in {"", m.family} and not rule.mode_orders
-    }
-    yield from (_Wanted(mode=mode) for mode in sorted(seen | given))
-    if rule.mode_family not in GIVEN_FAMILIES:
-        yield from (_Wanted(order=order) for order in rule.mode_orders)
+        bands = [b.id for b in case.plan.keep_outs if place.kind == "hold" or place.enters(b)]
+    for band in bands:
+        if "mode" not in quantity.axes:
+            yield _Wanted(band=band)
+            continue
+        given = {
+            f"{m.family} {m.name}"
+            for m in case.plan.stand.modes
+            if rule.mode_family in {"", m.family} and not rule.mode_orders
+        }
+        yield from (_Wanted(mode=mode, band=band) for mode in sorted(seen | given))
+        if rule.mode_family not in GIVEN_FAMILIES:
+            yield from (_Wanted(order=order, band=band) for order in rule.mode_orders)
 
 
 def _answers(labels: Labels, wanted: _Wanted) -> bool:
-    if wanted.band:
-        return labels.band in {"", wanted.band}
+    if wanted.band and labels.band not in {"", wanted.band}:
+        return False
     if wanted.order is not None:
         return not labels.mode or order_of(labels.mode) == wanted.order
     return not wanted.mode or labels.mode in {"", wanted.mode}
 
 
-def _gap(wanted: _Wanted, segment: Segment, span: Span) -> Row:
-    labels = Labels(segment=segment.id, mode=wanted.mode, band=wanted.band)
-    reason = f"nothing was predicted for {wanted} at {segment.id}"
-    return Row(labels, segment.kind, span, reason=reason, gap=True)
+def _gap(wanted: _Wanted, place: Place) -> Row:
+    labels = Labels(
+        segment=place.segment.id, mode=wanted.mode, band=wanted.band, state=place.state
+    )
+    what = str(wanted)
+    if not what and not place.state:
+        what = "the segment"
+    where = f"{what} at {place.words}" if what else place.words
+    reason = f"nothing was predicted for {where}"
+    return Row(labels, place.kind, place.span, reason=reason, gap=True)

@@ -16,6 +16,51 @@ SegmentKind = Literal["hold", "ramp", "stop"]
 BlockKind = Literal["first of day", "track and balance", "pitch sweep", "endurance", "hot restart"]
 
 
+ABORT_CAUSES: tuple[str, ...] = (
+    "controls commanded",
+    "controls frozen",
+    "brake lost",
+    "stop not re-seated",
+)
+"""What goes wrong when a run is broken off; each is marched from everywhere."""
+
+
+@dataclass(frozen=True)
+class GustLengths:
+    """Times of the discrete gust from its start to its end; the worst between is sought."""
+
+    shortest_s: float
+    longest_s: float
+
+
+@dataclass(frozen=True)
+class Turbulence:
+    """Series of gusty wind that are marched beside the discrete gust."""
+
+    intensity: float
+    """Standard deviation of the along-wind speed over its mean."""
+    series: int
+    seed: int
+    """First number of the random series; the same seed gives the same wind."""
+
+
+@dataclass(frozen=True)
+class Sector:
+    """Bearings from which the wind comes over ground of one kind."""
+
+    name: str
+    from_rad: float
+    to_rad: float
+    """Clockwise from ``from_rad``; may pass through north."""
+    upflow_rad: float
+    turbulence_intensity: float | None
+    """Stands in for the plan's own intensity; None: the plan's."""
+    shelter: float | None
+    """Share of the wind that arrives behind a measured shelter; None: all of it."""
+    shelter_source: str
+    """The measurement of the shelter."""
+
+
 @dataclass(frozen=True)
 class Site:
     """Air and wind for which the run is planned."""
@@ -32,6 +77,10 @@ class Site:
     anemometer_height_m: float
     anemometer_error_m_s: float
     shear_exponent: float
+    gust_lengths: GustLengths | None = None
+    turbulence: Turbulence | None = None
+    sectors: tuple[Sector, ...] = ()
+    """Cover the whole circle once; empty: the wind is the same from everywhere."""
 
 
 @dataclass(frozen=True)
@@ -62,6 +111,8 @@ class Step:
     hold_time_s: float
     window: Window
     note: str
+    own_run_up: bool = False
+    """The drive's own run-up: its time is found, not stated; ``ramp_time_s`` is NaN."""
 
 
 @dataclass(frozen=True)
@@ -127,6 +178,11 @@ class AbortActions:
     collective_rad: float
     cyclic: str
     actions: tuple[str, ...]
+    collective_rate_rad_s: float | None = None
+    reaction_time_s: float | None = None
+    """From the cause to the crew's first action."""
+    brake: bool = False
+    brake_from_rad_s: float = 0.0
 
 
 @dataclass(frozen=True)
@@ -172,6 +228,8 @@ class Segment:
     window: Window
     times: int
     """How often the run passes this segment, repeats counted."""
+    own_run_up: bool = False
+    """The drive's own run-up; ``duration_s`` is NaN until it is predicted."""
 
     @property
     def top_rad_s(self) -> float:
@@ -212,19 +270,15 @@ def segments(plan: Plan) -> tuple[Segment, ...]:
             times = 1 if s == 0 else block.repeat
             to = _state(step)
             if at != to:
-                walk.append(_ramp(f"{b + 1}.{s + 1}r", (b, s), at, to, step.ramp_time_s, times))
+                walk.append(_ramp(f"{b + 1}.{s + 1}r", (b, s), at, step, times))
             walk.append(_hold(f"{b + 1}.{s + 1}h", (b, s), step, block.repeat))
             at = to
         first = block.steps[0]
         if block.repeat > 1 and at != _state(first):
-            walk.append(
-                _ramp(
-                    f"{b + 1}.1b", (b, 0), at, _state(first), first.ramp_time_s, block.repeat - 1
-                )
-            )
+            walk.append(_ramp(f"{b + 1}.1b", (b, 0), at, first, block.repeat - 1))
     end = _State(0.0, plan.shutdown.collective_rad, at.cyclic)
-    last = _ramp("stop", (len(plan.blocks) - 1, 0), at, end, plan.shutdown.time_s, 1)
-    return (*walk, replace(last, kind="stop"))
+    last = _way("stop", (len(plan.blocks) - 1, 0), at, end)
+    return (*walk, replace(last, kind="stop", duration_s=plan.shutdown.time_s))
 
 
 @dataclass(frozen=True)
@@ -238,9 +292,12 @@ def _state(step: Step) -> _State:
     return _State(step.speed_rad_s, step.collective_rad, step.cyclic)
 
 
-def _ramp(
-    label: str, place: tuple[int, int], start: _State, end: _State, time_s: float, times: int
-) -> Segment:
+def _ramp(label: str, place: tuple[int, int], start: _State, step: Step, times: int) -> Segment:
+    way = _way(label, place, start, _state(step))
+    return replace(way, duration_s=step.ramp_time_s, times=times, own_run_up=step.own_run_up)
+
+
+def _way(label: str, place: tuple[int, int], start: _State, end: _State) -> Segment:
     return Segment(
         id=label,
         kind="ramp",
@@ -252,9 +309,9 @@ def _ramp(
         to_collective_rad=end.collective_rad,
         from_cyclic=start.cyclic,
         cyclic=end.cyclic,
-        duration_s=time_s,
+        duration_s=0.0,
         window=Window(0.0, 0.0),
-        times=times,
+        times=1,
     )
 
 

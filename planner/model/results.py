@@ -11,7 +11,7 @@ if TYPE_CHECKING:
     import numpy as np
     from numpy.typing import NDArray
 
-Axis = Literal["segment", "mode", "harmonic", "band"]
+Axis = Literal["segment", "mode", "harmonic", "band", "state"]
 
 
 class Status(Enum):
@@ -38,12 +38,15 @@ class Verdict(Enum):
     @property
     def rank(self) -> int:
         """Position in the order; the greater, the worse."""
-        return list(Verdict).index(self)
+        return _ORDER[self]
 
     @staticmethod
     def worst(verdicts: list[Verdict]) -> Verdict:
         """Pick the worst; none at all is NOT ASSESSED."""
         return max(verdicts, key=lambda v: v.rank) if verdicts else Verdict.NOT_ASSESSED
+
+
+_ORDER = {verdict: rank for rank, verdict in enumerate(Verdict)}
 
 
 @dataclass(frozen=True)
@@ -80,6 +83,11 @@ class Labels:
     mode: str = ""
     harmonic: str = ""
     band: str = ""
+    state: str = ""
+    """Cause of an abort, out of ``ABORT_CAUSES``; ``segment`` is then where the abort begins.
+
+    Empty: the number belongs to the segment itself.
+    """
 
 
 @dataclass(frozen=True)

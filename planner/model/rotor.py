@@ -151,7 +151,11 @@ class Retraction:
 
 @dataclass(frozen=True)
 class Stop:
-    """A one-sided flap stop; the angle is the blade's flap angle from the hub plane."""
+    """A one-sided flap stop; the angle is the blade's flap angle from the hub plane.
+
+    Damping grows with penetration and reaches the stated value where the stop carries its
+    rated moment.
+    """
 
     angle_rad: float
     stiffness_N_m_rad: float
@@ -164,6 +168,22 @@ class Stop:
         if self.retraction is not None and speed_rad_s >= self.retraction.release_rad_s:
             return self.retraction.retracted_angle_rad
         return self.angle_rad
+
+
+@dataclass(frozen=True)
+class LagStop:
+    """The two stops of a lag hinge, alike; angles count against the rotation, lag positive.
+
+    Damping grows with penetration as on a flap stop.
+    """
+
+    lead_angle_rad: float
+    """Lag angle where a leading blade meets its stop: zero or negative."""
+    lag_angle_rad: float
+    """Lag angle where a lagging blade meets its stop: zero or positive."""
+    stiffness_N_m_rad: float
+    damping_N_m_s_rad: float
+    moment_rating_N_m: float
 
 
 @dataclass(frozen=True)
@@ -183,3 +203,5 @@ class Rotor:
     design_maximum_rad_s: float
     proven_rad_s: float
     root_force_rating_N: float
+    lag_stop: LagStop | None = None
+    """Articulated hubs only."""

@@ -25,6 +25,9 @@ HAZARD_CLASSES: dict[str, tuple[str, tuple[Where, ...]]] = {
 A rule book and a plan may add classes; none can take one away.
 """
 
+ABORTS = "aborts"
+"""Class that numbers of aborts close, whatever the class of the rule that judges them."""
+
 
 @dataclass(frozen=True)
 class Limit:

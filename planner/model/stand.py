@@ -35,6 +35,13 @@ class Drive:
     inertia_kg_m2: float
     """Rotating inertia of motor, gearing and hub, referred to the rotor shaft; without blades."""
     overspeed_trip_rad_s: float | None
+    friction_N_m: float | None = None
+    """Drag torque of drive and bearings at the rotor shaft while coasting."""
+    torque_by_speed: tuple[tuple[float, float], ...] = ()
+    """Greatest torque [N m] by rotor speed [rad/s], both at the rotor shaft, speed increasing.
+
+    Empty: torque rating and power rating bound it.
+    """
 
 
 @dataclass(frozen=True)
@@ -71,3 +78,5 @@ class Stand:
     ratings: Ratings
     obstructions: tuple[Obstruction, ...]
     positions: tuple[Obstruction, ...]
+    brake_torque_N_m: float | None = None
+    """Torque of the brake at the rotor shaft."""

@@ -10,6 +10,7 @@ from types import MappingProxyType
 from typing import TYPE_CHECKING
 
 from planner.predict.register_general import GENERAL
+from planner.predict.register_march import MARCHED, SPEEDS
 from planner.predict.register_resonance import RESONANCE
 from planner.predict.register_rotor import ROTOR
 
@@ -19,7 +20,7 @@ if TYPE_CHECKING:
     from planner.model.results import Quantity
 
 REGISTER: Mapping[str, Quantity] = MappingProxyType(
-    {quantity.id: quantity for quantity in (*GENERAL, *ROTOR, *RESONANCE)}
+    {quantity.id: quantity for quantity in (*GENERAL, *ROTOR, *MARCHED, *RESONANCE, *SPEEDS)}
 )
 
 REFERENCES: Mapping[str, str] = MappingProxyType(
@@ -39,8 +40,11 @@ REFERENCES: Mapping[str, str] = MappingProxyType(
         "root_moment_rating": "N m",
         "droop_stop_moment_rating": "N m",
         "up_stop_moment_rating": "N m",
+        "lag_stop_moment_rating": "N m",
         "flap_travel": "deg",
+        "lag_travel": "deg",
         "cyclic_authority": "deg",
+        "blade_radius": "m",
     }
 )
 """Reference values that a rule's limit may be a share of: id to display unit."""

@@ -291,8 +291,8 @@ _STOPS = (
         method="Searched downward from the top speed for the highest speed at which the periodic "
         "solution touches the static stop anywhere around the azimuth, in the gust at the hub; "
         "for fixed stops also in the mean wind and with every collective used at rest.",
-        validity="steady wind equal to the gust; no transients: contact in gusts below this speed "
-        "is not predicted",
+        validity="steady wind equal to the gust; no transients: contact in gusts is marched, see "
+        "droop_stop_peak_moment",
         source="periodic blade-element solution, see flap_lowest",
         hand_check="equals the still-air lift-off speed as the wind goes to zero (tested)",
         allowance="air_load",

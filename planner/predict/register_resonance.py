@@ -89,7 +89,7 @@ RESONANCE = (
         method="For each ramp and each harmonic that excites a stand or shaft mode: the speeds at "
         "which they meet, with the frequency allowance and the gauge's error, against the "
         "declared keep-out bands. Inside a band: distance to its nearer edge. Outside all: not "
-        "computed, because the amplitude of a passage is not.",
+        "computed, because nobody watches the passage.",
         validity="modes as given, with the rotor fitted",
         source="common practice",
         hand_check="none: one division and one subtraction",
@@ -118,8 +118,8 @@ RESONANCE = (
         danger="low",
         study="schedule",
         method="Rate of change of speed over 100 % rpm, for each second.",
-        validity="powered, prescribed ramps; an unpowered passage cannot choose its rate and must "
-        "be judged by amplitude and cycles, which are not computed",
+        validity="powered, prescribed ramps; an unpowered passage cannot choose its rate and is "
+        "judged by band_cycles and band_amplification",
         source="the schedule itself",
         hand_check="none: one division",
     ),

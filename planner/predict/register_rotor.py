@@ -15,7 +15,8 @@ _VALIDITY = (
     "quasi-steady air loads, out of ground effect, no blade motion in lag or twist; turning, no "
     "more than 5 % of the loads from beyond the section data, and parked from its continuation "
     "over the full circle (Viterna & Corrigan, NASA CP-2230, 1981, from memory). Along ramps "
-    "quasi-static: for information only where blades may touch their stops in wind. "
+    "quasi-static: for information only where blades may touch their stops in wind; there marched "
+    "numbers are judged. "
 )
 _SOURCE = (
     "blade-element momentum theory with Prandtl's loss factor, annulus by annulus after Glauert; "
@@ -137,7 +138,7 @@ ROTOR = (
         "high",
         "Where the blade rests on its droop stop through the whole turn: the largest moment "
         "on the stop. Zero where it is clear. Contact in part of a turn is an impact, which a "
-        "periodic solution does not predict.",
+        "periodic solution does not predict: see droop_stop_peak_moment.",
         "none: bounded by the rest moment, which has one",
     ),
     _rotor(

@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+from types import MappingProxyType
 from typing import TYPE_CHECKING
 
 import numpy as np
 
 from planner.model.results import Labels, Status
+from planner.predict.kept import NOTHING_KEPT
+from planner.predict.progress import silent
 from planner.predict.register import REGISTER
 from planner.predict.rows import Rows
 from planner.predict.study import NotAssessedError
@@ -20,11 +24,13 @@ from planner.predict.study_stops import STOPS
 from planner.predict.study_tip import TIP
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Mapping
+    from collections.abc import Mapping
 
     from planner.model.plan import Plan, Segment
     from planner.model.results import Prediction, Requests
-    from planner.predict.study import Study
+    from planner.predict.kept import Store
+    from planner.predict.progress import Progress
+    from planner.predict.study import Inputs, Study
 
 STUDIES: tuple[Study, ...] = (AIR, WIND, INERTIA, SCHEDULE, TIP, STOPS, HOLDS, MODES, PASSAGES)
 """In an order in which each finds what it needs."""
@@ -34,20 +40,33 @@ def predict(
     plan: Plan,
     segments: tuple[Segment, ...],
     requests: Requests,
-    progress: Callable[[str], None] = lambda _: None,
+    progress: Progress = silent,
+    store: Store = NOTHING_KEPT,
+    versions: Mapping[str, str] = MappingProxyType({}),
 ) -> Mapping[str, Prediction]:
     """Predict every quantity of the register.
 
     A method that refuses its input leaves all quantities of its study OUTSIDE VALIDITY with the
     method's own words. A study that builds on something not assessed takes over its status: a
     failed convergence stays one, a missing value of the rule book stays one. Nothing is left out.
+
+    Args:
+        plan: the model.
+        segments: its schedule walked once.
+        requests: what the rules need computed.
+        progress: told which study is in work.
+        store: where slow studies keep what they found. A refusal is never kept.
+        versions: of the program and its libraries; part of the key of what is kept.
     """
     found: dict[str, Prediction] = {}
+    keys: dict[str, str] = {}
     for study in STUDIES:
         progress(study.id)
+        inputs = replace(study.inputs(plan, segments, requests, found), progress=progress)
+        if store is not NOTHING_KEPT:
+            keys[study.id] = study.key(inputs, versions, keys)
         try:
-            inputs = study.inputs(plan, segments, requests, found)
-            found |= study.run(inputs)
+            found |= _kept_or_run(study, inputs, store, keys)
         except NotAssessedError as refusal:
             found |= _refused(study, refusal.status, str(refusal))
         except np.linalg.LinAlgError as refusal:
@@ -60,6 +79,30 @@ def predict(
                 quantity.id, quantity.study, Status.NOT_COMPUTED, "no study computed it"
             )
     return {quantity: found[quantity] for quantity in REGISTER}
+
+
+def _kept_or_run(
+    study: Study, inputs: Inputs, store: Store, keys: Mapping[str, str]
+) -> Mapping[str, Prediction]:
+    """Take a kept result where it is whole, else run the study and keep what it found."""
+    if not study.kept or study.id not in keys:
+        return study.run(inputs)
+    before = store.get(keys[study.id])
+    if before is not None and _is_whole(study, before):
+        return before
+    result = study.run(inputs)
+    if _is_whole(study, result):
+        store.put(keys[study.id], result)
+    return result
+
+
+def _is_whole(study: Study, predictions: Mapping[str, Prediction]) -> bool:
+    """Whether predictions are this study's and all that the register expects of it."""
+    expected = {quantity.id for quantity in REGISTER.values() if quantity.study == study.id}
+    return predictions.keys() == expected and all(
+        found.quantity == quantity and found.study == study.id
+        for quantity, found in predictions.items()
+    )
 
 
 def _refused(study: Study, status: Status, words: str) -> dict[str, Prediction]:

@@ -5,13 +5,17 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
+from planner.model.canonical import digest_of_plain
 from planner.model.results import Status
+from planner.predict.kept import exact
+from planner.predict.progress import silent
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
 
     from planner.model.plan import Plan, Segment
     from planner.model.results import Prediction, Requests
+    from planner.predict.progress import Progress
 
 PATHS = frozenset(
     {
@@ -19,6 +23,7 @@ PATHS = frozenset(
         "segments",
         "keep_outs",
         "shutdown",
+        "abort",
         "rotor",
         "rotor.n_blades",
         "rotor.blade",
@@ -35,6 +40,9 @@ PATHS = frozenset(
         "stand.full_speed_rad_s",
         "stand.speed_gauge_error_rad_s",
         "stand.modes",
+        "stand.obstructions",
+        "stand.brake_below_rad_s",
+        "stand.brake_torque_N_m",
     }
 )
 """Model paths that studies may take."""
@@ -59,6 +67,8 @@ class Inputs:
     values: Mapping[str, Any]
     requests: Requests
     prior: Mapping[str, Prediction]
+    progress: Progress = silent
+    """Told by a long study what it does and how far it is."""
 
     def __getitem__(self, path: str) -> Any:  # noqa: ANN401 - model parts of many types
         """Look up a model path.
@@ -109,6 +119,8 @@ class Study:
     takes: tuple[str, ...]
     needs: tuple[str, ...]
     run: Callable[[Inputs], Mapping[str, Prediction]]
+    kept: bool = False
+    """A slow study: what it found is kept, and used again while its key is the same."""
 
     def inputs(
         self,
@@ -121,6 +133,27 @@ class Study:
         values = {path: _resolve(plan, segments, path) for path in self.takes}
         needed = {key: p for key, p in prior.items() if p.study in self.needs}
         return Inputs(values, requests, needed)
+
+    def key(self, inputs: Inputs, versions: Mapping[str, str], keys: Mapping[str, str]) -> str:
+        """Digest of all that the result depends on.
+
+        Args:
+            inputs: what the study sees; of the predictions of other studies, their keys count.
+            versions: of the program and of the libraries that the numbers depend on.
+            keys: study id to key, at least of the studies that this one needs.
+
+        Raises:
+            KeyError: a study that is needed has no key.
+        """
+        parts = {
+            "study": self.id,
+            "version": self.version,
+            "versions": versions,
+            "takes": inputs.values,
+            "requests": inputs.requests,
+            "needs": {need: keys[need] for need in self.needs},
+        }
+        return digest_of_plain(exact(parts))
 
 
 def _resolve(plan: Plan, segments: tuple[Segment, ...], path: str) -> Any:  # noqa: ANN401

@@ -1,17 +1,18 @@
 """Building the record of a plan, and reading one back.
 
-The layout is an integer. Layout 1 is a JSON object with the keys below; numbers are SI, angles
-radians, NaN is null. A reader refuses a layout that it does not know.
+The layout is an integer. Layout 2 is a JSON object with the keys below; numbers are SI, angles
+radians, NaN is null. A reader refuses a layout that it does not know. Layout 1, which had no
+aborts, is read as layout 2: its rows have no ``state``, which is then empty.
 
-    layout            1
+    layout            2
     made_by           versions of whirlcard, Python, numpy and scipy
     files             [{name, sha256}] of every file that was read; files_digest over them all
     meaning_digest    digest of the plan in SI: unchanged by a comment or another unit
     plan              the model
     segments          the schedule walked once
     vocabulary        the register entries
-    predictions       quantity -> {study, rows: [{segment, mode, harmonic, band, value,
-                      low, high, status, reason, speed_rad_s, hand}]}
+    predictions       quantity -> {study, rows: [{segment, mode, harmonic, band, state, value,
+                      low, high, status, reason, speed_rad_s, hand}]}; state: cause of an abort
     references        reference id -> value at 100 % rpm
     series            run, fan and flap charts
     findings, coverage, verdict, segment_verdicts
@@ -32,6 +33,8 @@ from planner.judge.references import reference_table
 from planner.judge.requests import requests
 from planner.model.canonical import digest_of_plain, plain
 from planner.model.plan import segments
+from planner.predict.kept import NOTHING_KEPT
+from planner.predict.progress import silent
 from planner.predict.register import REGISTER
 from planner.predict.run import predict
 from planner.predict.series import series
@@ -41,8 +44,10 @@ if TYPE_CHECKING:
 
     from planner.model.plan import Plan
     from planner.model.results import Prediction
+    from planner.predict.kept import Store
+    from planner.predict.progress import Progress
 
-LAYOUT = 1
+LAYOUT = 2
 REQUIRED = (
     "layout",
     "made_by",
@@ -70,7 +75,8 @@ class RecordError(ValueError):
 def build(
     plan: Plan,
     files: Sequence[tuple[str, str]],
-    progress: Callable[[str], None] = lambda _: None,
+    progress: Progress = silent,
+    store: Store = NOTHING_KEPT,
 ) -> dict[str, Any]:
     """Predict and judge a plan and put everything into one record.
 
@@ -78,10 +84,11 @@ def build(
         plan: the model.
         files: (name, sha256) of every file that was read.
         progress: called with the name of each part as it starts.
+        store: where slow studies keep what they found; the record is the same without.
     """
     walk = segments(plan)
     wanted = requests(plan.rule_book)
-    predictions = predict(plan, walk, wanted, progress)
+    predictions = predict(plan, walk, wanted, progress, store, versions())
     progress("judging")
     judgement = judge(plan, walk, REGISTER, predictions)
     meaning = plain(plan)
@@ -124,6 +131,7 @@ def rows_of(prediction: Prediction) -> dict[str, Any]:
             "mode": label.mode,
             "harmonic": label.harmonic,
             "band": label.band,
+            "state": label.state,
             "value": value,
             "low": low,
             "high": high,
@@ -154,7 +162,10 @@ def to_bytes(record: Mapping[str, Any], *, ascii_only: bool = False) -> bytes:
 
 
 def from_bytes(data: bytes, name: str) -> dict[str, Any]:
-    """Read a record back.
+    """Read a record back, one of an older layout in the form of today's.
+
+    The digests are checked before an older layout is brought forward; its content digest is then
+    that of the new form.
 
     Raises:
         RecordError: not JSON, not a record, another layout, or a plan that was edited by hand.
@@ -167,15 +178,31 @@ def from_bytes(data: bytes, name: str) -> dict[str, Any]:
     if not isinstance(record, dict) or "layout" not in record:
         msg = f"{name}: expected a whirlcard record, found JSON without a layout number"
         raise RecordError(msg)
-    if record["layout"] != LAYOUT:
-        msg = f"{name}: expected record layout {LAYOUT}, found {record['layout']!r}"
+    layout = record["layout"]
+    if not isinstance(layout, int) or layout not in {LAYOUT, *_FORWARD}:
+        msg = f"{name}: expected record layout {LAYOUT}, found {layout!r}"
         raise RecordError(msg)
     missing = [key for key in REQUIRED if key not in record]
     if missing:
         msg = f"{name}: expected a whole record, found none of: {', '.join(missing)}"
         raise RecordError(msg)
     _check_digests(record, name)
-    return record
+    return _FORWARD[layout](record) if layout in _FORWARD else record
+
+
+def _from_layout_1(record: dict[str, Any]) -> dict[str, Any]:
+    """Give every row an empty ``state``: layout 1 knew no aborts."""
+    predictions = {
+        quantity: {**found, "rows": [{**row, "state": ""} for row in found["rows"]]}
+        for quantity, found in record["predictions"].items()
+    }
+    kept = {key: value for key, value in record.items() if key != "content_digest"}
+    forward = {**kept, "layout": 2, "predictions": predictions}
+    return {**forward, "content_digest": digest_of_plain(forward)}
+
+
+_FORWARD: Mapping[int, Callable[[dict[str, Any]], dict[str, Any]]] = {1: _from_layout_1}
+"""How a record of an older layout becomes one of today's."""
 
 
 def _check_digests(record: Mapping[str, Any], name: str) -> None:

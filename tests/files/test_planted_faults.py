@@ -168,7 +168,8 @@ PLANTED = {
     "ramp of no duration": (PLAN, 'ramp_time = "30 s"', 'ramp_time = ¦"0 s"',
         "block.step.ramp_time: expected a ramp longer than 0 s, because rpm or pitch changes"),
     "both ramps": (PLAN, 'ramp_time = "30 s"', 'ramp_time = "30 s"\n¦ramp_rate = "1 rpm/s"',
-        "block.step.ramp_rate: expected exactly one of ramp_time and ramp_rate, found both"),
+        'block.step.ramp_rate: expected exactly one of ramp_time, ramp_rate and ramp = "drive",'
+        " found ramp_time and ramp_rate; keep one"),
     "no ramp": (PLAN, '[[block.step]]\nrpm = "50 % rpm"\ncollective = "1 deg"\ncyclic = "trim"\n'
         'ramp_time = "30 s"', '[[block.¦step]]\nrpm = "50 % rpm"\ncollective = "1 deg"\n'
         'cyclic = "trim"',

@@ -143,12 +143,9 @@ def test_file_names_have_examples_of_their_own(kind, table, key, example):
 @pytest.mark.parametrize(
     ("kind", "table", "key"),
     [
-        ("rotor", "DroopStopTable", "stiffness"),
-        ("rotor", "UpStopTable", "damping"),
         ("rotor", "Station", "cg_offset"),
         ("rotor", "Station", "ac_offset"),
         ("stand", "DriveTable", "gear_ratio"),
-        ("stand", "", "obstruction"),
         ("stand", "", "position"),
     ],
 )

@@ -11,6 +11,13 @@ from planner.model.rules import HAZARD_CLASSES, Limit, SpeedRange
 from planner.units import to_si
 
 GO, OPEN, NO_GO = Verdict.GO, Verdict.NOT_ASSESSED, Verdict.NO_GO
+OF_MODES = (
+    "harmonic_spacing",
+    "mode_damping",
+    "mode_frequency",
+    "crossing_cover",
+    "band_amplification",
+)
 PARTS = HAZARD_CLASSES["drive and overspeed"][1]
 
 
@@ -28,7 +35,7 @@ def add_stand_mode(bench, name: str) -> None:
     """Give the stand another mode, with the numbers of the first."""
     modes = bench.plan.stand.modes
     bench.change(stand=replace(bench.plan.stand, modes=(*modes, replace(modes[0], name=name))))
-    for quantity in ("harmonic_spacing", "mode_damping", "mode_frequency", "crossing_cover"):
+    for quantity in OF_MODES:
         old = bench.predictions[quantity]
         at = bench.rows(quantity, mode="stand sway")
         bench.predictions[quantity] = replace(
@@ -215,13 +222,21 @@ def test_14_rule_that_sets_all_aside_did_not_look(bench):
     ("rule", "hazard_class", "where"),
     [
         ("up-clearance-angle", "stops", "hold"),
-        ("stand-thrust", "loads", "stop"),
+        ("stand-thrust", "loads", "hold"),
+        ("thrust-peak", "loads", "stop"),
+        ("hub-moment-peak", "loads", "ramp"),
         ("keep-out-rate", "resonance", "ramp"),
         ("torsion-spacing", "resonance", "hold"),
         ("root-force", "loads", "ramp"),
         ("droop-clearance-angle", "stops", "hold"),
         ("droop-rest-moment", "stops", "run"),
-        ("droop-stop-moment", "stops", "stop"),
+        ("droop-stop-moment", "stops", "hold"),
+        ("droop-stop-peak", "stops", "ramp"),
+        ("up-stop-peak", "stops", "stop"),
+        ("no-contact-at-speed", "stops", "ramp"),
+        ("lag-travel", "stops", "stop"),
+        ("clearance-share", "clearance", "hold"),
+        ("clearance-share", "clearance", "stop"),
         ("keep-out-cover", "resonance", "stop"),
         ("keep-out-distance", "resonance", "hold"),
         ("card-speed-drive", "drive and overspeed", "run"),
@@ -230,6 +245,15 @@ def test_14_rule_that_sets_all_aside_did_not_look(bench):
         ("drive-torque", "drive and overspeed", "hold"),
         ("drive-torque", "drive and overspeed", "ramp"),
         ("drive-power", "drive and overspeed", "stop"),
+        ("drive-reserve", "drive and overspeed", "ramp"),
+        ("droop-stop-peak", "aborts", "abort"),
+        ("no-contact-at-speed", "aborts", "abort"),
+        ("lag-travel", "aborts", "abort"),
+        ("clearance-share", "aborts", "abort"),
+        ("hub-moment-peak", "aborts", "abort"),
+        ("time-to-rest", "aborts", "abort"),
+        ("keep-out-cycles", "aborts", "abort"),
+        ("keep-out-amplification", "aborts", "abort"),
     ],
 )
 def test_15_book_that_lacks_a_kind_of_rule_is_not_assessed(bench, rule, hazard_class, where):
@@ -316,6 +340,9 @@ def test_15_drive_asks_for_torque_and_for_power(bench):
 @pytest.mark.parametrize("hazard_class", ["clearance", "people", "aborts"])
 def test_15_rule_about_something_else_closes_no_class(bench, hazard_class):
     bench.change(documents=())
+    rules = bench.plan.rule_book.rules
+    kept = tuple(r for r in rules if r.hazard_class != hazard_class and "abort" not in r.where)
+    bench.change_book(rules=kept)
     bench.add_rule(
         quantity="thrust",
         sense="at most",

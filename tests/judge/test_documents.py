@@ -19,13 +19,14 @@ def run_verdict(bench) -> Verdict:
 
 
 def open_thrust(bench, status: Status = Status.NOT_COMPUTED) -> None:
-    bench.flag("thrust", bench.rows("thrust", segment="1.3r"), status, "ramps are not marched")
+    rows = bench.rows("thrust_peak", segment="1.3r", state="")
+    bench.flag("thrust_peak", rows, status, "too many blades")
 
 
 def test_17_document_closes_what_was_not_computed(bench, paper):
     open_thrust(bench)
     bench.change(documents=(*bench.plan.documents, paper("loads", "ramp")))
-    finding = bench.finding("stand-thrust")
+    finding = bench.finding("thrust-peak")
     assert (finding.verdict, finding.closed_by, finding.not_assessed) == (GO, "DOC loads", 1)
     assert "1 not assessed but closed by document" in finding.reason
     assert "DOC loads" in bench.covered("loads", "ramp").closed_by
@@ -47,7 +48,7 @@ def test_17_document_closes_what_was_not_computed(bench, paper):
 def test_17_document_that_does_not_reach_does_not_close(bench, paper, changes, words):
     open_thrust(bench)
     bench.change(documents=(*bench.plan.documents, replace(paper("loads", "ramp"), **changes)))
-    finding = bench.finding("stand-thrust")
+    finding = bench.finding("thrust-peak")
     assert (finding.verdict, finding.closed_by) == (OPEN, "")
     assert words in finding.reason
     assert run_verdict(bench) is OPEN
@@ -56,10 +57,10 @@ def test_17_document_that_does_not_reach_does_not_close(bench, paper, changes, w
 def test_17_document_does_not_close_what_did_not_converge(bench, paper):
     open_thrust(bench, Status.NOT_CONVERGED)
     bench.change(documents=(*bench.plan.documents, paper("loads", "ramp")))
-    assert bench.finding("stand-thrust").verdict is OPEN
+    assert bench.finding("thrust-peak").verdict is OPEN
     covered = bench.covered("loads", "ramp")
     assert (covered.verdict, covered.closed_by) == (OPEN, "")
-    assert covered.reason.startswith("stand-thrust left 1.3r not assessed: not converged")
+    assert covered.reason.startswith("thrust-peak left 1.3r not assessed: not converged")
 
 
 def test_17_document_does_not_close_a_class_with_a_rule_that_matches_nothing(bench, paper):
@@ -71,7 +72,7 @@ def test_17_document_does_not_close_a_class_with_a_rule_that_matches_nothing(ben
 
 
 def test_17_document_does_not_close_an_exceeded_limit(bench, paper):
-    bench.put("thrust", bench.rows("thrust", segment="1.3r"), high=1e6)
+    bench.put("thrust_peak", bench.rows("thrust_peak", segment="1.3r", state=""), high=1e6)
     bench.change(documents=(*bench.plan.documents, paper("loads", "ramp")))
     assert run_verdict(bench) is NO_GO
     assert bench.covered("loads", "ramp").verdict is NO_GO
@@ -79,8 +80,8 @@ def test_17_document_does_not_close_an_exceeded_limit(bench, paper):
 
 def test_17_document_does_not_close_a_missing_limit_or_a_gap(bench, paper):
     bench.change(documents=(*bench.plan.documents, paper("loads", "hold", "ramp", "stop", "run")))
-    bench.drop("thrust", bench.rows("thrust", segment="1.3r"))
-    assert bench.finding("stand-thrust").verdict is OPEN
+    bench.drop("thrust_peak", bench.rows("thrust_peak", segment="1.3r", state=""))
+    assert bench.finding("thrust-peak").verdict is OPEN
     bench.change_rule("hub-moment", limit=None)
     assert bench.finding("hub-moment").verdict is OPEN
 
@@ -96,10 +97,34 @@ def test_17_document_does_not_close_a_missing_limit_or_a_gap(bench, paper):
     ],
 )
 def test_17_whole_class_is_closed_only_by_a_document_that_reaches(bench, paper, changes, closes):
-    papers = [d for d in bench.plan.documents if d.hazard_class != "aborts"]
-    bench.change(documents=(*papers, replace(paper("aborts", "abort"), **changes)))
+    bench.change_book(rules=without_aborts(bench))
+    bench.change(documents=(*bench.plan.documents, replace(paper("aborts", "abort"), **changes)))
     assert (run_verdict(bench) is GO) is closes
     assert (bench.covered("aborts", "abort").closed_by == "DOC aborts") is closes
+
+
+def without_aborts(bench):
+    """The book with rules that leave aborts alone."""
+    kept = (replace(r, where=tuple(w for w in r.where if w != "abort")) for r in bench.rules)
+    return tuple(rule for rule in kept if rule.where)
+
+
+def test_17_document_on_aborts_stands_in_whatever_the_class_of_the_rule(bench, paper):
+    rows = bench.rows("droop_stop_peak_moment", segment="1.3h", state="brake lost")
+    bench.flag("droop_stop_peak_moment", rows, Status.NOT_COMPUTED, "not marched")
+    papers = bench.plan.documents
+    for hazard_class, where in (("stops", ("ramp", "stop", "abort")), ("aborts", ("run",))):
+        bench.change(documents=(*papers, paper(hazard_class, *where)))
+        finding = bench.finding("droop-stop-peak")
+        assert (finding.verdict, finding.closed_by) == (OPEN, "")
+        assert finding.where == "abort from 1.3h, brake lost"
+        assert run_verdict(bench) is OPEN
+    bench.change(documents=(*papers, paper("aborts", "abort")))
+    assert bench.finding("droop-stop-peak").closed_by == "DOC aborts"
+    assert "DOC aborts" in bench.covered("aborts", "abort").closed_by
+    assert run_verdict(bench) is GO
+    bench.flag("droop_stop_peak_moment", rows, Status.NOT_CONVERGED, "stop not resolved")
+    assert bench.finding("droop-stop-peak").verdict is OPEN
 
 
 def test_17_number_of_the_run_is_closed_by_a_document_for_the_run(bench, paper):
@@ -183,9 +208,9 @@ def test_17_wind_at_the_hub_counts_where_it_is_stronger(bench, paper):
     open_thrust(bench)
     bench.change(documents=(*bench.plan.documents, paper("loads", "ramp")))
     bench.put("wind_at_hub", [0], value=12.0, low=0.0, high=15.0)
-    assert bench.finding("stand-thrust").verdict is GO
+    assert bench.finding("thrust-peak").verdict is GO
     bench.put("wind_at_hub", [0], high=15.1)
-    finding = bench.finding("stand-thrust")
+    finding = bench.finding("thrust-peak")
     assert finding.verdict is OPEN
     assert "gust with anemometer error is 15.1 m/s at the anemometer or the hub" in finding.reason
     people = bench.covered("people", "run")
@@ -198,7 +223,7 @@ def test_17_weaker_wind_at_the_hub_does_not_lower_the_anemometers(bench, paper):
     weak = replace(paper("loads", "ramp"), wind_limit_m_s=9.4)
     bench.change(documents=(*bench.plan.documents, weak))
     bench.put("wind_at_hub", [0], value=1.0, low=0.0, high=2.0)
-    assert "is 9.5 m/s at the anemometer" in bench.finding("stand-thrust").reason
+    assert "is 9.5 m/s at the anemometer" in bench.finding("thrust-peak").reason
 
 
 @pytest.mark.parametrize("number", [math.nan, math.inf])
@@ -240,7 +265,7 @@ def test_17_document_dated_after_the_issue_does_not_close(bench, paper, date, is
     bench.change(issued=issued)
     papers = tuple(replace(d, date="2025-01-01") for d in bench.plan.documents)
     bench.change(documents=(*papers, replace(paper("loads", "ramp"), date=date)))
-    finding = bench.finding("stand-thrust")
+    finding = bench.finding("thrust-peak")
     assert (finding.verdict is GO) is closes
     assert (run_verdict(bench) is GO) is closes
     if date.strip() and not closes:

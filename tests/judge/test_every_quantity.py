@@ -21,6 +21,8 @@ def generous_rule(quantity):
     where: tuple[Where, ...] = ("run",)
     if "segment" in quantity.axes:
         where = ("hold", "ramp", "stop")
+    if "state" in quantity.axes:
+        where = ("hold", "ramp", "stop", "abort")
     return Rule(
         id="generous", kind="predicted", hazard_class="loads", title="x", why="x", basis="x",
         where=where, quantity=quantity.id, sense="at most", limit=Limit(constant=1e30),

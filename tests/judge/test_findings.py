@@ -7,14 +7,14 @@ from planner.model.results import Status, Verdict
 
 def test_worst_row_fills_the_finding(bench):
     bench.put("thrust", bench.rows("thrust", segment="1.2h"), high=18_000.0)
-    bench.put("thrust", bench.rows("thrust", segment="1.4r"), high=19_000.0)
+    bench.put("thrust", bench.rows("thrust", segment="1.4h"), high=19_000.0)
     finding = bench.finding("stand-thrust")
-    assert (finding.segment, finding.where, finding.verdict) == ("1.4r", "1.4r", Verdict.CAUTION)
+    assert (finding.segment, finding.where, finding.verdict) == ("1.4h", "1.4h", Verdict.CAUTION)
     assert (finding.value, finding.low, finding.high) == (10_000.0, 10_000.0, 19_000.0)
     assert (finding.limit, finding.caution) == (20_000.0, 16_000.0)
     assert finding.margin == pytest.approx(1_000.0)
     assert finding.reason == "19000 N against caution level at most 16000 N"
-    assert (finding.tested, finding.not_assessed) == (9, 0)
+    assert (finding.tested, finding.not_assessed) == (4, 0)
     assert finding.segment_verdicts["1.2h"] == "CAUTION"
     assert finding.segment_verdicts["1.3h"] == "GO"
 

@@ -34,8 +34,11 @@ def test_ids_are_those_of_the_register():
         ("root_force_rating", 100_000.0),
         ("droop_stop_moment_rating", 600.0),
         ("up_stop_moment_rating", 900.0),
+        ("lag_stop_moment_rating", 500.0),
         ("flap_travel", 23.0 * DEG),
+        ("lag_travel", 7.0 * DEG),
         ("cyclic_authority", 8.0 * DEG),
+        ("blade_radius", 5.0),
     ],
 )
 def test_value_is_found(bench, reference, value):
@@ -48,7 +51,8 @@ def test_value_is_found(bench, reference, value):
 def test_hingeless_hub_has_a_root_rating_and_no_stops(hingeless_bench):
     case = hingeless_bench.case
     assert resolve("root_moment_rating", case, AT_20) == Range(1_000.0, 1_000.0)
-    for reference in ("droop_stop_moment_rating", "up_stop_moment_rating", "flap_travel"):
+    absent = ("droop_stop_moment_rating", "up_stop_moment_rating", "flap_travel", "lag_travel")
+    for reference in absent:
         found = resolve(reference, case, AT_20)
         assert isinstance(found, Missing)
         assert "the hub has no" in found.reason

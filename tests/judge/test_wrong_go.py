@@ -56,7 +56,8 @@ def test_03_value_outside_its_own_low_and_high_still_counts(bench):
 def test_03_downward_thrust_beyond_the_rating_is_no_go(bench):
     ratings = replace(bench.plan.stand.ratings, thrust_N=4_000.0)
     bench.change(stand=replace(bench.plan.stand, ratings=ratings))
-    bench.put("thrust", bench.rows("thrust"), value=1_000.0, low=900.0, high=1_100.0)
+    for quantity in ("thrust", "thrust_peak"):
+        bench.put(quantity, bench.rows(quantity), value=1_000.0, low=900.0, high=1_100.0)
     assert run_verdict(bench) is GO
     rows = bench.rows("thrust", segment="1.3h")
     bench.put("thrust", rows, value=-22_000.0, low=-23_000.0, high=-21_000.0)
@@ -267,8 +268,8 @@ def test_09_table_that_does_not_reach_is_not_assessed(bench):
     "rows", [((0.0, 2e4), (20.0, 9e3), (50.0, 2e4)), ((0.0, 5e3), (50.0, 2e4))]
 )
 def test_09_strictest_value_over_a_ramp_counts(bench, rows):
-    bench.change_rule("stand-thrust", caution=None, limit=Limit(table=rows))
-    assert Verdict(bench.finding("stand-thrust").segment_verdicts["stop"]) is NO_GO
+    bench.change_rule("thrust-peak", caution=None, where=("stop",), limit=Limit(table=rows))
+    assert Verdict(bench.finding("thrust-peak").segment_verdicts["stop"]) is NO_GO
 
 
 def test_09_table_has_to_reach_only_where_the_rule_applies(bench):
@@ -445,8 +446,8 @@ def test_19_hand_check_that_disagrees_is_a_finding(bench):
 
 
 def test_20_class_that_is_open_marks_every_segment_of_its_kind(bench):
-    papers = tuple(d for d in bench.plan.documents if d.hazard_class != "clearance")
-    bench.change(documents=papers)
+    kept = tuple(r for r in bench.plan.rule_book.rules if r.hazard_class != "clearance")
+    bench.change_book(rules=kept)
     verdicts = bench.judge().segment_verdicts
     assert set(verdicts.values()) == {OPEN}
 
@@ -505,6 +506,7 @@ def test_rule_from_the_stop_free_speed_covers_what_reaches_it(bench):
     rows = bench.rows("stop_free_speed")
     bench.put("stop_free_speed", rows, value=25.0, low=25.0, high=25.0)
     start = SpeedRange(from_rad_s=1.0, from_reference="stop_free_speed")
-    bench.change_rule("droop-clearance-angle", speed_range=start)
+    where = ("hold", "ramp", "stop")
+    bench.change_rule("droop-clearance-angle", speed_range=start, where=where)
     judged = bench.finding("droop-clearance-angle").segment_verdicts
     assert set(judged) == {"1.3r", "1.3h", "1.4r", "1.4h", "stop"}

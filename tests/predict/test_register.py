@@ -36,7 +36,7 @@ def test_every_quantity_is_filled_by_its_study(predicted, name, quantity):
     assert found.quantity == quantity.id
     assert all(reason != "no study computed it" for reason in found.reasons)
     for label in found.labels:
-        for axis in ("segment", "mode", "harmonic", "band"):
+        for axis in ("segment", "mode", "harmonic", "band", "state"):
             if getattr(label, axis):
                 assert axis in quantity.axes
 

@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+import json
+
 import pytest
 
 from planner.paper.card import card_pdf
-from planner.record.layout import from_bytes
-from tests.record.make_golden import GOLDEN, golden_record
+from planner.record.layout import LAYOUT, RecordError, from_bytes, to_bytes
+from tests.record.make_golden import GOLDEN, HERE, golden_record
 
 TOLERANCE = 1e-6
 
@@ -16,8 +18,31 @@ def golden():
     return from_bytes(GOLDEN.read_bytes(), GOLDEN.name)
 
 
-def test_golden_record_prints(golden):
-    assert card_pdf(golden).startswith(b"%PDF")
+@pytest.mark.parametrize("layout", range(1, LAYOUT + 1))
+def test_golden_record_of_every_layout_prints(layout):
+    path = HERE / f"golden_layout_{layout}.json"
+    record = from_bytes(path.read_bytes(), path.name)
+    assert record["layout"] == LAYOUT
+    assert card_pdf(record).startswith(b"%PDF")
+
+
+def test_layout_1_is_brought_forward_with_rows_of_no_abort():
+    data = (HERE / "golden_layout_1.json").read_bytes()
+    old, record = json.loads(data), from_bytes(data, "x.json")
+    for quantity, found in record["predictions"].items():
+        was = old["predictions"][quantity]["rows"]
+        assert found["rows"] == [{**row, "state": ""} for row in was]
+    assert {k: v for k, v in record.items() if old.get(k) != v}.keys() == {
+        "layout", "predictions", "content_digest",
+    }  # fmt: skip
+    assert from_bytes(to_bytes(record), "x.json") == record
+
+
+def test_layout_1_that_was_edited_is_noticed():
+    record = json.loads((HERE / "golden_layout_1.json").read_bytes())
+    record["verdict"] = "GO"
+    with pytest.raises(RecordError, match=r"x.json: .*content digest"):
+        from_bytes(json.dumps(record).encode(), "x.json")
 
 
 def test_todays_record_has_the_same_shape_and_numbers(golden):

@@ -1,0 +1,341 @@
+"""Register entries for what is marched: ramps, the stop, and aborts from anywhere."""
+
+from __future__ import annotations
+
+from planner.model.results import Quantity
+
+_METHOD = (
+    "Marched through the ramp, the stop or the abort, blade by blade: flap about the hinge with "
+    "elastic flap modes and the shape of a blade that lies on its stop, stops that only push, and "
+    "inflow that takes time to build up. Cases: calm, the mean wind, a gust of 1-cosine form with "
+    "start and length searched for the worst, turbulence where the plan states it, parked or "
+    "entry azimuths, and both ends of the air load allowance; low and high are the extremes over "
+    "all cases. Aborts: for each cause, from each hold and from the worst moment of each ramp. "
+)
+_VALIDITY = (
+    "blades straight in plan, elastic bending linear, no motion in twist, section tables over the "
+    "full circle, quasi-steady section loads, one wind over the whole disc at a time; a march "
+    "that does not resolve its stop's stiffness is not assessed"
+)
+_SOURCE = (
+    "equations of the hinged beam derived; inflow with apparent mass: Carpenter & Fridovich, NACA "
+    "TN 3044, 1953 (summary read); moment of a stop: Hunt & Crossley, J. Appl. Mech. 42, 1975 "
+    "(from memory); blades on droop stops: Keller & Smith, J. Aircraft 36 (1999) 443-450 (from "
+    "memory)"
+)
+_ACCURACY = (
+    "Integration held to 1 % of the lowest tip, 4 % of the stop moment and 2 ms of the time of "
+    "contact of a converged adaptive integration of the same equations; not compared with "
+    "measured engagements."
+)
+_STOP_HAND = (
+    "none for each ramp: the weight moment g S of a resting blade is its floor, and a rigid drop "
+    "at closing rate ω₀ peaks at g S + √((g S)² + k I ω₀²) (tested)"
+)
+_FLAP_HAND = (
+    "the periodic solution in steady wind where the ramp stays above the speed at which the "
+    "stops are left behind; gusts pass on top of it, hence the wide band"
+)
+_LEFT_BEHIND = "the speed from which the stops are left behind (stop_free_speed)"
+
+
+def _march(  # noqa: PLR0913, PLR0917 - one line of a table
+    quantity_id: str,
+    name: str,
+    unit: str,
+    symbol: str,
+    danger: str,
+    detail: str,
+    hand_check: str,
+    hand_band: float = 0.0,
+    hand_floor: float = 0.0,
+) -> Quantity:
+    return Quantity(
+        id=quantity_id,
+        name=name,
+        unit=unit,
+        symbol=symbol,
+        axes=("segment", "state"),
+        danger=danger,  # type: ignore[arg-type]  # literal checked by a test
+        study="marches",
+        method=_METHOD + detail,
+        validity=_VALIDITY,
+        accuracy=_ACCURACY,
+        source=_SOURCE,
+        hand_check=hand_check,
+        hand_band=hand_band,
+        hand_floor=hand_floor,
+        allowance="air_load",
+    )
+
+
+MARCHED = (
+    _march(
+        "lowest_flap_marched",
+        "Lowest flap angle, marched",
+        "deg",
+        "β min",
+        "low",
+        "Lowest flap angle of any blade at its hinge.",
+        _FLAP_HAND,
+        0.5,
+        0.07,
+    ),
+    _march(
+        "highest_flap_marched",
+        "Highest flap angle, marched",
+        "deg",
+        "β max",
+        "high",
+        "Highest flap angle of any blade at its hinge.",
+        _FLAP_HAND,
+        0.5,
+        0.07,
+    ),
+    _march(
+        "droop_stop_peak_moment",
+        "Peak moment on a droop stop",
+        "N m",
+        "M",
+        "high",
+        "Largest moment of a droop stop on a blade, resting or struck; does not apply to hubs "
+        "without stops, whose root moment is judged.",
+        _STOP_HAND,
+    ),
+    _march(
+        "up_stop_peak_moment",
+        "Peak moment on an up stop",
+        "N m",
+        "M",
+        "high",
+        "Largest moment of an up stop on a blade, zero where none is met; does not apply to hubs "
+        "without stops.",
+        "none: as for the droop stop, without the resting blade",
+    ),
+    _march(
+        "contacts_after_lift_off",
+        "Droop-stop contacts where the stops are left behind",
+        "",
+        "n",
+        "high",
+        "Touches of a droop stop, after the blade has left it for the first time, at rotor speeds "
+        f"at and above {_LEFT_BEHIND}; most of any one blade. Below that speed blades touch their "
+        "stops in every start and stop: there the moment is judged.",
+        "none: a count",
+    ),
+    _march(
+        "contact_highest_speed",
+        "Highest rotor speed of a droop-stop contact",
+        "rpm",
+        "Ω",
+        "high",
+        "Highest rotor speed at which a blade that has left its droop stop touches it, at any "
+        "speed; zero where none does.",
+        "none: compare lift_off_speed_in_wind",
+    ),
+    _march(
+        "contact_longest",
+        "Longest droop-stop contact after lift-off",
+        "s",
+        "t",
+        "high",
+        "Longest time that a blade which has left its droop stop lies on it again before the "
+        "rotor has come down to its own lift-off; zero where none does.",
+        "none: read off the flap chart",
+    ),
+    _march(
+        "contact_closing_speed",
+        "Closing speed at a droop stop",
+        "deg/s",
+        "dβ/dt",
+        "high",
+        "Largest rate at which a blade meets its droop stop; zero where none does.",
+        "none: a rigid blade that falls by Δβ closes at √(2 g S Δβ / I) without air",
+    ),
+    _march(
+        "contact_energy",
+        "Energy of a droop-stop contact",
+        "J",
+        "E",
+        "high",
+        "Kinetic energy of the blade's flap as it meets its droop stop, largest of all touches.",
+        "none of its own: half of I times the closing speed squared for a rigid blade",
+    ),
+    _march(
+        "lowest_tip",
+        "Lowest blade tip",
+        "m",
+        "z min",
+        "low",
+        "Height of the lowest tip from the hub plane, thrust side positive, elastic bending "
+        "included.",
+        "none of its own: tip arm times sine of the lowest flap, less the droop of the blade",
+    ),
+    _march(
+        "highest_tip",
+        "Highest blade tip",
+        "m",
+        "z max",
+        "high",
+        "Height of the highest tip from the hub plane, thrust side positive, elastic bending "
+        "included.",
+        "none of its own: as for the lowest tip",
+    ),
+    _march(
+        "blade_clearance",
+        "Blade to stand and obstructions",
+        "m",
+        "d",
+        "low",
+        "Least distance of any blade, at its lowest by azimuth, from the stand and from each "
+        "stated obstruction; at holds from the periodic solution in the gust.",
+        "none of its own: distances of the stand file less lowest_tip, redone with a pencil",
+    ),
+    _march(
+        "lag_peak",
+        "Lag angle from the middle of its travel",
+        "deg",
+        "ζ",
+        "high",
+        "Largest angle of a blade in lag, either way from the middle between its two lag stops; "
+        "rigid blade on its damper. Does not apply where the hub states no lag stops.",
+        "none: steady lag is torque over the centrifugal stiffness",
+    ),
+    _march(
+        "lag_stop_peak_moment",
+        "Peak moment on a lag stop",
+        "N m",
+        "M",
+        "high",
+        "Largest moment of a lag stop on a blade, zero where none is met. Does not apply where "
+        "the hub states no lag stops.",
+        "none: as for the droop stop, without weight",
+    ),
+    _march(
+        "root_flap_peak_moment",
+        "Peak flap moment at a hingeless blade's root",
+        "N m",
+        "M",
+        "high",
+        "Largest flap moment at the clamped root; does not apply to other hubs, whose stops are "
+        "judged.",
+        "none of its own: the weight moment is its floor, root_flap_moment the periodic answer",
+    ),
+    _march(
+        "hub_moment_peak",
+        "Peak hub moment",
+        "N m",
+        "M",
+        "high",
+        "Largest moment of all blades at the rotor centre: hinge shear, springs, and what the "
+        "stops put into the hub.",
+        "none of its own: hub_moment is the periodic answer where no stop is met",
+    ),
+    _march(
+        "thrust_peak",
+        "Peak thrust",
+        "N",
+        "T",
+        "both",
+        "Largest force along the shaft, either way, blade inertia included.",
+        "none of its own: thrust is the periodic answer",
+    ),
+)
+
+_COAST = (
+    "Balance of rotor speed: torque of the air load from periodic states at the speed and pitch "
+    "of the moment with its allowance, friction, and the brake from the speed where it is "
+    "applied, over the inertia of drive and blades. A powered stop has its stated time. "
+)
+_COAST_VALIDITY = (
+    "torque of periodic states; friction and brake torque as stated; a rotor that the wind keeps "
+    "turning has no time to rest and is not computed"
+)
+_COAST_HAND = (
+    "closed form for torque k Ω² plus friction and brake, t = I/√(k Q₀) (atan(Ω₁ √(k/Q₀)) - "
+    "atan(Ω₂ √(k/Q₀))), k fitted at the highest speed"
+)
+_DERIVED = "balance of moments, derived"
+
+
+def _time(quantity_id: str, name: str, detail: str) -> Quantity:
+    return Quantity(
+        id=quantity_id,
+        name=name,
+        unit="s",
+        symbol="t",
+        axes=("segment", "state"),
+        danger="high",
+        study="speeds",
+        method=_COAST + detail,
+        validity=_COAST_VALIDITY,
+        source=_DERIVED,
+        hand_check=_COAST_HAND,
+        hand_band=0.25,
+        hand_floor=1.0,
+        allowance="torque",
+    )
+
+
+SPEEDS = (
+    Quantity(
+        id="drive_torque_reserve",
+        name="Torque that the drive has left in a ramp",
+        unit="N m",
+        symbol="ΔQ",
+        axes=("segment",),
+        danger="low",
+        study="speeds",
+        method="Torque that the drive can give at the speed of the moment, by its table or else "
+        "its torque and power ratings, less what air load (with its allowance), friction and "
+        "acceleration need; least of the ramp.",
+        validity="speed follows the schedule; does not apply to holds and unpowered stops",
+        source=_DERIVED,
+        hand_check="none of its own: one subtraction, torque has its own",
+        allowance="torque",
+    ),
+    _time("time_to_half", "Time to half of the first speed", "Time to 50 % of the first speed."),
+    _time("time_to_30", "Time to 30 % of the first speed", "Time to 30 % of the first speed."),
+    _time("time_to_10", "Time to 10 % of the first speed", "Time to 10 % of the first speed."),
+    _time("time_to_rest", "Time to rest", "Time to zero speed."),
+    Quantity(
+        id="band_cycles",
+        name="Turns inside a keep-out band without power",
+        unit="",
+        symbol="n",
+        axes=("segment", "band", "state"),
+        danger="high",
+        study="speeds",
+        method=_COAST + "Turns of the rotor between the band's edges; an abort from a ramp counts "
+        "from its highest speed. Does not apply to powered passages, whose rate is judged.",
+        validity=_COAST_VALIDITY,
+        source=_DERIVED,
+        hand_check="I/(4 π k) ln((k Ω₂² + Q₀) / (k Ω₁² + Q₀)) for torque k Ω² plus friction and "
+        "brake Q₀",
+        hand_band=0.25,
+        hand_floor=1.0,
+        allowance="torque",
+    ),
+    Quantity(
+        id="band_amplification",
+        name="Response of a stand mode over its unbalance offset in a passage",
+        unit="",
+        symbol="A",
+        axes=("segment", "mode", "band", "state"),
+        danger="high",
+        study="speeds",
+        method=_COAST + "Peak amplitude of each stand mode, driven once per revolution by an "
+        "unbalance, over the offset of the rotor's mass that it stands for, while the band is "
+        "passed without power; the frequency allowance moves the mode. An abort from a ramp "
+        "counts from its highest speed. Does not apply to powered passages, whose rate is judged.",
+        validity="modes as given, with the rotor fitted; one mode at a time, all mass of the mode "
+        "at the hub",
+        source="oscillator under a sweep, derived; fit of the peak: Cronin, Shock and Vibration "
+        "Bulletin 38, 1968 (from memory)",
+        hand_check="steady peak 1/(2 ζ) times 1 - exp(-2.86 η^-0.445), η the rate over the "
+        "bandwidth squared",
+        hand_band=0.2,
+        hand_floor=0.5,
+        allowance="torque",
+    ),
+)
