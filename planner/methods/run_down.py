@@ -306,6 +306,9 @@ def _shares_moved(case: RunDown, speed: Array, torque: Array, load: Array) -> Ar
         return shares
     shares[:, 0] = _moved(case, time)
     for k in range(speed.shape[1] - 1):
+        if np.all(shares[:, k] == 1.0):
+            shares[:, k:] = 1.0
+            break
         begin = _blend(torque[..., k, None], shares[:, k, None])[:, 0] + load[:, k]
         step, reached = speed[:, k + 1] - speed[:, k], time
         for _ in range(_PASSES):

@@ -7,7 +7,9 @@ from typing import TYPE_CHECKING
 from planner.paper.abort_sheet import abort_boxes, notes_boxes
 from planner.paper.banner import banner_of
 from planner.paper.boxes import Box, Picture, gap, heading, new_page, paragraph
-from planner.paper.closing import as_run_boxes, coast_boxes, reentry_boxes, signature_boxes
+from planner.paper.calls import rule_boxes
+from planner.paper.closing import as_run_boxes, reentry_boxes, signature_boxes
+from planner.paper.coast import coast_boxes
 from planner.paper.fan import fan_boxes
 from planner.paper.flap_chart import flap_drawing
 from planner.paper.front import (
@@ -20,7 +22,7 @@ from planner.paper.limits import finding_boxes, limit_boxes
 from planner.paper.numbers import number_boxes
 from planner.paper.pages import frame_for, paginate, render
 from planner.paper.reading import Json, Reading
-from planner.paper.steps import rule_boxes, step_boxes
+from planner.paper.steps import step_boxes
 
 if TYPE_CHECKING:
     from planner.paper.pages import Frame, Page
@@ -34,7 +36,7 @@ def card_pdf(record: Json, paper: str = "a4") -> bytes:
     The same record gives the same bytes within one set of locked libraries.
 
     Args:
-        record: a record of layout 1, as ``planner.record.layout`` describes it.
+        record: a record of the present layout, as ``planner.record.layout`` describes it.
         paper: ``a4`` or ``letter``.
 
     Raises:
@@ -46,7 +48,7 @@ def card_pdf(record: Json, paper: str = "a4") -> bytes:
 
 
 def card_pages(reading: Reading, frame: Frame) -> list[Page]:
-    """Lay the card out; the ABORT sheet comes last and begins on paper of its own."""
+    """Lay the card out; the ABORT sheet comes last, face and back on paper of its own."""
     pages = paginate(_body(reading, frame), frame.height)
     if len(pages) % 2:
         pages += paginate(notes_boxes(frame), frame.height)
@@ -76,8 +78,8 @@ def _body(reading: Reading, frame: Frame) -> list[Box]:
 
 def _flap_boxes(reading: Reading, frame: Frame) -> list[Box]:
     said = (
-        "Lowest and highest flap over each hold's window and the model allowance. Along ramps "
-        "the answer is quasi-static and for information only."
+        "Lowest and highest flap over each hold's window and the model allowance, from periodic "
+        "states. Along ramps and in the stop the marched flap of the step rows holds."
     )
     drawing = flap_drawing(reading, frame.width, frame.height - 60.0)
     return [

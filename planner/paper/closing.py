@@ -1,117 +1,18 @@
-"""Closing pages of the card: coast-down, re-entry, what was run, cautions and signatures."""
+"""Closing pages of the card: re-entry, what was run, cautions and signatures."""
 
 from __future__ import annotations
 
-from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from planner.paper import texts
 from planner.paper.boxes import Box, Ruled, gap, heading, numbered, paragraph
 from planner.paper.front import INK_HEIGHT
 from planner.paper.ink import BODY
-from planner.paper.steps import band_text, speed_text
 from planner.paper.tables import Cell, Row, Table, plain_row, table_boxes
 
 if TYPE_CHECKING:
     from planner.paper.pages import Frame
-    from planner.paper.reading import Json, Reading
-
-_COAST_SHARES = (1.0, 0.8, 0.6, 0.5, 0.4, 0.3, 0.2, 0.1, 0.05, 0.0)
-_APART = 0.03
-_NEAR_RAD_S = 1e-6
-
-
-def coast_boxes(reading: Reading, frame: Frame) -> list[Box]:
-    """Rotor speed against time on the way to rest, with what happens at each speed."""
-    table = Table(
-        frame.shares(23, 14, 16, 12, 35),
-        ("Rotor speed", "Planned time", "Time found", "Initials", "What this speed means"),
-    )
-    points = _stop_points(reading)
-    start = points[0][1] if points else 0.0
-    events = _speed_events(reading, start)
-    speeds = {speed for speed, _ in events} | {0.0}
-    apart = _APART * start
-    for share in _COAST_SHARES:
-        if all(abs(start * share - speed) > apart for speed in speeds):
-            speeds.add(start * share)
-    rows = [
-        plain_row(
-            speed_text(reading, speed),
-            _time_at(points, speed),
-            "",
-            "",
-            "; ".join(text for at, text in events if abs(at - speed) < _NEAR_RAD_S),
-            least_height=INK_HEIGHT,
-        )
-        for speed in sorted(speeds, reverse=True)
-    ]
-    powered = reading.plan["shutdown"]["powered"]
-    said = "The planned times are the schedule's own, run down at a constant rate" + (
-        " under power." if powered else "; a coast without power was not computed: NOT ASSESSED."
-    )
-    said += " Time runs from the start of the stop row."
-    none = "NOT ASSESSED: the record holds no way to rest. Do not run."
-    return [
-        heading("10  Coast-down", frame.width),
-        paragraph(said, frame.width, keep_next=True),
-        gap(3.0),
-        *(table_boxes(table, rows) if points else [paragraph(none, frame.width, BODY.bold)]),
-    ]
-
-
-def _stop_points(reading: Reading) -> list[tuple[float, float]]:
-    """Time since the start of the stop, and speed, along the charted run."""
-    run = reading.record["series"]["run"]
-    stops = {s["id"] for s in reading.record["segments"] if s["kind"] == "stop"}
-    points = [
-        (time, speed)
-        for time, speed, segment in zip(
-            run["time_s"], run["speed_rad_s"], run["segment"], strict=True
-        )
-        if segment in stops and time is not None and speed is not None
-    ]
-    return [(time - points[0][0], speed) for time, speed in points]
-
-
-def _time_at(points: list[tuple[float, float]], speed: float) -> str:
-    """Time at which the charted line passes a speed."""
-    for (time, above), (later, below) in pairwise(points):
-        if below <= speed <= above and below < above:
-            passed = time + (later - time) * (above - speed) / (above - below)
-            return texts.number(passed, "s", "up")
-    return "not passed"
-
-
-def _speed_events(reading: Reading, start_rad_s: float) -> list[tuple[float, str]]:
-    plan = reading.plan
-    events: list[tuple[float, str]] = []
-    brake = plan["stand"]["brake_below_rad_s"]
-    if brake is not None:
-        events.append((brake, "the stand's brake is allowed only below this"))
-    if plan["shutdown"]["brake"]:
-        events.append((plan["shutdown"]["brake_from_rad_s"], "brake planned from here down"))
-    stop = plan["rotor"]["droop_stop"]
-    swing = stop["retraction"] if stop is not None else None
-    if swing is not None:
-        events += [
-            (swing["release_rad_s"], "droop stops release running up: stop region below"),
-            (swing["reseat_rad_s"], "droop stops re-seat; listen for contact"),
-        ]
-    elif stop is not None:
-        events += _lift_off_event(reading)
-    for band in plan["keep_outs"]:
-        events.append((band["to_rad_s"], f"keep-out {band['id']} {band_text(band)} begins"))
-        events.append((band["from_rad_s"], f"keep-out {band['id']} ends"))
-    return [(speed, text) for speed, text in events if 0.0 <= speed <= start_rad_s]
-
-
-def _lift_off_event(reading: Reading) -> list[tuple[float, str]]:
-    shown = reading.shown("lift_off_speed_in_wind")
-    text = "blades may rest on or touch the droop stops from here down"
-    if shown.is_number:
-        return [(shown.high, text)]
-    return [(0.0, f"speed of droop stop contact: {shown.text} ({shown.why})")]
+    from planner.paper.reading import Reading
 
 
 def reentry_boxes(frame: Frame) -> list[Box]:
@@ -255,32 +156,3 @@ def _cautions(reading: Reading) -> list[str]:
             "by the facility's own approved book before any run.",
         )
     return cautions
-
-
-def abort_settings(plan: Json) -> str:
-    """The settings of an abort in one line, numbers first."""
-    abort, below = plan["abort"], plan["stand"]["brake_below_rad_s"]
-    parts = (
-        f"Collective to {texts.setting(abort['collective_rad'], 'deg')}",
-        f"cyclic {abort['cyclic'] or texts.NOT_ASSESSED}",
-        f"brake only below {texts.limit(below, 'rpm', 'at most')}"
-        if below is not None
-        else "DO NOT BRAKE",
-    )
-    return " — ".join(parts)
-
-
-def abort_facts(plan: Json) -> tuple[tuple[str, str], ...]:
-    """What an abort sets: collective, cyclic, brake."""
-    abort, stand = plan["abort"], plan["stand"]
-    below = stand["brake_below_rad_s"]
-    brake = (
-        f"not above {texts.limit(below, 'rpm', 'at most')}"
-        if below is not None
-        else "DO NOT BRAKE: no brake speed is stated"
-    )
-    return (
-        ("Collective to", texts.setting(abort["collective_rad"], "deg")),
-        ("Cyclic", abort["cyclic"] or "NOT ASSESSED: the plan does not say"),
-        ("Brake", brake),
-    )

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 from planner.model.results import Verdict
 from planner.paper import texts
 from planner.paper.boxes import Box, gap, heading, paragraph
+from planner.paper.gate import NO_GATE, gate_boxes, kept_gate
 from planner.paper.ink import BODY
 from planner.paper.reading import SYMBOLS, Json, Reading, banner_text
 from planner.paper.tables import Cell, Row, Table, plain_row, table_boxes
@@ -232,15 +233,18 @@ def weather_boxes(reading: Reading, frame: Frame) -> list[Box]:
         for name, cap, planned in _weather(reading.plan["site"], caps)
     ]
     basis = book["wind_cap_basis"] or "none stated"
-    said = "No wind gate was computed for this plan; the cap is the rule book's. "
+    gate = kept_gate(reading.record)
+    said = "" if gate else f"{NO_GATE} "
     if None in caps:
         said += "The rule book gives no cap for all of the wind: NOT ASSESSED, do not run. "
-    said += f"Basis of the cap: {basis}. Above the cap at any time: no start; if running, HOLD."
+    above = "the gate, the planned wind or the cap" if gate else "the planned wind or the cap"
+    said += f"Basis of the cap: {basis}. Above {above} at any time: no start; if running, HOLD."
     return [
         heading("4  Weather gate", frame.width),
         paragraph(said, frame.width, keep_next=True),
         gap(3.0),
         *table_boxes(table, rows),
+        *(gate_boxes(reading, gate, frame) if gate else []),
         *_document_limits(reading, frame),
     ]
 

@@ -25,8 +25,8 @@ _WIND_CAP = "wind cap:"
 def limit_boxes(reading: Reading, frame: Frame) -> list[Box]:
     """Every predicted and watched rule with its numbers, its channel and its basis."""
     table = Table(
-        frame.shares(22, 19, 15, 16, 17, 11),
-        ("Rule", "Limit", "Caution", "Channel / watcher", "Worst", "Verdict, margin"),
+        frame.shares(24, 28, 15, 21, 12),
+        ("Rule", "Limit, caution", "Channel / watcher", "Worst", "Verdict, margin"),
         tail_face=REFERENCE,
     )
     rules = reading.rules_of_kind("predicted", "watched")
@@ -47,25 +47,32 @@ def limit_boxes(reading: Reading, frame: Frame) -> list[Box]:
 
 def _limit_row(reading: Reading, rule: Json) -> Row:
     if rule["kind"] == "watched":
-        cells = (rule["abort_text"], rule["caution_text"] or "none")
+        limit, caution = rule["abort_text"], rule["caution_text"]
         worst, margin, word = "watched only", "—", ""
     else:
-        cells = (
-            limit_text(reading, rule, rule["limit"]) + _limit_at_worst(reading, rule),
-            limit_text(reading, rule, rule["caution"]) if rule["caution"] else "none",
-        )
+        limit = limit_text(reading, rule, rule["limit"]) + _limit_at_worst(reading, rule)
+        caution = _caution_text(reading, rule)
         worst, margin, word = _worst(reading, rule)
     return Row(
         (
             Cell(rule["title"], bold=True),
-            Cell(cells[0]),
-            Cell(cells[1]),
+            Cell(f"{limit}\ncaution {caution}" if caution else limit),
             Cell(_watch(reading, rule)),
             Cell(worst),
             Cell(margin, lead=word),
         ),
         tails=(Cell(_basis(rule)),),
     )
+
+
+def _caution_text(reading: Reading, rule: Json) -> str:
+    """Print a caution level, short where it is another share of the same reference."""
+    caution, limit = rule["caution"], rule["limit"]
+    if caution is None:
+        return ""
+    if limit and limit["reference"] and limit["reference"] == caution["reference"]:
+        return texts.setting(caution["share"], "%")
+    return limit_text(reading, rule, caution).removeprefix(f"{rule['sense']} ")
 
 
 def _watch(reading: Reading, rule: Json) -> str:
@@ -206,7 +213,7 @@ def _coverage_boxes(reading: Reading, frame: Frame) -> list[Box]:
     parts: dict[tuple[str, str, str], list[str]] = {}
     for covered in reading.record["coverage"]:
         said = (
-            _closers(reading, covered["closed_by"])
+            closers(reading, covered["closed_by"])
             or f"nothing: {covered.get('reason') or 'no reason recorded'}"
         )
         row = (reading.class_title(covered["hazard_class"]), said, covered["verdict"])
@@ -222,7 +229,7 @@ def _coverage_boxes(reading: Reading, frame: Frame) -> list[Box]:
     ]
 
 
-def _closers(reading: Reading, closed_by: str) -> str:
+def closers(reading: Reading, closed_by: str) -> str:
     """Number of rules judged, then the outside documents by number."""
     parts = [part for part in closed_by.split(", ") if part]
     judged = sum(part in reading.rules for part in parts)

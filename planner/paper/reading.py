@@ -9,7 +9,7 @@ from functools import cached_property
 from typing import Any
 
 from planner.model.results import Status, Verdict
-from planner.model.rules import HAZARD_CLASSES
+from planner.model.rules import ABORTS, HAZARD_CLASSES
 from planner.paper import texts
 
 Json = Mapping[str, Any]
@@ -22,7 +22,12 @@ SYMBOLS = {
 }
 """Printed with the word, so that neither colour nor the word alone carries a verdict."""
 
+ABORT = "abort"
+"""Where a number, a rule or a document is about aborts."""
+
 _ENDS = ("low", "high")
+_WHOLE_RUN = "run"
+_TOLD = {Status.OK.value, Status.NOT_APPLICABLE.value}
 
 _BANNERS = {
     Verdict.GO: "PLAN GO, not clearance to run",
@@ -37,6 +42,21 @@ def _worst_of(row: Json, danger: str) -> float:
     if danger == "both":
         return texts.worst_end(row["low"], row["high"], "at most", danger)[0]
     return float(row[danger if danger in _ENDS else "value"])
+
+
+def covers(rule: Json, part: str) -> bool:
+    """Say whether a rule is about a part of the run."""
+    return part in rule["where"] or _WHOLE_RUN in rule["where"]
+
+
+def _is_missing(rows: Iterable[Json], rule: Json) -> bool:
+    """Say whether any of the numbers that a rule looks at is not there."""
+    return any(
+        row["status"] not in _TOLD
+        for row in rows
+        if not (row["mode"] and rule["mode_family"])
+        or row["mode"].startswith(f"{rule['mode_family']} ")
+    )
 
 
 def verdict_of(word: str) -> Verdict:
@@ -146,20 +166,45 @@ class Reading:
         return words.get(segment_id, Verdict.NOT_ASSESSED.value)
 
     def row(self, quantity: str, segment: str = "", band: str = "") -> Json | None:
-        """The prediction for a place: its own, or the one that stands for the whole study."""
-        own: Json | None = self._rows.get((quantity, segment, band))
+        """The prediction for a place: its own, or the one that stands for the whole study.
+
+        Never that of an abort, which begins at the place but is not what happens there.
+        """
+        own: Json | None = self._rows.get((quantity, segment, band, ""))
         if own is not None:
             return own
-        for key in ((segment, ""), ("", band), ("", "")):
-            found: Json | None = self._rows.get((quantity, *key))
+        return self._standing(quantity, ((segment, "", ""), ("", band, ""), ("", "", "")))
+
+    def abort_row(self, quantity: str, origin: str, cause: str, band: str = "") -> Json | None:
+        """The prediction for an abort from a segment: its own, or one that stands for it."""
+        own: Json | None = self._rows.get((quantity, origin, band, cause))
+        if own is not None:
+            return own
+        causes = [
+            (segment, b, cause) for segment in (origin, "") for b in dict.fromkeys((band, ""))
+        ]
+        return self._standing(quantity, (*causes, ("", band, ""), ("", "", "")))
+
+    def _standing(self, quantity: str, places: Iterable[tuple[str, str, str]]) -> Json | None:
+        """The first row that says for several places why they have no number."""
+        for place in places:
+            found: Json | None = self._rows.get((quantity, *place))
             if found is not None and found["status"] != Status.OK.value:
                 return found
         return None
 
+    def rows_of(self, quantity: str) -> list[Json]:
+        """All rows of a quantity as the record has them."""
+        rows: list[Json] = self.record["predictions"].get(quantity, {"rows": []})["rows"]
+        return rows
+
     def shown(self, quantity: str, segment: str = "", band: str = "") -> Shown:
         """Print a prediction, or the status that stands in its place; never nothing."""
+        return self.shown_row(quantity, self.row(quantity, segment, band))
+
+    def shown_row(self, quantity: str, row: Json | None) -> Shown:
+        """Print one row of a quantity, or the status that stands in its place."""
         entry = self.vocabulary.get(quantity)
-        row = self.row(quantity, segment, band)
         if entry is None or row is None:
             return Shown(texts.NOT_ASSESSED, why=Status.NOT_COMPUTED.value)
         if row["status"] == Status.NOT_APPLICABLE.value:
@@ -183,7 +228,7 @@ class Reading:
 
     def applies(self, quantity: str) -> bool:
         """Say whether the article has such a thing at all."""
-        rows = self.record["predictions"].get(quantity, {"rows": []})["rows"]
+        rows = self.rows_of(quantity)
         return not rows or any(row["status"] != Status.NOT_APPLICABLE.value for row in rows)
 
     def margin(self, segment_id: str, *quantities: str) -> str:
@@ -229,43 +274,44 @@ class Reading:
                 word = finding["segment_verdicts"].get(segment_id)
                 if not finding["closed_by"] or word != Verdict.GO.value:
                     continue
-                if self._is_missing(quantity, segment_id, self.rules[finding["rule"]]):
-                    found |= dict.fromkeys(self._documents_about(finding, segment_id))
+                for part in self._missing_parts(quantity, segment_id, finding):
+                    found |= dict.fromkeys(self._documents_about(finding, part))
         return list(found)
 
-    def _is_missing(self, quantity: str, segment_id: str, rule: Json) -> bool:
-        """Say whether a number that a rule looks at in a stretch is not there."""
-        rows = self.record["predictions"].get(quantity, {"rows": []})["rows"]
-        told = {Status.OK.value, Status.NOT_APPLICABLE.value}
-        here = [row for row in rows if row["segment"] in {segment_id, ""}]
-        return not here or any(
-            row["status"] not in told
-            for row in here
-            if not (row["mode"] and rule["mode_family"])
-            or row["mode"].startswith(f"{rule['mode_family']} ")
-        )
+    def _missing_parts(self, quantity: str, segment_id: str, finding: Json) -> Iterable[str]:
+        """Say for which part, the stretch or aborts out of it, a rule lacks a number."""
+        rule = self.rules[finding["rule"]]
+        rows = [row for row in self.rows_of(quantity) if row["segment"] in {segment_id, ""}]
+        own = [row for row in rows if not row["state"]]
+        kind = self._kinds.get(segment_id, "")
+        if covers(rule, kind) and (not own or _is_missing(own, rule)):
+            yield kind
+        aborts = [row for row in rows if row["state"] or not row["segment"]]
+        if covers(rule, ABORT) and _is_missing(aborts, rule):
+            yield ABORT
 
-    def _documents_about(self, finding: Json, segment_id: str) -> list[str]:
+    def _documents_about(self, finding: Json, part: str) -> list[str]:
         numbers = [number for number in finding["closed_by"].split(", ") if number]
-        hazard_class = self.rules[finding["rule"]]["hazard_class"]
+        hazard_class = ABORTS if part == ABORT else self.rules[finding["rule"]]["hazard_class"]
         about = {
             document["number"]
             for document in self.plan["documents"]
-            if document["hazard_class"] == hazard_class
-            and self._kinds.get(segment_id, "") in document["where"]
+            if document["hazard_class"] == hazard_class and part in document["where"]
         }
         return [number for number in numbers if number in about] or numbers
 
     def reasons_against(self, segment_id: str) -> list[tuple[str, str]]:
         """Verdict and title of every rule or open hazard class that keeps a stretch from GO.
 
-        Worst first; hazard classes that nothing closes in this part of the run come last.
+        Worst first; hazard classes that nothing closes in this part of the run come last. Open
+        aborts keep every hold and ramp from GO, for nobody knows how to leave it.
         """
         kind = self._kinds.get(segment_id, "")
+        parts = {kind} if kind == "stop" else {kind, ABORT}
         opened = [
             (covered["verdict"], f"nothing closes {self.class_title(covered['hazard_class'])}")
             for covered in self.record["coverage"]
-            if covered["where"] == kind and not covered["closed_by"]
+            if covered["where"] in parts and not covered["closed_by"]
         ]
         return [*self._against.get(segment_id, []), *opened]
 
@@ -280,16 +326,24 @@ class Reading:
             for finding in self.findings:
                 for segment_id, word in finding["segment_verdicts"].items():
                     if verdict is not Verdict.GO and verdict_of(word) is verdict:
-                        title = self.title_of(finding["rule"])
+                        title = self._title_at(finding["rule"], segment_id)
                         against[segment_id].append((verdict.value, title))
         return dict(against)
 
+    def _title_at(self, rule_id: str, segment_id: str) -> str:
+        """A rule's title, with a word where it can only be about aborts from a place."""
+        rule = self.rules.get(rule_id)
+        title = self.title_of(rule_id)
+        if rule is None or covers(rule, self._kinds.get(segment_id, "")):
+            return title
+        return f"{title} (abort from here)" if covers(rule, ABORT) else title
+
     @cached_property
-    def _rows(self) -> dict[tuple[str, str, str], Json]:
-        rows: dict[tuple[str, str, str], Json] = {}
-        for quantity, prediction in self.record["predictions"].items():
-            for row in prediction["rows"]:
-                rows.setdefault((quantity, row["segment"], row["band"]), row)
+    def _rows(self) -> dict[tuple[str, str, str, str], Json]:
+        rows: dict[tuple[str, str, str, str], Json] = {}
+        for quantity in self.record["predictions"]:
+            for row in self.rows_of(quantity):
+                rows.setdefault((quantity, row["segment"], row["band"], row["state"]), row)
         return rows
 
     @cached_property

@@ -8,9 +8,9 @@ from typing import TYPE_CHECKING
 
 from planner.model.results import Verdict
 from planner.paper import texts
-from planner.paper.boxes import Box, Tally, gap, heading, numbered, paragraph
-from planner.paper.ink import BODY
-from planner.paper.reading import Json, Reading, with_symbol
+from planner.paper.boxes import Box, Tally, gap, heading, paragraph
+from planner.paper.reading import Json, Reading, verdict_of, with_symbol
+from planner.paper.step_readings import MOVING_KEY, SubRow, hold_readings, moving_readings
 from planner.paper.tables import Cell, Row, Table, table_row
 
 if TYPE_CHECKING:
@@ -19,7 +19,14 @@ if TYPE_CHECKING:
 MOST_ROWS = 12
 _ENTRY = "Entry to every row: the row before is done and CONTINUE has been called."
 _EXIT = "then: check data,\nCONTINUE called? ☐"
-_OF_CROSSING = ("band_rate", "band_time", "crossing_cover")
+_NO_HOLD = "No HOLD inside: leave, then HOLD"
+_OF_CROSSING = (
+    "band_rate",
+    "band_time",
+    "crossing_cover",
+    "band_cycles",
+    "band_amplification",
+)
 MOST_TALLIES = 60
 _MOST_REASONS = 3
 _LEAST_WIDTHS = (82.5, 175.0, 71.5, 94.0, 118.0, 81.0, 69.5, 44.5)
@@ -35,17 +42,6 @@ _HEAD = (
     "Reading",
     "Done init.",
 )
-_GAPS = (("Droop gap", "droop_stop_clearance"), ("Up gap", "up_stop_clearance"))
-_WATCHED = (
-    *_GAPS,
-    ("Thrust", "thrust"),
-    ("Torque", "torque"),
-    ("Power", "power"),
-)
-_WATCHED_MOVING = (("Torque", "torque"),)
-"""On the way no readings are written: flap stands for both gaps and has the least margin."""
-_ROOT = (("Root", "root_flap_moment"),)
-_FLAP = ("flap_lowest", "flap_highest")
 _SUB_FROM = 2
 _BAND_ENDS = ("from_rad_s", "to_rad_s")
 
@@ -70,7 +66,7 @@ def step_boxes(reading: Reading, frame: Frame) -> list[Box]:
     """All blocks of the schedule, then the stop."""
     boxes: list[Box] = [
         heading("9  Steps", frame.width),
-        paragraph(_ENTRY, frame.width, keep_next=True),
+        paragraph(f"{_ENTRY} {MOVING_KEY}", frame.width, keep_next=True),
     ]
     segments = reading.record["segments"]
     rest = frame.width - sum(_LEAST_WIDTHS)
@@ -144,7 +140,7 @@ def _hold_rows(reading: Reading, segment: Json) -> list[Row]:
         ),
         (*note, *inside),
     )
-    return [_measured_row(reading, hold, _WATCHED)]
+    return [_measured_row(reading, hold, hold_readings(reading, segment["id"]))]
 
 
 def _ramp_rows(reading: Reading, segment: Json) -> list[Row]:
@@ -160,7 +156,8 @@ def _ramp_rows(reading: Reading, segment: Json) -> list[Row]:
     call, words = _ramp_call(reading, segment)
     action = Action(segment["id"], segment["id"], call, (*words, *settings))
     bands = bands_met(reading, segment)
-    ramp = _measured_row(reading, action, _WATCHED_MOVING, keep_next=bool(bands))
+    readings = moving_readings(reading, segment["id"])
+    ramp = _measured_row(reading, action, readings, keep_next=bool(bands))
     if end < start:
         bands = bands[::-1]
     last = len(bands) - 1
@@ -171,12 +168,29 @@ def _ramp_rows(reading: Reading, segment: Json) -> list[Row]:
 
 
 def _ramp_call(reading: Reading, segment: Json) -> tuple[str, tuple[str, ...]]:
-    time = texts.duration(segment["duration_s"])
+    time = _time_text(segment)
     if segment["kind"] == "stop":
-        return f"STOP: in {time}", (_stop_text(reading.plan["shutdown"]),)
+        return _stop_call(reading, segment), (_stop_text(reading.plan["shutdown"]),)
     if segment["id"].endswith("b"):
         return f"RETURN: in {time}", (f"after each round but the last ({segment['times']})",)
     return f"SET-UP: in {time}", ()
+
+
+def _stop_call(reading: Reading, segment: Json) -> str:
+    """Time of a stop: as planned under power, else as predicted."""
+    if reading.plan["shutdown"]["powered"]:
+        return f"STOP: in {_time_text(segment)}"
+    rest = reading.shown("time_to_rest", segment["id"])
+    if not rest.is_number:
+        return f"STOP: time to rest {rest.text} ({rest.why})"
+    return f"STOP: rest in {texts.span(rest.low, rest.high, 's')}"
+
+
+def _time_text(segment: Json) -> str:
+    """Time of a ramp; the drive's own run-up may have none that is known."""
+    if segment["duration_s"] is None:
+        return f"a time {texts.NOT_ASSESSED}"
+    return texts.duration(segment["duration_s"])
 
 
 def _stop_text(shutdown: Json) -> str:
@@ -222,38 +236,37 @@ def _band_row(reading: Reading, segment: Json, band: Json, *, keep_next: bool) -
     inside = [
         segment[key] for key in _BAND_ENDS if band["from_rad_s"] < segment[key] < band["to_rad_s"]
     ]
-    rate = reading.shown("band_rate", segment["id"], band["id"]).text
-    ends = "\nThe plan starts or ends inside this band." if inside else ""
-    cells = [Cell() for _ in _HEAD]
+    ends = ". The plan starts or ends inside this band" if inside else ""
     by = reading.documents_behind(segment["id"], _OF_CROSSING)
     rests = f"\nGO by {', '.join(by)}" if by else ""
+    cells = [Cell() for _ in _HEAD]
     cells[0] = Cell(f"{segment['id']}\n{band['id']}{rests}", bold=True)
-    cells[1] = Cell(f"{band['why']}{ends}", lead=f"PASS WITHOUT STOPPING {band_text(band)}")
-    cells[2] = Cell("Rate")
-    cells[3] = Cell(f"{rate} of full rpm a second" if rate.endswith("%") else rate)
-    cells[4] = Cell("No HOLD inside: leave the band, then HOLD")
-    cells[5] = Cell(reading.margin(segment["id"], "band_rate"))
+    cells[1] = Cell(lead=f"PASS WITHOUT STOPPING {band_text(band)}")
+    cells[2:6] = [Cell(text) for text in _passage(reading, segment, band)]
     cells[-1] = Cell(tick=True)
-    return Row(tuple(cells), keep_next=keep_next, grey=True, least_height=40.0)
+    tails = (Cell(f"{band['why']}{ends}"),)
+    return Row(tuple(cells), tails=tails, keep_next=keep_next, grey=True)
+
+
+def _passage(reading: Reading, segment: Json, band: Json) -> tuple[str, str, str, str]:
+    """What is said of a passage: its rate, or its turns where no power is there to choose it."""
+    place = (segment["id"], band["id"])
+    rate = reading.shown("band_rate", *place)
+    if rate.text == texts.DOES_NOT_APPLY:
+        turns = reading.shown("band_cycles", *place)
+        margin = reading.margin(place[0], "band_cycles")
+        return "Turns", turns.text, turns.why or "No HOLD: no power", margin
+    shown = f"{rate.text}/s" if rate.is_number else rate.text
+    return "Rate", shown, _NO_HOLD, reading.margin(place[0], "band_rate")
 
 
 def _measured_row(
     reading: Reading,
     action: Action,
-    watched: tuple[tuple[str, str], ...],
+    readings: list[SubRow],
     *,
     keep_next: bool = False,
 ) -> Row:
-    if _is_hingeless(reading):
-        watched = (*_ROOT, *watched)
-    gaps = tuple(gap_id for _, gap_id in _GAPS)
-    judged = _FLAP if gaps[0] in dict(watched).values() else (*_FLAP, *gaps)
-    subs = [_flap_sub_row(reading, action.segment_id, judged)]
-    subs += [
-        _sub_row(reading, name, quantity, action.segment_id)
-        for name, quantity in watched
-        if reading.applies(quantity)
-    ]
     cells = [Cell() for _ in _HEAD]
     cells[0] = Cell(_number_and_verdict(reading, action), bold=True)
     cells[1] = action.cell
@@ -262,7 +275,7 @@ def _measured_row(
     tails = (*_reason_tails(reading, action.segment_id), *(Cell(note) for note in notes))
     return Row(
         tuple(cells),
-        sub_rows=tuple(subs),
+        sub_rows=tuple(readings),
         sub_from=_SUB_FROM,
         tails=tails,
         least_height=44.0,
@@ -298,85 +311,12 @@ def _document_note(reading: Reading, segment_id: str) -> tuple[str, ...]:
 
 
 def _reason_tails(reading: Reading, segment_id: str) -> tuple[Cell, ...]:
+    """Why a row is not GO: the reasons of its worst verdict; the rest are counted."""
     against = reading.reasons_against(segment_id)
     if not against:
         return ()
-    listed = "; ".join(f"{word}: {title}" for word, title in against[:_MOST_REASONS])
-    more = len(against) - _MOST_REASONS
+    worst = max((word for word, _ in against), key=lambda word: verdict_of(word).rank)
+    first = [title for word, title in against if word == worst][:_MOST_REASONS]
+    more = len(against) - len(first)
     rest = f"; and {more} more, see the findings" if more > 0 else ""
-    return (Cell(f"Not GO: {listed}{rest}.", bold=True),)
-
-
-def _flap_sub_row(reading: Reading, segment_id: str, judged: tuple[str, ...]) -> tuple[Cell, ...]:
-    low, high = (reading.shown(quantity, segment_id) for quantity in _FLAP)
-    margin = reading.margin(segment_id, *judged)
-    if margin == "no limit":
-        margin = _flap_judged_by(reading)
-    if not (low.is_number and high.is_number):
-        missing = high if low.is_number else low
-        return (Cell("Flap"), Cell(missing.text), Cell(missing.why), Cell(margin), Cell())
-    predicted = texts.span(low.value, high.value, "deg")
-    band = texts.hold_band(low.low, high.high, "deg")
-    return (Cell("Flap"), Cell(predicted), Cell(band), Cell(margin), Cell())
-
-
-def _is_hingeless(reading: Reading) -> bool:
-    return bool(reading.plan["rotor"]["hub"]["kind"] == "hingeless")
-
-
-def _flap_judged_by(reading: Reading) -> str:
-    return "see root" if _is_hingeless(reading) else "see gaps"
-
-
-def _sub_row(reading: Reading, name: str, quantity: str, segment_id: str) -> tuple[Cell, ...]:
-    shown = reading.shown(quantity, segment_id)
-    margin = reading.margin(segment_id, quantity)
-    if not shown.is_number:
-        return (Cell(name), Cell(shown.text), Cell(shown.why), Cell(margin), Cell())
-    unit = reading.vocabulary[quantity]["unit"]
-    danger = reading.vocabulary[quantity]["danger"]
-    return (
-        Cell(name),
-        Cell(texts.toward_danger(shown.value, unit, danger)),
-        Cell(texts.hold_band(shown.low, shown.high, unit)),
-        Cell(margin),
-        Cell(),
-    )
-
-
-def rule_boxes(frame: Frame) -> list[Box]:
-    """The build-up rule and the calls, defined for this card."""
-    boxes: list[Box] = [
-        heading("8  Build-up rule and calls", frame.width),
-        paragraph(
-            "Build-up rule: the next row is begun only when the data of this row have been "
-            "checked and CONTINUE has been called. Rows are run in order; none is left out.",
-            frame.width,
-            BODY.bold,
-            keep_next=True,
-        ),
-        gap(4.0),
-    ]
-    calls = [numbered(word, text, frame.width) for word, text in CALLS]
-    return [*boxes, *(replace(call, keep_next=True) for call in calls[:-1]), calls[-1]]
-
-
-CALLS = (
-    ("CONTINUE", "data good, nobody objects: begin the next row."),
-    (
-        "HOLD",
-        "keep rotor speed and pitch as they are, change nothing, and say why. Inside a "
-        "PASS WITHOUT STOPPING band: first leave the band in the direction of travel, then hold. "
-        "Ends with CONTINUE or STOP TEST.",
-    ),
-    (
-        "STOP TEST",
-        "nobody is in danger, but the test or its data are no good: recover by the stop row of "
-        "this card, and say why.",
-    ),
-    (
-        "ABORT, ABORT, ABORT",
-        "danger, or safety can no longer be confirmed because a reading that it depends on is "
-        "lost: everyone acts at once by the ABORT sheet; the reason is given afterwards.",
-    ),
-)
+    return (Cell(f"Not GO: {worst}: {'; '.join(first)}{rest}.", bold=True),)

@@ -144,7 +144,7 @@ def stop_order(
         if not segment.duration_s > 0.0:
             raise NotAssessedError(Status.NOT_STATED, _NO_ABORT_TIMES)
         rate = change / segment.duration_s or 1.0
-    brake = shaft.brake_from_rad_s(shutdown.brake, shutdown.brake_from_rad_s)
+    brake = shaft.brake_from_rad_s(shutdown.brake_from_rad_s, is_used=shutdown.brake)
     return Order(segment.from_rad_s, ControlMove(start, target, 0.0, rate), brake)
 
 
@@ -157,8 +157,8 @@ def abort_order(shaft: Shaft, abort: AbortActions, origin: Origin, cause: str) -
     does_not_apply = no_such_cause(shaft, abort, cause)
     if does_not_apply:
         raise NotAssessedError(Status.NOT_APPLICABLE, does_not_apply)
-    brakes = abort.brake and cause != BRAKE_LOST
-    brake = shaft.brake_from_rad_s(brakes, abort.brake_from_rad_s)
+    is_used = abort.brake and cause != BRAKE_LOST
+    brake = shaft.brake_from_rad_s(abort.brake_from_rad_s, is_used=is_used)
     delay, rate = abort.reaction_time_s, abort.collective_rate_rad_s
     if delay is None or rate is None:
         raise NotAssessedError(Status.NOT_STATED, _NO_ABORT_TIMES)

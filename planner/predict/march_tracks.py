@@ -23,7 +23,6 @@ from planner.predict.histories import (
     run_downs,
 )
 from planner.predict.study import NotAssessedError
-from planner.rotor.speed_history import Controls, History
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -33,6 +32,7 @@ if TYPE_CHECKING:
     from planner.model.plan import AbortActions
     from planner.predict.histories import FoundRunDown, Order
     from planner.predict.shaft import Shaft
+    from planner.rotor.speed_history import Controls, History
 
     FloatArray = NDArray[np.float64]
 
@@ -146,10 +146,10 @@ class AbortTracks:
         start = _rung([s.speed_rad_s for s in self._sources], source.speed_rad_s)
         target = own.move.target
         move = replace(own.move, start=target, delay_s=0.0)
-        brake = self._shaft.brake_from_rad_s(self._abort.brake, self._abort.brake_from_rad_s)
-        return replace(
-            own, from_rad_s=start, move=move, brake_from_rad_s=brake, brake_delay_s=0.0
+        brake = self._shaft.brake_from_rad_s(
+            self._abort.brake_from_rad_s, is_used=self._abort.brake
         )
+        return replace(own, from_rad_s=start, move=move, brake_from_rad_s=brake, brake_delay_s=0.0)
 
     def _low(self, source: Source, own: Order, cause: str) -> tuple[Order, ...]:
         """The run-down where a lost brake or a stop that does not re-seat tells."""

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -20,7 +20,7 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from planner.model.plan import Site
-    from planner.model.stand import Stand
+    from planner.model.stand import Obstruction
     from planner.predict.march_tracks import Track
     from planner.predict.sectors import SectorWind
 
@@ -31,6 +31,8 @@ PASSED_SHARES = (0.35, 0.7, 1.1)
 EARLY_S = 2.0
 """Another gust peaks this long after the beginning of a run-down."""
 GUST_LENGTHS = 2
+ENTRY_SHARES = (0.0, 0.5)
+"""Azimuth of the first blade when a history begins, in blade spacings, taken in turns."""
 SERIES_S = 600.0
 SERIES_STEP_S = 0.1
 HIGHEST_HZ = 2.5
@@ -39,8 +41,8 @@ LEAST_TURBULENT_M_S = 1.0
 STRONGEST_GUST_M_S = 30.0
 """Above it a wind that is even over the disc and steady sections are no model of a gust."""
 NO_GUSTS = (
-    'gust: expected shortest and longest, found neither; state in [gust] the lengths of gusts that '
-    "are to be searched"
+    "gust: expected shortest and longest, found neither; state in [gust] the lengths of gusts "
+    "that are to be searched"
 )
 
 
@@ -90,40 +92,44 @@ class Winds:
     diameter_m: float
 
     def rides(self, track: Track, free_rad_s: float) -> list[Ride]:
-        """Winds of one track: calm, mean, gusts with a search over start and length, turbulence."""
-        azimuths = (0.0, 0.5)
+        """Winds of one track, none twice: calm, mean, gusts by start and length, turbulence."""
         rides = [Ride(0.0, 0.0, 0.0, 1.0, 0.0, -1, 0.0, 0)]
+        first: dict[tuple[float, float, float], int] = {}
         for place, sector in enumerate(self.sectors):
-            mean, more = sector.mean_m_s, sector.gust_m_s - sector.mean_m_s
-            calm = Ride(mean, 0.0, 0.0, 1.0, sector.upflow_slope, -1, 0.0, place)
-            if sector.gust_m_s > 0.0:
-                rides.append(calm)
-            if more > 0.0:
-                shortest, longest = self.lengths_s(sector)
-                peaks = gust_peaks_s(track, free_rad_s)
-                found = candidate_gusts(peaks, shortest, longest, GUST_LENGTHS)
+            wind = (sector.mean_m_s, sector.gust_m_s, sector.upflow_slope)
+            like = first.setdefault(wind, place)
+            steady = Ride(sector.mean_m_s, 0.0, 0.0, 1.0, sector.upflow_slope, -1, 0.0, like)
+            rides += [steady, *self._gusts(steady, sector, gust_peaks_s(track, free_rad_s))]
+            count = self.n_series if track.is_low else min(1, self.n_series)
+            if sector.mean_m_s >= LEAST_TURBULENT_M_S:
                 rides += [
-                    Ride(mean, more, start, length, sector.upflow_slope, -1, azimuths[i % 2], place)
-                    for i, (start, length) in enumerate(
-                        zip(found[0].tolist(), found[1].tolist(), strict=True)
-                    )
-                ]
-            if mean >= LEAST_TURBULENT_M_S:
-                count = self.n_series if track.is_low else min(1, self.n_series)
-                rides += [
-                    Ride(
-                        mean,
-                        0.0,
-                        0.0,
-                        1.0,
-                        sector.upflow_slope,
-                        place * self.n_series + i,
-                        azimuths[i % 2],
-                        place,
+                    replace(
+                        steady,
+                        series=place * self.n_series + i,
+                        azimuth_share=ENTRY_SHARES[i % 2],
+                        sector=place,
                     )
                     for i in range(count)
                 ]
-        return rides
+        return list(dict.fromkeys(rides))
+
+    def _gusts(self, steady: Ride, sector: SectorWind, peaks_s: FloatArray) -> list[Ride]:
+        """Gusts on a steady wind, with every start and length that is searched."""
+        more = sector.gust_m_s - sector.mean_m_s
+        if not more > 0.0:
+            return []
+        starts, lengths = candidate_gusts(peaks_s, *self.lengths_s(sector), GUST_LENGTHS)
+        pairs = zip(starts.tolist(), lengths.tolist(), strict=True)
+        return [
+            replace(
+                steady,
+                gust_m_s=more,
+                start_s=start,
+                length_s=length,
+                azimuth_share=ENTRY_SHARES[i % 2],
+            )
+            for i, (start, length) in enumerate(pairs)
+        ]
 
     def lengths_s(self, sector: SectorWind) -> tuple[float, float]:
         """Shortest and longest gust; one that crosses the disc faster is not even over it."""
@@ -133,15 +139,18 @@ class Winds:
 
 
 def winds_of(
-    site: Site, stand: Stand, hub_m_s: tuple[float, float], diameter_m: float
+    site: Site,
+    hub_height_m: float,
+    obstructions: Sequence[Obstruction],
+    hub: tuple[float, float, float],
 ) -> Winds:
     """Winds of the day.
 
     Args:
         site: Gust lengths, turbulence, sectors.
-        stand: Hub height and obstructions.
-        hub_m_s: Mean wind and gust at the hub.
-        diameter_m: Of the rotor.
+        hub_height_m: Height of the hub over the ground.
+        obstructions: What stands about the stand.
+        hub: Mean wind and gust at the hub, and the rotor's diameter.
 
     Returns:
         The winds.
@@ -150,11 +159,11 @@ def winds_of(
         NotAssessedError: gust lengths or turbulence are not stated, or a gust is stronger than
             the model holds for.
     """
-    mean, gust = hub_m_s
+    mean, gust, diameter_m = hub
     if gust > STRONGEST_GUST_M_S:
         msg = f"gust: expected up to {STRONGEST_GUST_M_S:g} m/s at the hub, found {gust:g} m/s"
         raise NotAssessedError(Status.OUTSIDE_VALIDITY, msg)
-    sectors = sectors_of(site, stand, mean, gust)
+    sectors = sectors_of(site, hub_height_m, obstructions, (mean, gust))
     for sector in sectors:
         if sector.reason and gust > 0.0:
             raise NotAssessedError(Status.NOT_STATED, sector.reason)
@@ -164,7 +173,7 @@ def winds_of(
         return Winds(sectors, 1.0, 2.0, STILL, 0, diameter_m)
     lengths = site.gust_lengths
     n_series = 0 if site.turbulence is None else site.turbulence.series
-    rough = _rough(sectors, site, stand.hub_height_m) if n_series else STILL
+    rough = _rough(sectors, site, hub_height_m) if n_series else STILL
     return Winds(sectors, lengths.shortest_s, lengths.longest_s, rough, n_series, diameter_m)
 
 

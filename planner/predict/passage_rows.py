@@ -13,7 +13,6 @@ from planner.methods.passage import SpeedTable, passage_peak
 from planner.methods.run_down import lanes_of, speed_at
 from planner.model.results import Labels, Status
 from planner.predict.run_down_events import add_ends
-from planner.predict.run_down_hand import Hand, hand_of
 from planner.predict.study import NotAssessedError
 from planner.predict.study_modes import mode_fault
 
@@ -27,12 +26,13 @@ if TYPE_CHECKING:
     from planner.predict.histories import FoundRunDown, Order
     from planner.predict.rows import Rows
     from planner.predict.run_down_events import Event
-    from planner.predict.shaft import Shaft
+    from planner.predict.run_down_hand import Hand
     from planner.predict.study import Inputs
 
     BoolArray = NDArray[np.bool_]
     FloatArray = NDArray[np.float64]
     Case = tuple[Event, FoundRunDown | None]
+    Hands = Mapping[Order, Hand]
 
 PASSAGES = ("band_cycles", "band_amplification")
 POINTS = 1024
@@ -72,7 +72,7 @@ class _Answer:
 
 
 def passage_rows(
-    rows: Mapping[str, Rows], solved: Sequence[Case], inputs: Inputs, shaft: Shaft
+    rows: Mapping[str, Rows], solved: Sequence[Case], inputs: Inputs, hands: Hands
 ) -> None:
     """Fill the rows of every band that the stop or an abort may pass."""
     bands: Sequence[KeepOut] = inputs["keep_outs"]
@@ -85,14 +85,14 @@ def passage_rows(
     for band in bands:
         passed = _passed(list(different.values()), band)
         for case in solved:
-            _cycles(rows[PASSAGES[0]], case, band, shaft)
+            _cycles(rows[PASSAGES[0]], case, band, hands)
         for mode in modes:
             answer = _answer(passed, mode, inputs)
             for case in solved:
-                _answer_row(rows[PASSAGES[1]], case, (band, answer), shaft)
+                _answer_row(rows[PASSAGES[1]], case, (band, answer), hands)
 
 
-def _cycles(rows: Rows, case: Case, band: KeepOut, shaft: Shaft) -> None:
+def _cycles(rows: Rows, case: Case, band: KeepOut, hands: Hands) -> None:
     event, found = case
     label = replace(event.label, band=band.id)
     if found is None or band.from_rad_s >= event.from_rad_s:
@@ -100,7 +100,7 @@ def _cycles(rows: Rows, case: Case, band: KeepOut, shaft: Shaft) -> None:
         return
     enters = min(band.to_rad_s, event.from_rad_s)
     turns = found.reached(band.from_rad_s)[1] - found.reached(enters)[1]
-    hand = hand_of(shaft, found).turns(enters, band.from_rad_s)
+    hand = hands[found.order].turns(enters, band.from_rad_s)
     add_ends(rows, label, (turns, hand), found)
 
 
@@ -108,7 +108,7 @@ def _answer_row(
     rows: Rows,
     case: Case,
     asked: tuple[KeepOut, _Answer],
-    shaft: Shaft,
+    hands: Hands,
 ) -> None:
     (event, found), (band, answer) = case, asked
     mode = answer.mode
@@ -118,7 +118,7 @@ def _answer_row(
     elif answer.status is not Status.OK:
         rows.flag(label, answer.status, answer.reason, speed_rad_s=event.from_rad_s)
     else:
-        hand = _hand(mode, band, hand_of(shaft, found))
+        hand = _hand(mode, band, hands[found.order])
         add_ends(rows, label, (answer.peaks[found.order], hand), found)
 
 

@@ -197,8 +197,10 @@ MARCHED = (
         "deg",
         "ζ",
         "high",
-        "Largest angle of a blade in lag, either way from the middle between its two lag stops; "
-        "rigid blade on its damper. Does not apply where the hub states no lag stops.",
+        "Largest angle of a blade in lag, either way from the middle between its two lag stops, "
+        f"at and above {_LEFT_BEHIND}: below it a blade without a lag spring lies on a stop "
+        "whenever speed changes, which lag_stop_peak_moment tells. Rigid blade on its damper; "
+        "does not apply where the hub states no lag stops.",
         "none: steady lag is torque over the centrifugal stiffness",
     ),
     _march(

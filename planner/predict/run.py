@@ -17,9 +17,11 @@ from planner.predict.study import NotAssessedError
 from planner.predict.study_air import AIR, WIND
 from planner.predict.study_holds import HOLDS
 from planner.predict.study_inertia import INERTIA
+from planner.predict.study_marches import MARCHES
 from planner.predict.study_modes import MODES
 from planner.predict.study_passages import PASSAGES
 from planner.predict.study_schedule import SCHEDULE
+from planner.predict.study_speeds import SPEEDS
 from planner.predict.study_stops import STOPS
 from planner.predict.study_tip import TIP
 
@@ -32,7 +34,19 @@ if TYPE_CHECKING:
     from planner.predict.progress import Progress
     from planner.predict.study import Inputs, Study
 
-STUDIES: tuple[Study, ...] = (AIR, WIND, INERTIA, SCHEDULE, TIP, STOPS, HOLDS, MODES, PASSAGES)
+STUDIES: tuple[Study, ...] = (
+    AIR,
+    WIND,
+    INERTIA,
+    SCHEDULE,
+    TIP,
+    STOPS,
+    HOLDS,
+    MODES,
+    PASSAGES,
+    SPEEDS,
+    MARCHES,
+)
 """In an order in which each finds what it needs."""
 
 

@@ -7,8 +7,10 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from planner.model.plan import Sector, Site
-    from planner.model.stand import Obstruction, Stand
+    from planner.model.stand import Obstruction
 
 ALL_ROUND = "all round"
 WAKE_HEIGHTS = 20.0
@@ -35,7 +37,10 @@ class SectorWind:
 
 
 def sectors_of(
-    site: Site, stand: Stand, mean_m_s: float, gust_m_s: float
+    site: Site,
+    hub_height_m: float,
+    obstructions: Sequence[Obstruction],
+    hub_m_s: tuple[float, float],
 ) -> tuple[SectorWind, ...]:
     """Wind of each stated sector; of one sector all round where none is stated.
 
@@ -45,9 +50,9 @@ def sectors_of(
 
     Args:
         site: Sectors and turbulence as the plan states them.
-        stand: Hub height and obstructions.
-        mean_m_s: Mean wind at the hub, no shelter counted [m/s].
-        gust_m_s: Gust at the hub, no shelter counted [m/s].
+        hub_height_m: Height of the hub over the ground.
+        obstructions: What stands about the stand.
+        hub_m_s: Mean wind and gust at the hub, no shelter counted.
 
     Returns:
         One entry a sector, in the plan's order. Where something is missing the reason says what:
@@ -63,17 +68,21 @@ def sectors_of(
         Length of a wake and height that counts: common practice, from memory.
     """
     if not site.sectors:
-        intensity, reason = _intensity(ALL_ROUND, None, site, _in_wake(None, stand))
-        return (SectorWind(ALL_ROUND, mean_m_s, gust_m_s, 0.0, intensity, reason),)
-    return tuple(_wind_of(sector, site, stand, (mean_m_s, gust_m_s)) for sector in site.sectors)
+        wake_of = _in_wake(None, hub_height_m, obstructions)
+        intensity, reason = _intensity(ALL_ROUND, None, site, wake_of)
+        return (SectorWind(ALL_ROUND, *hub_m_s, 0.0, intensity, reason),)
+    return tuple(
+        _wind_of(sector, site, _in_wake(sector, hub_height_m, obstructions), hub_m_s)
+        for sector in site.sectors
+    )
 
 
 def _wind_of(
-    sector: Sector, site: Site, stand: Stand, speeds_m_s: tuple[float, float]
+    sector: Sector, site: Site, wake_of: Obstruction | None, speeds_m_s: tuple[float, float]
 ) -> SectorWind:
     share, unmeasured = _shelter(sector)
     intensity, missing = _intensity(
-        f"sector {sector.name}", sector.turbulence_intensity, site, _in_wake(sector, stand)
+        f"sector {sector.name}", sector.turbulence_intensity, site, wake_of
     )
     return SectorWind(
         name=sector.name,
@@ -129,13 +138,15 @@ def _intensity(
     return site.turbulence.intensity, ""
 
 
-def _in_wake(sector: Sector | None, stand: Stand) -> Obstruction | None:
+def _in_wake(
+    sector: Sector | None, hub_height_m: float, obstructions: Sequence[Obstruction]
+) -> Obstruction | None:
     """The nearest obstruction, in its own heights, whose wake reaches the hub from a sector."""
     upwind = [
         place
-        for place in stand.obstructions
+        for place in obstructions
         if (sector is None or _holds(sector, place.bearing_rad))
-        and place.height_m >= TALL_SHARE * stand.hub_height_m
+        and place.height_m >= TALL_SHARE * hub_height_m
         and place.distance_m < WAKE_HEIGHTS * place.height_m
     ]
     return min(upwind, key=lambda place: place.distance_m / place.height_m, default=None)

@@ -34,7 +34,8 @@ def series(
 
 def _times(segments: tuple[Segment, ...]) -> list[tuple[float, float]]:
     """Start and end of each segment, one pass of each [s]."""
-    ends = np.cumsum([0.0] + [segment.duration_s for segment in segments])
+    # a run-up that the drive never finishes has no time; it is not assessed anywhere else
+    ends = np.cumsum([0.0] + [np.nan_to_num(segment.duration_s) for segment in segments])
     return [(float(a), float(b)) for a, b in itertools.pairwise(ends)]
 
 

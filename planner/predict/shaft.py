@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from functools import cached_property
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -62,7 +63,7 @@ class Shaft:
     air: AirState
     wind_m_s: float
 
-    @property
+    @cached_property
     def inertia_kg_m2(self) -> float:
         """Rotating inertia of blades, hub and drive, as it takes torque to change the speed."""
         blade = float(flap_inertia(self.rotor.blade, 0.0).second_moment_kg_m2)
@@ -79,12 +80,12 @@ class Shaft:
             raise NotAssessedError(Status.NOT_STATED, _NO_FRICTION)
         return self.drive.friction_N_m
 
-    def brake_from_rad_s(self, brakes: bool, ordered_rad_s: float) -> float:  # noqa: FBT001
+    def brake_from_rad_s(self, ordered_rad_s: float, *, is_used: bool) -> float:
         """Speed from which the brake acts: as ordered, never above the permitted; 0: not at all.
 
         A brake without a stated torque is counted on for nothing.
         """
-        if not brakes or self.brake_below_rad_s is None or self.brake_torque_N_m is None:
+        if not is_used or self.brake_below_rad_s is None or self.brake_torque_N_m is None:
             return 0.0
         return min(ordered_rad_s, self.brake_below_rad_s)
 

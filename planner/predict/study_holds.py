@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from planner.methods.shaft_torque import motor_torque_n_m
 from planner.model.results import Labels, Status
 from planner.predict.cases import air_of
 from planner.predict.fineness import STATIONS
@@ -27,6 +28,7 @@ if TYPE_CHECKING:
     from planner.model.plan import Segment
     from planner.model.results import Prediction
     from planner.model.rotor import Blade, Rotor
+    from planner.model.stand import Drive
     from planner.predict.cases import Air
 
 _ID = "holds"
@@ -118,6 +120,8 @@ def _numbers(quantity: str, found: SegmentResults, inputs: Inputs) -> tuple[floa
 
 def _shaft(quantity: str, found: SegmentResults, inputs: Inputs) -> tuple[float, float, float]:
     """Torque or power: air load with its allowance, and what the ramp's acceleration takes."""
+    if found.segment.own_run_up:
+        return _all_it_has(quantity, found, inputs["stand.drive"])
     ends = inputs.requests.allowances.get("torque", (math.nan, math.nan))
     extra = _acceleration_torque(found.segment, inputs)
     nominal, every = found.nominals("torque") + extra, found.all("torque")
@@ -131,10 +135,20 @@ def _shaft(quantity: str, found: SegmentResults, inputs: Inputs) -> tuple[float,
     return float(worst), float(low.min()), float(high.max())
 
 
+def _all_it_has(quantity: str, found: SegmentResults, drive: Drive) -> tuple[float, float, float]:
+    """The drive's own run-up: torque or power is the most that the drive gives on the way."""
+    speeds = np.linspace(found.segment.from_rad_s, found.segment.to_rad_s, 101)
+    torque = motor_torque_n_m(
+        speeds, drive.torque_rating_N_m, drive.power_rating_W, drive.torque_by_speed
+    )
+    most = float(np.max(torque if quantity == "torque" else torque * speeds))
+    return most, most, most
+
+
 def _acceleration_torque(segment: Segment, inputs: Inputs) -> float:
     """Torque that the drive adds to change the rotor's speed; none where it coasts [N m]."""
     coasts = segment.kind == "stop" and not inputs["shutdown"].powered
-    if segment.kind == "hold" or coasts or segment.duration_s <= 0.0:
+    if segment.kind == "hold" or coasts or segment.own_run_up or segment.duration_s <= 0.0:
         return 0.0
     rotor: Rotor = inputs["rotor"]
     blade = float(flap_inertia(rotor.blade, 0.0).second_moment_kg_m2)

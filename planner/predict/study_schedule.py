@@ -73,11 +73,9 @@ def _ramp(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
     change = segment.to_collective_rad - segment.from_collective_rad
     rows["speed_step"].add(label, rise, speed_rad_s=top)
     rows["collective_step"].add(label, max(0.0, change), speed_rad_s=top)
-    if segment.duration_s <= 0.0:
+    if not segment.duration_s > 0.0:
         for quantity in ("ramp_rate", "collective_rate"):
-            rows[quantity].flag(
-                label, Status.NOT_STATED, "the ramp has no duration", speed_rad_s=top
-            )
+            rows[quantity].flag(label, *_no_time(segment), speed_rad_s=top)
         return
     rows["collective_rate"].add(label, abs(change) / segment.duration_s, speed_rad_s=top)
     if segment.kind == "stop" and not shutdown.powered:
@@ -85,6 +83,13 @@ def _ramp(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
         rows["ramp_rate"].flag(label, Status.NOT_APPLICABLE, reason, speed_rad_s=top)
     else:
         rows["ramp_rate"].add(label, rate_rad_s2(segment), speed_rad_s=top)
+
+
+def _no_time(segment: Segment) -> tuple[Status, str]:
+    """Why a ramp has no duration."""
+    if segment.own_run_up:
+        return Status.OUTSIDE_VALIDITY, "no time was found for the drive's own run-up"
+    return Status.NOT_STATED, "the ramp has no duration"
 
 
 def rate_rad_s2(segment: Segment) -> float:
@@ -127,12 +132,11 @@ def _passage(rows: Rows, segment: Segment, label: Labels, inputs: Inputs) -> Non
     shutdown: Shutdown = inputs["shutdown"]
     top = segment.top_rad_s
     if segment.kind == "stop" and not shutdown.powered:
-        rows.flag(
-            label,
-            Status.NOT_COMPUTED,
-            "an unpowered passage is judged by amplitude and cycles, which are not computed",
-            speed_rad_s=top,
-        )
+        reason = "an unpowered passage is judged by its turns and its amplitude"
+        rows.flag(label, Status.NOT_APPLICABLE, reason, speed_rad_s=top)
+        return
+    if not segment.duration_s > 0.0:
+        rows.flag(label, *_no_time(segment), speed_rad_s=top)
         return
     rows.add(label, rate_rad_s2(segment) / inputs["stand.full_speed_rad_s"], speed_rad_s=top)
 

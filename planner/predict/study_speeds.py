@@ -19,7 +19,8 @@ if TYPE_CHECKING:
 
     from planner.model.plan import Segment
     from planner.model.results import Prediction
-    from planner.predict.histories import FoundRunDown
+    from planner.predict.histories import FoundRunDown, Order
+    from planner.predict.run_down_hand import Hand
     from planner.predict.shaft import Shaft, Way
 
 _ID = "speeds"
@@ -39,9 +40,10 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     events = [*stops(ways, inputs, shaft), *aborts(ways, inputs, shaft)]
     solved = solved_events(shaft, events, inputs.allowance("torque"))
     rows = {q: Rows(q, _ID) for q in (*TIMES, *PASSAGES)}
+    hands = {found.order: hand_of(shaft, found) for _, found in solved if found is not None}
     for event, found in solved:
-        _time_rows(rows, event, found, shaft)
-    passage_rows(rows, solved, inputs, shaft)
+        _time_rows(rows, event, found, hands)
+    passage_rows(rows, solved, inputs, hands)
     times = {quantity: filled.prediction() for quantity, filled in rows.items()}
     return {"drive_torque_reserve": _reserves(ways, inputs, shaft), **times}
 
@@ -59,12 +61,15 @@ def _reserves(ways: Sequence[Way], inputs: Inputs, shaft: Shaft) -> Prediction:
 
 
 def _time_rows(
-    rows: Mapping[str, Rows], event: Event, found: FoundRunDown | None, shaft: Shaft
+    rows: Mapping[str, Rows],
+    event: Event,
+    found: FoundRunDown | None,
+    hands: Mapping[Order, Hand],
 ) -> None:
     top = event.from_rad_s
     for quantity, share in TIMES.items():
         if found is not None:
-            hand = hand_of(shaft, found).time_s(share * top)
+            hand = hands[found.order].time_s(share * top)
             times, _ = found.reached(share * top)
             add_ends(rows[quantity], event.label, (times, hand), found)
         elif event.status is Status.OK:

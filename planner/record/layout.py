@@ -35,6 +35,7 @@ from planner.model.canonical import digest_of_plain, plain
 from planner.model.plan import segments
 from planner.predict.kept import NOTHING_KEPT
 from planner.predict.progress import silent
+from planner.predict.histories import timed
 from planner.predict.register import REGISTER
 from planner.predict.run import predict
 from planner.predict.series import series
@@ -86,8 +87,8 @@ def build(
         progress: called with the name of each part as it starts.
         store: where slow studies keep what they found; the record is the same without.
     """
-    walk = segments(plan)
     wanted = requests(plan.rule_book)
+    walk = timed(plan, segments(plan), wanted)
     predictions = predict(plan, walk, wanted, progress, store, versions())
     progress("judging")
     judgement = judge(plan, walk, REGISTER, predictions)

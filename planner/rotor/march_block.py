@@ -20,7 +20,14 @@ from planner.rotor.march_lag import MarchLag
 from planner.rotor.march_loads import Instant, LoadMaker, UnitLoads
 from planner.rotor.march_start import starting_state
 from planner.rotor.march_stops import MarchStops
-from planner.rotor.march_track import Contacts, Extremes, Moment, follow, start_free
+from planner.rotor.march_track import (
+    Contacts,
+    Extremes,
+    Moment,
+    follow,
+    start_free,
+    turn_on,
+)
 from planner.rotor.march_watch import Watch
 from planner.rotor.march_wind import Course, WindNow
 
@@ -34,6 +41,8 @@ if TYPE_CHECKING:
     FloatArray = NDArray[np.float64]
     BoolArray = NDArray[np.bool_]
 
+LOOKS_PER_TURN = 24
+"""How often in a turn hub moment, root moment and thrust are looked at."""
 _PER_CASE = (
     "end_s",
     "time_s",
@@ -75,6 +84,7 @@ class Block:
         self.extremes = Extremes.none(*shape, blades)
         self.end_s = histories.end_s[cases.history]
         self.steps = 0
+        self._look_every = max(1, model.settings.steps_per_turn // LOOKS_PER_TURN)
         self._begin(shape, blades)
 
     def _begin(self, shape: tuple[int, int], blades: int) -> None:
@@ -130,7 +140,8 @@ class Block:
         instant = Instant(self.x, self.induced_m_s, self.azimuth_rad, now, wind)
         loads = self._loads(instant)
         counts = (self.time_s >= 0.0) & ~self.is_done
-        self._watch.loads(self.extremes, instant, loads, (self.moment_N_m, counts))
+        if self.steps % self._look_every == 0:
+            self._watch.loads(self.extremes, instant, loads, (self.moment_N_m, counts))
         ratio = step / self._last_s
         push = self._push(loads, node, ratio)
         self._flap(push, step, counts)
@@ -139,7 +150,9 @@ class Block:
         if self.lag is not None:
             rate = (later.speed_rad_s - now.speed_rad_s) / step
             self.lag.step(node, loads, (now.speed_rad_s, rate), ratio)
-            self._watch.lag(self.extremes, self.lag.lag_rad, self.lag.stop_N_m, counts)
+            fast = counts & (now.speed_rad_s >= self.cases.counts_from_rad_s)
+            lag = self.lag
+            self._watch.lag(self.extremes, lag.from_middle_rad, lag.stop_N_m, (counts, fast))
         self.azimuth_rad = self.azimuth_rad + 0.5 * step * (now.speed_rad_s + later.speed_rad_s)
         begins = (self.time_s < 0.0) & (self.time_s + step >= 0.0)
         self.time_s = self.time_s + step
@@ -175,27 +188,24 @@ class Block:
         end = rotation(model, after)
         half = middle(before, end, step)
         near = near_stops((before[0], half, end[0]), self.moment_N_m, places)
-        if model.laws.exist and np.any(near):
+        some = model.laws.exist and bool(np.any(near))
+        if some:
             where = np.flatnonzero(near)
             self._press(where, push.take(where), step, after)
             half = np.where(near[:, None], before[0], half)
             end = rotation(model, after)
-        if not np.all(near):
-            self._free(near, step, counts)
+        self._free(near, step, counts)
         self.x = after
-        self._watch.flap(self.extremes, half, counts, self.time_s)
-        self._watch.flap(self.extremes, end[0], counts, self.time_s)
+        self._watch.flap(self.extremes, (half, end[0]), counts, self.time_s)
         self._watch.tips(self.extremes, after, self.azimuth_rad, counts)
 
     def _free(self, near: BoolArray, step: FloatArray, counts: BoolArray) -> None:
-        """Blades away from their stops: no moment, and their turns off the stop go on."""
-        where = np.flatnonzero(~near)
-        del counts
-        self.moment_N_m[where] = 0.0
-        part = self.contacts.take(where)
-        closing = np.zeros((where.size, self.model.units))
-        follow(part, self._moment(where, step, 1.0, (closing != 0.0, closing)))
-        self.contacts.put(where, part)
+        """Blades away from their stops, whose moment is 0: their turns off the stop go on."""
+        turned = np.where(near, 0.0, self._now.speed_rad_s * step)
+        rises = turn_on(self.contacts, turned, counts & ~near)
+        if np.any(rises):
+            time = (self.time_s + step)[:, None]
+            self.contacts.lift_off_s = np.where(rises, time, self.contacts.lift_off_s)
 
     def _press(self, where: NDArray[np.int64], push: Push, step: FloatArray, after: Array) -> None:
         """Sub-steps of cases on or near a stop; writes their state into the step's end."""
@@ -212,7 +222,7 @@ class Block:
             closing = np.abs(turned[1]) if both else -turned[1]
             follow(part, self._moment(where, step / parts, float(number), (on, closing)))
             self._watch.stops(seen, now.moment_N_m, counts, both_droop=both)
-            self._watch.flap(seen, turned[0], counts, time)
+            self._watch.flap(seen, (turned[0], turned[0]), counts, time)
             if 2 * number == parts:  # the step's end is looked at in any case
                 self._watch.tips(seen, now.x, azimuth, counts)
 

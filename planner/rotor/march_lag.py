@@ -38,13 +38,13 @@ class MarchLag:
         """The same for some of the cases."""
         kept = self.x[where]
         part = MarchLag(self._model, (kept.shape[0], kept.shape[1]), self._dtype)
-        part.x, part.stop_N_m, part._load = kept, self.stop_N_m[where], self._load[where]  # noqa: SLF001
+        part.x, part.stop_N_m, part._load = kept, self.stop_N_m[where], self._load[where]
         return part
 
     @property
-    def lag_rad(self) -> Array:
-        """Lag angle."""
-        return self.x[..., 0]
+    def from_middle_rad(self) -> Array:
+        """Lag angle from the middle of its stops."""
+        return self.x[..., 0] - self._dtype(self._model.middle_rad)
 
     def step(
         self,

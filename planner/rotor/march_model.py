@@ -41,6 +41,7 @@ class LagModel:
         first_moment_kg_m: Of one blade about it.
         laws: Lag stops: lead side low, lag side high.
         table: Steps of lag.
+        middle_rad: Middle of the stops' travel, from which lag is measured as an extreme.
     """
 
     hinge_m: float
@@ -48,6 +49,7 @@ class LagModel:
     first_moment_kg_m: float
     laws: StopLaws
     table: StepTable
+    middle_rad: float
 
 
 @dataclass(frozen=True, eq=False)
@@ -185,7 +187,9 @@ def _lag(rotor: Rotor, top_rad_s: float, settings: MarchSettings) -> LagModel | 
         np.ones(1),
         (top_rad_s, settings),
     )
-    return LagModel(hub.lag_hinge_m, inertia, first, _lag_laws(rotor), table)
+    stop = rotor.lag_stop
+    middle = 0.0 if stop is None else 0.5 * (stop.lead_angle_rad + stop.lag_angle_rad)
+    return LagModel(hub.lag_hinge_m, inertia, first, _lag_laws(rotor), table, middle)
 
 
 def _lag_laws(rotor: Rotor) -> StopLaws:

@@ -111,6 +111,23 @@ def start_free(
     contacts.lifted |= lifted
 
 
+def turn_on(contacts: Contacts, turned_rad: FloatArray, counts: BoolArray) -> BoolArray:
+    """Count turns of blades away from their stops.
+
+    Args:
+        contacts: To be carried on.
+        turned_rad: Azimuth turned, 0 where a blade may be on its stop, (cases,).
+        counts: Cases whose history has begun and whose blades are away, (cases,).
+
+    Returns:
+        Blades that have just been off for a whole turn for the first time, (cases, units).
+    """
+    contacts.free_rad += turned_rad[:, None]
+    rises: BoolArray = (contacts.free_rad >= TURN_RAD) & ~contacts.lifted & counts[:, None]
+    contacts.lifted |= rises
+    return rises
+
+
 def follow(contacts: Contacts, now: Moment) -> None:
     """Count touches up to an instant; nothing counts before the history begins."""
     counts = (now.time_s >= 0.0)[:, None]

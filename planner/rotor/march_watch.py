@@ -124,21 +124,25 @@ class Watch:
         return size
 
     def flap(
-        self, extremes: Extremes, rotation: Array, counts: BoolArray, time_s: FloatArray
+        self,
+        extremes: Extremes,
+        turned: tuple[Array, Array],
+        counts: BoolArray,
+        time_s: FloatArray,
     ) -> None:
-        """Take rotations at the hinge without built-in flap, (cases, units)."""
-        angle = rotation + self._model.unit.fixed_flap_rad
+        """Take what counts as flap, without its built-in part, at two instants, (cases, units)."""
+        fixed = self._model.unit.fixed_flap_rad
         where = counts[:, None]
-        rises = np.any((angle > extremes.highest_flap_rad) & where, axis=1)
-        if np.any(rises):
-            extremes.worst_s = np.where(rises, time_s, extremes.worst_s)
-        highest, lowest = extremes.highest_flap_rad, extremes.lowest_flap_rad
-        np.maximum(highest, angle, out=highest, where=where)
-        np.minimum(lowest, angle, out=lowest, where=where)
+        top = np.maximum(turned[0], turned[1]) + fixed
+        low = np.minimum(turned[0], turned[1]) + fixed
         if self._model.unit.n_blades > 1:
-            other = self._model.unit.fixed_flap_rad - rotation
-            np.maximum(highest, other, out=highest, where=where)
-            np.minimum(lowest, other, out=lowest, where=where)
+            top, low = np.maximum(top, 2.0 * fixed - low), np.minimum(low, 2.0 * fixed - top)
+        highest, lowest = extremes.highest_flap_rad, extremes.lowest_flap_rad
+        rises = (top > highest) & where
+        if np.any(rises):
+            extremes.worst_s = np.where(np.any(rises, axis=1), time_s, extremes.worst_s)
+            np.maximum(highest, top, out=highest, where=where)
+        np.minimum(lowest, low, out=lowest, where=where)
 
     def tips(
         self, extremes: Extremes, x: Array, azimuth_rad: FloatArray, counts: BoolArray
@@ -169,9 +173,20 @@ class Watch:
             np.maximum(extremes.up_N_m, -moment, out=extremes.up_N_m, where=where)
 
     @staticmethod
-    def lag(extremes: Extremes, lag_rad: Array, stop_N_m: Array, counts: BoolArray) -> None:
-        """Take lag angles and moments of the lag stops, (cases, blades)."""
-        where = counts[:, None]
-        np.maximum(extremes.lag_rad, np.abs(lag_rad), out=extremes.lag_rad, where=where)
-        size = np.abs(stop_N_m)
+    def lag(
+        extremes: Extremes, lag_rad: Array, stop_N_m: Array, counts: tuple[BoolArray, BoolArray]
+    ) -> None:
+        """Take moments of the lag stops, and lag where centrifugal force holds the blades.
+
+        At low speed a blade without a lag spring lies on its lag stop whenever speed changes.
+
+        Args:
+            extremes: To be widened.
+            lag_rad: Lag from the middle of its stops, (cases, blades).
+            stop_N_m: Moments of the lag stops, (cases, blades).
+            counts: Cases that count, and those that do at or above their counting speed.
+        """
+        fast = counts[1][:, None]
+        np.maximum(extremes.lag_rad, np.abs(lag_rad), out=extremes.lag_rad, where=fast)
+        size, where = np.abs(stop_N_m), counts[0][:, None]
         np.maximum(extremes.lag_stop_N_m, size, out=extremes.lag_stop_N_m, where=where)

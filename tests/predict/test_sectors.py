@@ -27,7 +27,7 @@ def winds(articulated):
         stand = dataclasses.replace(
             articulated.stand, hub_height_m=9.0, obstructions=tuple(obstructions)
         )
-        return sectors_of(site, stand, 8.0, 13.0)
+        return sectors_of(site, stand.hub_height_m, stand.obstructions, (8.0, 13.0))
 
     return of
 

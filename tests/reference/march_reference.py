@@ -23,7 +23,7 @@ if TYPE_CHECKING:
 
     FloatArray = NDArray[np.float64]
 
-SAMPLE_S = 2.5e-4
+SAMPLE_S = 1e-4
 """Longest time between two states that are kept of a fine run."""
 
 STRETCH_S = 1.0
@@ -237,6 +237,8 @@ class Contact:
     end_s: float
     peak_moment_N_m: float
     closing_rad_s: float
+    start_azimuth_rad: float
+    end_azimuth_rad: float
 
 
 def contacts(marched: Marched, *, up: bool = False, blade: int = 0) -> list[Contact]:
@@ -252,7 +254,8 @@ def contacts(marched: Marched, *, up: bool = False, blade: int = 0) -> list[Cont
         end = _crossing(time, over, last) if free else float(time[-1])
         largest = float(np.max(moment[first:last]))
         start = _crossing(time, over, first)
-        found.append(Contact(start, end, largest, abs(float(rate[first]))))
+        turned = np.interp([start, end], time, marched.state[0]).tolist()
+        found.append(Contact(start, end, largest, abs(float(rate[first])), *turned))
     return found
 
 

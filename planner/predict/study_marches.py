@@ -1,0 +1,225 @@
+"""Ramps, the stop and aborts, marched in gusts and turbulence: rows of what they come to."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from planner.methods.clearance import clearance_m
+from planner.model.results import Labels, Status
+from planner.predict.cases import air_of
+from planner.predict.march_parts import Part, RunParts, march_parts
+from planner.predict.march_pool import Crew, crew
+from planner.predict.march_runs import LEAST, MOST, Bench
+from planner.predict.march_winds import winds_of
+from planner.predict.rows import Rows
+from planner.predict.shaft import TAKES, shaft_of
+from planner.predict.study import Inputs, Study
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
+    from planner.model.plan import Segment
+    from planner.model.results import Prediction
+    from planner.model.rotor import Rotor
+    from planner.model.stand import Obstruction
+    from planner.predict.march_runs import Outcome
+
+_ID = "marches"
+QUANTITIES = (*MOST, *LEAST, "blade_clearance")
+OF_STOPS = frozenset(
+    {
+        "droop_stop_peak_moment",
+        "up_stop_peak_moment",
+        "contacts_after_lift_off",
+        "contact_highest_speed",
+        "contact_longest",
+        "contact_closing_speed",
+        "contact_energy",
+    }
+)
+OF_LAG = frozenset({"lag_peak", "lag_stop_peak_moment"})
+_NO_STOPS = "the hub has no flap stops; its root moment is judged instead"
+_HINGED = "the hub has a flap hinge; its stops are judged instead"
+_NO_LAG_STOP = "the rotor file states no lag stops"
+_UNRESOLVED = (
+    "a case did not stay finite, or its steps do not resolve the stiffness of the stop: state "
+    "the stiffness that the stop really has, or have it assessed otherwise"
+)
+_LEVEL = "clearance is computed for an upright or inverted shaft only"
+
+
+def run(inputs: Inputs) -> Mapping[str, Prediction]:
+    """March the run and write down what each part came to."""
+    shaft = shaft_of(inputs)
+    _ = shaft.friction_n_m  # without it no run-down is known
+    whole = RunParts(shaft, inputs["segments"], inputs["shutdown"], inputs["abort"])
+    with crew() as hands:
+        parts = march_parts(whole, bench_of(inputs, hands), inputs.progress)
+    return predictions_of(parts, inputs)
+
+
+def bench_of(inputs: Inputs, hands: Crew) -> Bench:
+    """What a run is marched with.
+
+    Raises:
+        NotAssessedError: winds, air, or the speed where the stops are left behind are not known.
+    """
+    air, rotor = air_of(inputs), inputs["rotor"]
+    winds = winds_of(
+        inputs["site"],
+        inputs["stand.hub_height_m"],
+        inputs["stand.obstructions"],
+        (air.wind_m_s, air.gust_m_s, 2.0 * rotor.blade.radius_m),
+    )
+    free = inputs.bounds("stop_free_speed")[2]
+    return Bench(rotor, inputs["stand.mounting"], air, winds, free, hands)
+
+
+def predictions_of(parts: Sequence[Part], inputs: Inputs) -> dict[str, Prediction]:
+    """Rows of all marched quantities; clearance at holds comes from their periodic flap."""
+    rows = {quantity: Rows(quantity, _ID) for quantity in QUANTITIES}
+    clearance = _clearance(inputs)
+    for part in parts:
+        for quantity in QUANTITIES:
+            _row(rows[quantity], part, inputs["rotor"], clearance)
+    for segment in inputs["segments"]:
+        if segment.kind == "hold":
+            _at_hold(rows["blade_clearance"], segment, inputs, clearance)
+    return {quantity: filled.prediction() for quantity, filled in rows.items()}
+
+
+def _row(rows: Rows, part: Part, rotor: Rotor, clearance: _Clearance) -> None:
+    """One part's row of one quantity."""
+    status, reason = _fault(rows.quantity, part, rotor, clearance)
+    if status is not Status.OK:
+        rows.flag(part.labels, status, reason, speed_rad_s=part.top_rad_s)
+        return
+    if rows.quantity == "blade_clearance":
+        value, worst = (
+            clearance.of_tip_m(_extreme(part.outcomes, "lowest_tip", at), part.collective_rad)
+            for at in ("nominal", "worst")
+        )
+        rows.add(part.labels, value, low=worst, speed_rad_s=part.top_rad_s)
+        return
+    value, worst = (_extreme(part.outcomes, rows.quantity, at) for at in ("nominal", "worst"))
+    low = high = worst
+    if rows.quantity == "thrust_peak":
+        low = min(outcome.other["thrust_peak"] for outcome in part.outcomes)
+    ends = (low, value) if rows.quantity in LEAST else (min(low, value), max(high, value))
+    rows.add(part.labels, value, low=ends[0], high=ends[1], speed_rad_s=part.top_rad_s)
+
+
+def _extreme(outcomes: Sequence[Outcome], quantity: str, at: str) -> float:
+    """Worst of all pieces of a part."""
+    values = [getattr(outcome, at)[quantity] for outcome in outcomes]
+    return min(values) if quantity in LEAST else max(values)
+
+
+def _fault(quantity: str, part: Part, rotor: Rotor, clearance: _Clearance) -> tuple[Status, str]:
+    """Why a part has no number of a quantity; OK where it has."""
+    for is_so, status, reason in (
+        (quantity in OF_STOPS and rotor.droop_stop is None, Status.NOT_APPLICABLE, _NO_STOPS),
+        (
+            quantity == "root_flap_peak_moment" and rotor.hub.kind != "hingeless",
+            Status.NOT_APPLICABLE,
+            _HINGED,
+        ),
+        (quantity in OF_LAG and rotor.lag_stop is None, Status.NOT_APPLICABLE, _NO_LAG_STOP),
+        (part.status is not Status.OK, part.status, part.reason),
+        (not all(o.converged for o in part.outcomes), Status.NOT_CONVERGED, _UNRESOLVED),
+        (quantity == "blade_clearance", *clearance.fault),
+    ):
+        if is_so:
+            return status, reason
+    return Status.OK, ""
+
+
+@dataclass(frozen=True, eq=False)
+class _Clearance:
+    """From the height of a tip to the least distance of the blade from anything."""
+
+    hinge_m: float
+    radius_m: float
+    chord_m: float
+    hub_height_m: float
+    obstructions: Sequence[Obstruction]
+    mounting: str
+
+    @property
+    def fault(self) -> tuple[Status, str]:
+        """Why there is no clearance; OK where there is."""
+        if self.mounting == "axis level":
+            return Status.OUTSIDE_VALIDITY, _LEVEL
+        return Status.OK, ""
+
+    def of_tip_m(self, tip_m: float, collective_rad: float) -> float:
+        """Clearance of a blade straight from hinge to tip, its trailing edge lowered by pitch."""
+        edge = tip_m - 0.75 * self.chord_m * abs(math.sin(collective_rad))
+        heights = np.array([[[0.0, edge]]])
+        places = self.obstructions
+        return float(
+            clearance_m(
+                heights,
+                np.array([self.hinge_m, self.radius_m]),
+                self.hub_height_m,
+                np.array([place.distance_m for place in places]),
+                np.array([place.height_m for place in places]),
+            )[0]
+        )
+
+
+def _clearance(inputs: Inputs) -> _Clearance:
+    rotor: Rotor = inputs["rotor"]
+    hub, table = rotor.hub, rotor.blade.stations
+    hinge = getattr(hub, "flap_hinge_m", getattr(hub, "root_m", 0.0))
+    return _Clearance(
+        hinge_m=float(hinge),
+        radius_m=rotor.blade.radius_m,
+        chord_m=float(np.max(table.chord_m)),
+        hub_height_m=inputs["stand.hub_height_m"],
+        obstructions=inputs["stand.obstructions"],
+        mounting=inputs["stand.mounting"],
+    )
+
+
+def _at_hold(rows: Rows, segment: Segment, inputs: Inputs, clearance: _Clearance) -> None:
+    """Clearance of the lowest periodic flap of a hold, as a straight blade."""
+    label, speed = Labels(segment=segment.id), segment.to_rad_s
+    flap = inputs.prior["flap_lowest"]
+    places = [i for i, labels in enumerate(flap.labels) if labels.segment in {"", segment.id}]
+    status = [flap.status[i] for i in places] or [Status.NOT_COMPUTED]
+    reasons = [flap.reasons[i] for i in places] or ["no flap was predicted for this hold"]
+    if clearance.fault[0] is not Status.OK:
+        rows.flag(label, *clearance.fault, speed_rad_s=speed)
+    elif status[0] is not Status.OK:
+        rows.flag(label, status[0], f"flap_lowest: {reasons[0]}", speed_rad_s=speed)
+    else:
+        length = clearance.radius_m - clearance.hinge_m
+        pitch = abs(segment.to_collective_rad) + segment.window.collective_rad
+        value, low = (
+            clearance.of_tip_m(length * math.sin(float(ends[places[0]])), pitch)
+            for ends in (flap.value, flap.low)
+        )
+        rows.add(label, value, low=low, speed_rad_s=speed)
+
+
+MARCHES = Study(
+    _ID,
+    1,
+    (
+        "site",
+        "segments",
+        "shutdown",
+        "abort",
+        "stand.hub_height_m",
+        "stand.obstructions",
+        *TAKES,
+    ),
+    ("air", "wind", "stops", "holds"),
+    run,
+    kept=True,
+)
