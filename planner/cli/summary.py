@@ -8,6 +8,9 @@ import sys
 import textwrap
 from typing import TYPE_CHECKING, Any
 
+from planner.paper.abort_causes import Aborts
+from planner.paper.gate import kept_gate, limit_words, speed_text
+from planner.paper.reading import Reading
 from planner.paper.texts import limit, toward_danger, worst_end
 
 if TYPE_CHECKING:
@@ -27,7 +30,7 @@ def headline(record: Mapping[str, Any]) -> str:
 
 
 def summary(record: Mapping[str, Any]) -> str:
-    """Verdict, findings with the worst first, and coverage."""
+    """Verdict, findings with the worst first, coverage, aborts by cause, and the wind gate."""
     width = max(NARROW, min(WIDE, shutil.get_terminal_size((NARROW, 24)).columns))
     rules = {rule["id"]: rule for rule in record["plan"]["rule_book"]["rules"]}
     units = {entry["id"]: entry for entry in record["vocabulary"]}
@@ -41,6 +44,7 @@ def summary(record: Mapping[str, Any]) -> str:
     for cell in record["coverage"]:
         text = f"{cell['hazard_class']}, {cell['where']}: {cell['closed_by'] or 'open'}"
         lines += _entry(cell["verdict"], text, width)
+    lines += [*_aborts(record, width), *_gate(record, width)]
     lines += [
         "",
         *textwrap.wrap(
@@ -51,6 +55,29 @@ def summary(record: Mapping[str, Any]) -> str:
     ]
     # paper glues units to their numbers with no-break spaces; a terminal wraps by itself
     return "\n".join(lines).replace("\N{NO-BREAK SPACE}", " ")
+
+
+def _aborts(record: Mapping[str, Any], width: int) -> list[str]:
+    """What aborts of each cause come to, and where the worst of them begins."""
+    lines = ["", "Aborts by cause"]
+    for found in Aborts(Reading(record)).verdicts:
+        worst = f", worst from {found.origin}" if found.origin else ""
+        by = f"; outside document {', '.join(found.documents)}" if found.documents else ""
+        lines += _entry(found.verdict.value, f"{found.cause}{worst}{by}", width)
+    return lines
+
+
+def _gate(record: Mapping[str, Any], width: int) -> list[str]:
+    """The wind gate, where one is kept for this very plan."""
+    gate = kept_gate(record)
+    if gate is None:
+        return []
+    lines = ["", "Wind gate, mean and gust at most"]
+    for sector in gate["sectors"]:
+        mean, gust = (speed_text(sector[key]) for key in ("mean_m_s", "gust_m_s"))
+        text = f"{sector['name']}: {mean}, {gust}; {limit_words(sector)}"
+        lines += textwrap.wrap(text, width, initial_indent="  ", subsequent_indent=" " * 15)
+    return lines
 
 
 def _finding(

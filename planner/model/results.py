@@ -117,6 +117,8 @@ class Requests:
 
     allowances: Mapping[str, tuple[float, float]]
     stop_free_margin: float | None
+    is_thrifty: bool = False
+    """Marches end with their search; for scans over many winds."""
 
 
 @dataclass(frozen=True)

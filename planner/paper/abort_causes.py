@@ -194,10 +194,15 @@ class Aborts:
         return f"{texts.NOT_ASSESSED}: {title}, {part.get('reason') or 'nothing closes it'}"
 
     def _documents(self, parts: list[Json]) -> tuple[str, ...]:
-        """Outside documents behind the findings, or behind the classes where no rule judged."""
+        """Outside documents behind the findings, or behind the classes where no rule judged.
+
+        Of several those count that are about aborts, or all where none is.
+        """
         behind = parts or self.coverage
-        numbers = [n for part in behind for n in part.get("closed_by", "").split(", ") if n]
-        return tuple(dict.fromkeys(n for n in numbers if n not in self.reading.rules))
+        listed = [n for part in behind for n in part.get("closed_by", "").split(", ") if n]
+        numbers = tuple(dict.fromkeys(n for n in listed if n not in self.reading.rules))
+        about = {d["number"] for d in self.reading.plan["documents"] if ABORT in d["where"]}
+        return tuple(n for n in numbers if n in about) or numbers
 
 
 _NONE = Shown(texts.DOES_NOT_APPLY, why="—")

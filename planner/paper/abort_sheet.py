@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 from planner.model.results import Verdict
 from planner.paper import texts
 from planner.paper.abort_causes import Aborts
-from planner.paper.abort_table import cause_boxes
+from planner.paper.abort_table import cause_boxes, causes_text
 from planner.paper.boxes import Box, Ruled, gap, heading, new_page, paragraph
 from planner.paper.ink import ABORT, BOLD, Face
 from planner.paper.limits import closers
@@ -57,7 +57,7 @@ def abort_boxes(reading: Reading, frame: Frame) -> list[Box]:
 def abort_facts(reading: Reading) -> tuple[tuple[str, str], ...]:
     """What an abort sets, the most urgent first: torque, collective, cyclic, brake."""
     abort = reading.plan["abort"]
-    rate = abort["collective_rate_rad_s"]
+    rate = abort.get("collective_rate_rad_s")
     how_fast = f"at {texts.setting(rate, 'deg/s')}" if rate is not None else "(no rate stated)"
     return (
         ("Torque", "OFF"),
@@ -74,7 +74,7 @@ def _brake(reading: Reading) -> str:
         return "DO NOT BRAKE: no brake speed is stated"
     share = texts.number(below / reading.plan["stand"]["full_speed_rad_s"], "%", "down")
     permitted = f"not above {texts.limit(below, 'rpm', 'at most')} ({share})"
-    if not abort["brake"]:
+    if not abort.get("brake"):
         return f"{permitted}; none ordered"
     start = abort["brake_from_rad_s"]
     if start > below:
@@ -87,10 +87,7 @@ def orders_text(aborts: Aborts) -> str:
     bad = [verdict for verdict in aborts.verdicts if not verdict.is_sound]
     if not bad:
         accepted = [v.cause for v in aborts.verdicts if v.verdict is Verdict.CAUTION]
-        with_care = (
-            f" To be accepted first: CAUTION for {', '.join(accepted)}." if accepted else ""
-        )
-        return f"{ONE_ORDER}{with_care}"
+        return f"{ONE_ORDER} CAUTION: {causes_text(aborts, accepted)}." if accepted else ONE_ORDER
     listed = "; ".join(f"{verdict.cause} ({verdict.words})" for verdict in bad)
     if len(bad) == len(aborts.verdicts) and len({verdict.words for verdict in bad}) == 1:
         listed = f"any cause ({bad[0].words})"

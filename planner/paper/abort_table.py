@@ -35,7 +35,7 @@ _ONCE = "1"
 def cause_boxes(aborts: Aborts, frame: Frame) -> list[Box]:
     """Times, contacts and resonances of each cause, with the verdict."""
     hold = aborts.highest_hold
-    head = ("Cause, verdict", "Time", "Contacts to expect", "Keep-out bands, no power")
+    head = ("Cause, verdict", "Time", "Contacts to expect", "Keep-out bands")
     table = Table(frame.shares(22, 25, 29, 24), head, ABORT, tail_face=ABORT)
     rows = [_cause_row(aborts, verdict, hold) for verdict in aborts.verdicts]
     return [
@@ -54,8 +54,8 @@ def _key(reading: Reading, hold: Json | None) -> str:
         return f"{texts.NOT_ASSESSED}: the record holds no hold."
     start = f"{hold['id']}, {speed_text(reading, top_rad_s(hold))}"
     return (
-        f"Time: from {start}, to 50, 30 and 10 % of that speed and to rest; in brackets the "
-        "longest of all rows and its row, where longer. Contacts and bands: worst of all rows."
+        f"Time: from {start}, to 50, 30, 10 % of it, to rest (longest of all rows). Contacts, "
+        "bands: worst of all rows; ×: sway of the stand over its unbalance."
     )
 
 
@@ -77,13 +77,18 @@ def _cause_row(aborts: Aborts, verdict: CauseVerdict, hold: Json | None) -> Row:
 def times_text(aborts: Aborts, cause: str, hold: Json | None) -> str:
     """Times from the highest hold, with the longest of all origins where it is another."""
     lines: list[str] = []
+    missing: dict[str, None] = {}
     for share, quantity in (*TIMES, ("rest", REST)):
         worst = aborts.worst(quantity, cause)
         own = aborts.shown(quantity, hold["id"], cause) if hold else worst.shown
         text = own.text if own.is_number else f"{own.text} ({own.why})"
-        if worst.shown.text != own.text:
+        if not own.is_number:
+            missing[text] = None
+        elif worst.shown.text != own.text:
             text += f" ({worst.shown.text}, {worst.origin})"
         lines.append(f"{share}: {text}")
+    if len(missing) == 1 and all(line.endswith(next(iter(missing))) for line in lines):
+        return next(iter(missing))
     return "\n".join(lines)
 
 
@@ -122,23 +127,21 @@ def _peak_text(aborts: Aborts, cause: str) -> str:
     peak = governing_peak(aborts.reading, lambda quantity: aborts.worst(quantity, cause).shown)
     if not peak.shown.is_number:
         return f"{peak.name} {peak.shown.text} ({peak.shown.why})".strip()
-    share = f", {peak.share_text} of its rating" if peak.share_text else ""
-    return f"{peak.name} {peak.shown.text}{share}"
+    return f"{peak.name} {peak.shown.text}, {peak.share_text} of its rating"
 
 
 def bands_text(aborts: Aborts, cause: str) -> str:
     """Turns inside each keep-out band, and the largest response of a stand mode."""
     lines: list[str] = []
     for band in aborts.reading.plan["keep_outs"]:
-        turns = aborts.worst("band_cycles", cause, band)
+        turns = aborts.worst("band_cycles", cause, band).shown
         answer = aborts.worst("band_amplification", cause, band)
-        if turns.shown.text == texts.DOES_NOT_APPLY:
+        if turns.text == texts.DOES_NOT_APPLY:
             continue
-        times = f"{answer.shown.text} × offset" if answer.shown.is_number else answer.shown.text
-        lines.append(
-            f"{band['id']} {band_text(band)}: {turns.shown.text}"
-            f"{' turns' if turns.shown.is_number else ''}, {answer.mode or 'stand'} {times}"
-        )
+        shown = f"{turns.text}{' turns' if turns.is_number else ''}"
+        mode = answer.mode.removeprefix("stand ") or "stand"
+        times = f"{answer.shown.text}{' ×' if answer.shown.is_number else ''}"
+        lines.append(f"{band['id']} {band_text(band)}: {shown}, {mode} {times}")
     return "\n".join(lines) or "none is passed"
 
 
@@ -154,11 +157,11 @@ def _said(aborts: Aborts) -> list[str]:
     for verdict in aborts.verdicts:
         for reason in verdict.against:
             reasons.setdefault(reason, []).append(verdict.cause)
-    said += [
-        f"{texts.sentence(f'{reason} ({causes_text(aborts, causes)})')}"
+    listed = [
+        texts.sentence(f"{reason} ({causes_text(aborts, causes)})")
         for reason, causes in reasons.items()
     ]
-    return said
+    return [*said, " ".join(listed)] if listed else said
 
 
 def causes_text(aborts: Aborts, causes: list[str]) -> str:
@@ -199,7 +202,7 @@ def _order(reading: Reading, verdict: CauseVerdict) -> str:
     """The actions of one cause in order, or what holds where they do not cover it."""
     below = reading.plan["stand"]["brake_below_rad_s"]
     brake = f"no brake above {texts.limit(below, 'rpm', 'at most')}" if below else "no brake"
-    move = "collective and cyclic as overleaf"
+    move = "collective and cyclic as stated"
     order = {
         COMMANDED: f"torque off; {move}; {brake}",
         FROZEN: f"torque off; leave the controls; {brake}",

@@ -105,15 +105,15 @@ def signature_boxes(reading: Reading, frame: Frame) -> list[Box]:
     rows = [
         Row(
             (Cell(meaning, bold=True), *(Cell() for _ in range(4))),
-            least_height=40.0,
+            least_height=34.0,
             keep_next=i < len(_SIGNATURES) - 1,
         )
         for i, meaning in enumerate(_SIGNATURES)
     ]
     digest = reading.record["files_digest"]
     said = (
-        f"The signatures hold for the files with SHA-256 digest {digest} only. The digest shows "
-        "that nothing was changed; it does not show who signed."
+        "The signatures hold only for the files whose digest (SHA-256, which shows change and not "
+        f"who signed) is {digest}."
     )
     return [
         heading("14  Cautions", frame.width),
@@ -126,9 +126,9 @@ def signature_boxes(reading: Reading, frame: Frame) -> list[Box]:
             BODY.bold,
             keep_next=True,
         ),
-        *table_boxes(table, rows),
+        paragraph(said, frame.width, keep_next=True),
         gap(3.0),
-        paragraph(said, frame.width),
+        *table_boxes(table, rows),
     ]
 
 

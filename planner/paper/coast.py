@@ -118,7 +118,7 @@ def coast_boxes(reading: Reading, frame: Frame) -> list[Box]:
 
 
 def _said(reading: Reading, ways: Sequence[Way]) -> str:
-    reaction = reading.plan["abort"]["reaction_time_s"]
+    reaction = reading.plan["abort"].get("reaction_time_s")
     said = "Times from power off, earliest to latest; between the speeds that were computed, "
     said += "from the earliest of the one before to the latest of the one after."
     if ways[0].planned:

@@ -24,7 +24,7 @@ def fan_pdf(record: Json, paper: str = "a4") -> bytes:
     """Print the fan chart with its crossings.
 
     Args:
-        record: a record of layout 1.
+        record: a record of the present layout.
         paper: ``a4`` or ``letter``.
 
     Raises:

@@ -244,9 +244,14 @@ def weather_boxes(reading: Reading, frame: Frame) -> list[Box]:
         paragraph(said, frame.width, keep_next=True),
         gap(3.0),
         *table_boxes(table, rows),
-        *(gate_boxes(reading, gate, frame) if gate else []),
+        *(_gate_part(reading, gate, frame) if gate else []),
         *_document_limits(reading, frame),
     ]
+
+
+def _gate_part(reading: Reading, gate: Json, frame: Frame) -> list[Box]:
+    title = heading("Computed wind gate", frame.width, level=1)
+    return [gap(), title, *gate_boxes(reading, gate, frame)]
 
 
 def _weather(site: Json, caps: tuple[float | None, float | None]) -> list[tuple[str, str, str]]:

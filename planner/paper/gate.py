@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from planner.paper import texts
-from planner.paper.boxes import Box, gap, heading, paragraph
+from planner.paper.boxes import Box, gap, paragraph
 from planner.paper.ink import BODY
 from planner.paper.tables import Table, fitted, plain_row, table_boxes
 
@@ -30,7 +30,7 @@ def kept_gate(record: Json) -> Json | None:
 
 
 def gate_boxes(reading: Reading, gate: Json, frame: Frame) -> list[Box]:
-    """Greatest mean wind and gust of each sector, with what sets them."""
+    """Verdict of the gate, then greatest mean wind and gust of each sector with what sets them."""
     table = Table(
         frame.shares(28, 17, 17, 38), ("Wind from", "Mean at most", "Gust at most", "Limited by")
     )
@@ -45,9 +45,7 @@ def gate_boxes(reading: Reading, gate: Json, frame: Frame) -> list[Box]:
     ]
     none = f"{texts.NOT_ASSESSED}: the gate holds no sector. Do not run."
     return [
-        gap(),
-        heading("Computed wind gate", frame.width, level=1),
-        paragraph(f"{texts.sentence(gate['verdict'])}", frame.width, BODY.bold, keep_next=True),
+        paragraph(texts.sentence(gate["verdict"]), frame.width, BODY.bold, keep_next=True),
         paragraph(f"{reading_words(gate)} {_LOWER}", frame.width, keep_next=True),
         gap(3.0),
         *(table_boxes(fitted(table, rows), rows) or [paragraph(none, frame.width, BODY.bold)]),
@@ -66,7 +64,7 @@ def reading_words(gate: Json) -> str:
 
 def sector_text(reading: Reading, name: str) -> str:
     """A sector by name, with its bearings where the plan states them."""
-    for sector in reading.plan["site"]["sectors"]:
+    for sector in reading.plan["site"].get("sectors", ()):
         if sector["name"] == name:
             ends = (texts.setting(sector[key], "deg") for key in ("from_rad", "to_rad"))
             return f"{name} ({' to '.join(ends)})"
@@ -75,7 +73,7 @@ def sector_text(reading: Reading, name: str) -> str:
 
 def speed_text(speed_m_s: float | None) -> str:
     """A wind speed that must not be passed, in panel units, rounded down."""
-    if speed_m_s is None:
+    if speed_m_s is None or speed_m_s < 0.0:
         return _NO_WIND
     shown = texts.number(speed_m_s, "m/s", "down")
     return f"{shown} ({texts.number(speed_m_s, 'kt', 'down')})"

@@ -255,7 +255,8 @@ class Reading:
             margins.append(margin)
         if not margins:
             return said
-        return texts.number(min(margins), self.vocabulary[quantities[0]]["unit"], "down")
+        unit = next(self.vocabulary[q]["unit"] for q in quantities if q in self.vocabulary)
+        return texts.number(min(margins), unit, "down")
 
     def documents_behind(self, segment_id: str, quantities: Iterable[str] = ()) -> list[str]:
         """Outside documents that a stretch's verdict rests on, each once.

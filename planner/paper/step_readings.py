@@ -12,6 +12,7 @@ if TYPE_CHECKING:
     from planner.paper.reading import Reading, Shown
 
 _GAPS = (("Droop gap", "droop_stop_clearance"), ("Up gap", "up_stop_clearance"))
+_GAP_IDS = tuple(quantity for _, quantity in _GAPS)
 _WATCHED = (*_GAPS, ("Thrust", "thrust"), ("Torque", "torque"), ("Power", "power"))
 _ROOT = ("Root", "root_flap_moment")
 _FLAP = ("flap_lowest", "flap_highest")
@@ -32,7 +33,7 @@ def hold_readings(reading: Reading, segment_id: str) -> list[SubRow]:
     """Readings of a hold: flap and both gaps, or the root, then what the stand carries."""
     watched = (_ROOT, *_WATCHED) if is_hingeless(reading) else _WATCHED
     return [
-        _flap(reading, segment_id, _FLAP),
+        _flap(reading, segment_id, _FLAP, _FLAP),
         *(
             _one(reading, name, quantity, segment_id)
             for name, quantity in watched
@@ -42,11 +43,18 @@ def hold_readings(reading: Reading, segment_id: str) -> list[SubRow]:
 
 
 def moving_readings(reading: Reading, segment_id: str) -> list[SubRow]:
-    """Readings of a ramp or the stop: marched flap, stop and contacts, and torque."""
-    rows = [_flap(reading, segment_id, _MARCHED), _stop(reading, segment_id)]
+    """Readings of a ramp or the stop: marched flap, stop and contacts, and torque.
+
+    A record of before ramps were marched has their periodic flap only.
+    """
+    torque = _one(reading, "Torque", "torque", segment_id)
+    if _MARCHED[0] not in reading.record["predictions"]:
+        return [_flap(reading, segment_id, _FLAP, (*_FLAP, *_GAP_IDS)), torque]
+    judged = (*_MARCHED, *_GAP_IDS)
+    rows = [_flap(reading, segment_id, _MARCHED, judged), _stop(reading, segment_id)]
     if not is_hingeless(reading):
         rows.append(_contact(reading, segment_id))
-    return [*rows, _one(reading, "Torque", "torque", segment_id)]
+    return [*rows, torque]
 
 
 def is_hingeless(reading: Reading) -> bool:
@@ -54,25 +62,20 @@ def is_hingeless(reading: Reading) -> bool:
     return bool(reading.plan["rotor"]["hub"]["kind"] == "hingeless")
 
 
-def _flap(reading: Reading, segment_id: str, ends: tuple[str, str]) -> SubRow:
+def _flap(
+    reading: Reading, segment_id: str, ends: tuple[str, str], judged: tuple[str, ...]
+) -> SubRow:
+    """Flap with its margin; on the way it stands for both gaps, which at holds have rows."""
     low, high = (reading.shown(quantity, segment_id) for quantity in ends)
-    margin = _flap_margin(reading, segment_id, ends)
+    margin = reading.margin(segment_id, *judged)
+    if margin == _NO_LIMIT:
+        where = "see stop" if ends == _MARCHED else "see gaps"
+        margin = "see root" if is_hingeless(reading) else where
     if not (low.is_number and high.is_number):
         return _missing("Flap", high if low.is_number else low, margin)
     predicted = texts.span(low.value, high.value, "deg")
     band = texts.hold_band(low.low, high.high, "deg")
     return (Cell("Flap"), Cell(predicted), Cell(band), Cell(margin), Cell())
-
-
-def _flap_margin(reading: Reading, segment_id: str, ends: tuple[str, str]) -> str:
-    """Margin of the flap itself; on the way it stands for both gaps, at holds they have rows."""
-    gaps = tuple(quantity for _, quantity in _GAPS)
-    margin = reading.margin(segment_id, *ends, *(gaps if ends == _MARCHED else ()))
-    if margin != _NO_LIMIT:
-        return margin
-    if is_hingeless(reading):
-        return "see root"
-    return "see stop" if ends == _MARCHED else "see gaps"
 
 
 def _stop(reading: Reading, segment_id: str) -> SubRow:

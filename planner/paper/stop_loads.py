@@ -21,24 +21,20 @@ _NAMES = dict(zip(PEAKS, ("droop", "up", "root"), strict=True))
 class Peak:
     """A peak moment and the rating that it is held against."""
 
-    quantity: str
+    name: str
+    """Which stop, or the root; empty where there is neither."""
     shown: Shown
-    rating_N_m: float | None
-
-    @property
-    def name(self) -> str:
-        """Which stop, or the root."""
-        return _NAMES.get(self.quantity, "")
+    rating_N_m: float = 1.0
 
     @property
     def share(self) -> float:
-        """Share of the rating; without a rating the moment itself."""
-        return self.shown.high / (self.rating_N_m or 1.0)
+        """Share of the rating."""
+        return self.shown.high / self.rating_N_m
 
     @property
     def share_text(self) -> str:
-        """Share of the rating rounded up; empty without a rating."""
-        return texts.number(self.share, "%", "up") if self.rating_N_m else ""
+        """Share of the rating, rounded up."""
+        return texts.number(self.share, "%", "up")
 
 
 def governing_peak(reading: Reading, shown_of: Callable[[str], Shown]) -> Peak:
@@ -48,20 +44,22 @@ def governing_peak(reading: Reading, shown_of: Callable[[str], Shown]) -> Peak:
         reading: the record.
         shown_of: gives the number of a quantity at the place that is asked for.
     """
-    every = [Peak(quantity, shown_of(quantity), rating(reading, quantity)) for quantity in PEAKS]
-    found = [peak for peak in every if peak.shown.text != texts.DOES_NOT_APPLY]
+    ratings = {quantity: _rating(reading, quantity) for quantity in PEAKS}
+    found = [
+        Peak(_NAMES[quantity], shown_of(quantity), rating)
+        for quantity, rating in ratings.items()
+        if rating
+    ]
     missing = next((peak for peak in found if not peak.shown.is_number), None)
-    nothing = Peak("", Shown(texts.NOT_ASSESSED, why="no stop is judged"), None)
+    nothing = Peak("", Shown(texts.NOT_ASSESSED, why="no stop has a rating"))
     return missing or max(found, key=lambda peak: peak.share, default=nothing)
 
 
-def rating(reading: Reading, quantity: str) -> float | None:
+def _rating(reading: Reading, quantity: str) -> float | None:
     """The rating of a stop or of a hingeless root; None where there is none."""
     rotor = reading.plan["rotor"]
-    found: float | None
     if quantity == PEAKS[2]:
-        found = rotor["hub"].get("root_moment_rating_N_m")
-    else:
-        stop = rotor[quantity.removesuffix("_peak_moment")]
-        found = stop["moment_rating_N_m"] if stop else None
-    return found
+        root: float | None = rotor["hub"].get("root_moment_rating_N_m")
+        return root
+    stop = rotor[quantity.removesuffix("_peak_moment")]
+    return float(stop["moment_rating_N_m"]) if stop else None

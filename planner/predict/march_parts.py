@@ -10,8 +10,16 @@ import numpy as np
 from planner.model.plan import ABORT_CAUSES
 from planner.model.results import Labels, Status
 from planner.predict.histories import own_run_up_of, ramp_history, run_downs, stop_order
-from planner.predict.march_runs import Outcome, outcomes
-from planner.predict.march_tracks import Abort, AbortTracks, Source, Track, distinct, track_of
+from planner.predict.march_runs import Searched, search, settle
+from planner.predict.march_tracks import (
+    Abort,
+    AbortTracks,
+    Source,
+    Track,
+    distinct,
+    low_speed_rad_s,
+    pieces_of,
+)
 from planner.predict.shaft import ends_of
 from planner.predict.study import NotAssessedError
 from planner.rotor.speed_history import Controls
@@ -20,8 +28,10 @@ if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
 
     from planner.model.plan import AbortActions, Segment, Shutdown
+    from planner.predict.march_outcome import Outcome
     from planner.predict.march_runs import Bench
     from planner.predict.shaft import Shaft, Way
+    from planner.rotor.speed_history import History
 
 WORST_WITHIN = (0.05, 0.95)
 """Shares of a ramp's time within which its worst moment is taken as the beginning of an abort."""
@@ -70,18 +80,22 @@ def march_parts(
     """
     cyclics = run.shaft.found_cyclics(run.walk)
     ways = [(segment, ends_of(segment, cyclics)) for segment in run.walk]
-    tracks = {w[0].id: _ramp(w, run, bench) for w in ways if w[0].kind != "hold"}
-    seen = _march([t for t in tracks.values() if isinstance(t, Track)], bench, progress, "ramps")
+    low = low_speed_rad_s(bench.free_rad_s, bench.rotor.droop_stop, _brakes(run))
+    tracks = {w[0].id: _ramp(w, run, low) for w in ways if w[0].kind != "hold"}
+    ramps = _search(
+        [piece for found in tracks.values() for piece in found.pieces], bench, progress, "ramps"
+    )
+    sources = [_source(way, tracks.get(way[0].id), ramps) for way in ways if way[0].kind != "stop"]
+    found = AbortTracks(run.shaft, run.abort, low, sources).aborts(ABORT_CAUSES)
+    aborts = _search([t for one in found for t in one.tracks], bench, progress, "aborts")
+    seen = _settled([ramps, aborts], bench, progress)
     parts = [
         _ramp_part(segment, tracks[segment.id], seen)
         for segment, _ in ways
         if segment.id in tracks
     ]
-    sources = [_source(way, tracks.get(way[0].id), seen) for way in ways if way[0].kind != "stop"]
-    found = AbortTracks(run.shaft, run.abort, bench.free_rad_s, sources).aborts(ABORT_CAUSES)
-    ended = _march([t for one in found for t in one.tracks], bench, progress, "aborts")
     tops = {segment.id: segment.top_rad_s for segment in run.walk}
-    parts += [_abort_part(abort, ended, tops[abort.segment]) for abort in found]
+    parts += [_abort_part(abort, seen, tops[abort.segment]) for abort in found]
     resting = [source.segment for source in sources if source.speed_rad_s <= 0.0]
     parts += [
         Part(Labels(segment=name, state=cause), 0.0, (), Status.NOT_APPLICABLE, AT_REST)
@@ -91,11 +105,27 @@ def march_parts(
     return parts
 
 
-_NoTrack = tuple[Status, str]
+@dataclass(frozen=True, eq=False)
+class _Ramp:
+    """A ramp or the stop: its history in pieces, or why there is none."""
+
+    history: History | None = None
+    pieces: tuple[Track, ...] = ()
+    status: Status = Status.OK
+    reason: str = ""
 
 
-def _ramp(way: Way, run: RunParts, bench: Bench) -> Track | _NoTrack:
-    """The track of a ramp or of the stop, or why there is none."""
+def _brakes(run: RunParts) -> tuple[float, float]:
+    """Speeds from which the brake acts in the stop and in aborts."""
+    stop, abort = run.shutdown, run.abort
+    return (
+        run.shaft.brake_from_rad_s(stop.brake_from_rad_s, is_used=stop.brake),
+        run.shaft.brake_from_rad_s(abort.brake_from_rad_s, is_used=abort.brake),
+    )
+
+
+def _ramp(way: Way, run: RunParts, low_rad_s: float) -> _Ramp:
+    """A ramp or the stop in pieces."""
     segment, controls = way
     try:
         if segment.kind == "stop" and not run.shutdown.powered:
@@ -105,28 +135,51 @@ def _ramp(way: Way, run: RunParts, bench: Bench) -> Track | _NoTrack:
             up = own_run_up_of(run.shaft, segment, controls) if segment.own_run_up else None
             history = ramp_history(segment, controls, up)
     except NotAssessedError as refusal:
-        return refusal.status, str(refusal)
-    return track_of(f"ramp {segment.id}", history, bench.free_rad_s)
+        return _Ramp(status=refusal.status, reason=str(refusal))
+    return _Ramp(history, pieces_of(history, low_rad_s))
 
 
-def _march(
-    tracks: Sequence[Track],
-    bench: Bench,
-    progress: Callable[[str, float], None],
-    what: str,
+@dataclass(frozen=True, eq=False)
+class _Found:
+    """A search, with the place of each track in it by the track's identity."""
+
+    searched: Searched
+    place: Mapping[int, int]
+
+
+def _search(
+    tracks: Sequence[Track], bench: Bench, progress: Callable[[str, float], None], what: str
+) -> _Found:
+    """March tracks, each different one once."""
+    kept, place = distinct(tracks)
+    words = f"marching {what}: {len(kept)} histories"
+    return _Found(search(bench, kept, lambda share: progress(words, share)), place)
+
+
+def _settled(
+    found: Sequence[_Found], bench: Bench, progress: Callable[[str, float], None]
 ) -> Mapping[int, Outcome]:
-    """March tracks, each different one once; outcomes by the identity of the track."""
-    kept, where = distinct(tracks)
-    words = f"marching {what}, {len(kept)} histories"
-    found = outcomes(bench, kept, lambda share: progress(words, share))
-    return {key: found[place] for key, place in where.items()}
+    """Outcomes of all tracks by their identity, looked at again unless the bench is thrifty."""
+    searches = [one.searched for one in found]
+    if bench.is_thrifty:
+        results = [outcome for one in searches for outcome in one.outcomes()]
+    else:
+        words = "marching the worst cases again"
+        results = settle(searches, lambda share: progress(words, share))
+    seen: dict[int, Outcome] = {}
+    before = 0
+    for one in found:
+        seen |= {key: results[before + place] for key, place in one.place.items()}
+        before += len(one.searched.tracks)
+    return seen
 
 
-def _ramp_part(segment: Segment, track: Track | _NoTrack, seen: Mapping[int, Outcome]) -> Part:
+def _ramp_part(segment: Segment, ramp: _Ramp, seen: Mapping[int, Outcome]) -> Part:
     bare = Part(Labels(segment=segment.id), segment.top_rad_s)
-    if not isinstance(track, Track):
-        return replace(bare, status=track[0], reason=track[1])
-    return replace(bare, outcomes=(seen[id(track)],), collective_rad=_collective([track]))
+    if ramp.status is not Status.OK:
+        return replace(bare, status=ramp.status, reason=ramp.reason)
+    found = tuple(seen[id(piece)] for piece in ramp.pieces)
+    return replace(bare, outcomes=found, collective_rad=_collective(ramp.pieces))
 
 
 def _abort_part(abort: Abort, ended: Mapping[int, Outcome], top_rad_s: float) -> Part:
@@ -141,30 +194,26 @@ def _collective(tracks: Sequence[Track]) -> float:
     return max(float(np.max(np.abs(track.history.collective_rad))) for track in tracks)
 
 
-def _source(way: Way, track: Track | _NoTrack | None, seen: Mapping[int, Outcome]) -> Source:
+def _source(way: Way, ramp: _Ramp | None, ramps: _Found) -> Source:
     """Where aborts from a segment begin: at a hold's state, at a ramp's worst moment.
 
     The worst moment is when a blade flapped highest; the fast end where the ramp itself could not
     be marched.
     """
     segment, (start, end) = way
-    if segment.kind == "hold":
+    if ramp is None:
         return Source(segment.id, segment.to_rad_s, end, (end,))
-    both = tuple(
-        controls
-        for controls, speed in ((start, segment.from_rad_s), (end, segment.to_rad_s))
-        if speed > 0.0
-    )
-    if not isinstance(track, Track):
+    ends = ((start, segment.from_rad_s), (end, segment.to_rad_s))
+    both = tuple(controls for controls, speed in ends if speed > 0.0)
+    history = ramp.history
+    if history is None:
         falls = segment.from_rad_s > segment.to_rad_s
         return Source(segment.id, segment.top_rad_s, start if falls else end, both)
-    history = track.history
     length = segment.duration_s if segment.duration_s > 0.0 else history.duration_s
     earliest, latest = (share * length for share in WORST_WITHIN)
-    when = min(max(seen[id(track)].when_s, earliest), latest)
-    time = history.time_s
-    speed, pitch, cosine, sine = (
-        float(np.interp(when, time, table))
+    when = min(max(_worst_moment_s(ramp.pieces, ramps), earliest), latest)
+    speed, *controls = (
+        float(np.interp(when, history.time_s, table))
         for table in (
             history.speed_rad_s,
             history.collective_rad,
@@ -172,4 +221,12 @@ def _source(way: Way, track: Track | _NoTrack | None, seen: Mapping[int, Outcome
             history.cyclic_sine_rad,
         )
     )
-    return Source(segment.id, speed, Controls(pitch, cosine, sine), both)
+    return Source(segment.id, speed, Controls(*controls), both)
+
+
+def _worst_moment_s(pieces: Sequence[Track], ramps: _Found) -> float:
+    """When a blade flapped highest, from the begin of the history."""
+    places = [ramps.place[id(piece)] for piece in pieces]
+    highest = [ramps.searched.highest_flap(place) for place in places]
+    worst = int(np.argmax([flap for flap, _ in highest]))
+    return pieces[worst].begins_s + highest[worst][1]

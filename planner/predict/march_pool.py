@@ -29,8 +29,6 @@ if TYPE_CHECKING:
 
 WORTH_BLADE_STEPS = 2e6
 """Work below this is done in the process itself: starting others takes about a second."""
-DEALS = 3
-"""Parts a process gets, so that one slow part does not leave the others waiting."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -90,7 +88,7 @@ class Crew:
             result = march_cases(job, cases)
             progress(1.0)
             return result
-        parts = dealt(work, DEALS * self._workers)
+        parts = dealt(work, self._workers)
         try:
             results = self._all(job, [(part, cases.take(part)) for part in parts], progress)
         except (BrokenProcessPool, OSError):
@@ -145,10 +143,12 @@ def blade_steps(job: Job, cases: MarchCases) -> NDArray[np.float64]:
 
 
 def dealt(work: NDArray[np.float64], n_parts: int) -> list[IndexArray]:
-    """Cases in parts of about equal work, those of like length together."""
+    """Cases dealt out in turns from the longest to the shortest, so that all parts end together.
+
+    A part is marched side by side: the fewer parts, the fewer steps in all.
+    """
     order = np.argsort(-work, kind="stable")
-    edges = np.searchsorted(np.cumsum(work[order]), np.sum(work) * np.arange(1, n_parts) / n_parts)
-    return [part for part in np.split(order, edges) if part.size]
+    return [order[i::n_parts] for i in range(n_parts) if order[i::n_parts].size]
 
 
 def _put_together(results: Sequence[MarchResult], order: IndexArray) -> MarchResult:

@@ -9,24 +9,37 @@ import numpy as np
 
 from planner.methods.gusts import refined
 from planner.predict.fineness import STATIONS
+from planner.predict.march_outcome import (
+    GOVERNING,
+    REFINED,
+    Lane,
+    Numbers,
+    Outcome,
+    all_converged,
+    flap_inertia_kg_m2,
+    joined,
+    lanes_of_track,
+    outcome_of,
+    replaced,
+    split_at,
+    worst_lane,
+    worst_of_cases,
+)
 from planner.predict.march_pool import Job
 from planner.predict.march_winds import GUST_LENGTHS, gust_peaks_s
-from planner.rotor.blade_views import flap_inertia
 from planner.rotor.march_case import Histories, MarchCases, MarchSettings, make_march_cases
-from planner.rotor.setup import hub_freedom
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Sequence
+    from collections.abc import Callable, Mapping, Sequence
 
     from numpy.typing import NDArray
 
     from planner.model.rotor import Rotor
     from planner.model.stand import Mounting
-    from planner.predict.cases import Air, AirState
+    from planner.predict.cases import Air
     from planner.predict.march_pool import Crew
     from planner.predict.march_tracks import Track
     from planner.predict.march_winds import Ride, Winds
-    from planner.rotor.march import MarchResult
 
     FloatArray = NDArray[np.float64]
 
@@ -34,68 +47,9 @@ SEARCH = MarchSettings(steps_per_turn=24, longest_step_s=0.01, substeps=4, singl
 """For the search; within 0.05 deg of flap and 1 % of a stop moment of the settings below."""
 PRINTED = MarchSettings(steps_per_turn=48, longest_step_s=0.01, substeps=8)
 """For what is printed. DEVELOPERS.md tells the convergence study."""
-LOWEST_SPEED_RATIO = 1.2
-"""Margin of the step table over the highest speed marched."""
-
-MOST = (
-    "highest_flap_marched",
-    "droop_stop_peak_moment",
-    "up_stop_peak_moment",
-    "contacts_after_lift_off",
-    "contact_highest_speed",
-    "contact_longest",
-    "contact_closing_speed",
-    "contact_energy",
-    "highest_tip",
-    "lag_peak",
-    "lag_stop_peak_moment",
-    "root_flap_peak_moment",
-    "hub_moment_peak",
-    "thrust_peak",
-)
-"""Quantities whose greatest value is the worst."""
-LEAST = ("lowest_flap_marched", "lowest_tip")
-"""Quantities whose least value is the worst."""
-GOVERNING = (
-    "highest_flap_marched",
-    "lowest_flap_marched",
-    "droop_stop_peak_moment",
-    "hub_moment_peak",
-    "contact_closing_speed",
-)
-"""A track's worst case of each of these is marched again in double precision."""
-REFINED = ("highest_flap_marched", "droop_stop_peak_moment")
-"""The gusts about the worst case of each of these are searched more finely."""
-
-
-@dataclass(frozen=True)
-class Lane:
-    """One case: a track in one wind and air."""
-
-    track: int
-    ride: Ride
-    air: AirState
-
-
-@dataclass(frozen=True, eq=False)
-class Outcome:
-    """What a track comes to over all its winds.
-
-    Attributes:
-        nominal: Quantity to its worst value in nominal air.
-        worst: Quantity to its worst value over all cases.
-        other: Quantity to its mildest extreme; the least thrust for thrust.
-        converged: Every case was marched to its end and resolved its stops.
-        when_s: When the highest flap came in the worst case for it.
-        governing: The case with the highest flap.
-    """
-
-    nominal: dict[str, float]
-    worst: dict[str, float]
-    other: dict[str, float]
-    converged: bool
-    when_s: float
-    governing: Lane
+SCAN = MarchSettings(steps_per_turn=16, longest_step_s=0.015, substeps=6, single=True)
+"""For the search of a thrifty bench; within 0.02 deg of flap and 1 % of a stop moment of the search
+above (computed on the articulated sample in 9 m/s), in three quarters of its time."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -108,6 +62,8 @@ class Bench:
     winds: Winds
     free_rad_s: float
     crew: Crew
+    is_thrifty: bool = False
+    """The search alone counts: for scans over many winds."""
 
     def job(self, tracks: Sequence[Track], settings: MarchSettings) -> Job:
         """These tracks as a job for the crew."""
@@ -123,16 +79,39 @@ class Bench:
         )
 
 
-def outcomes(
-    bench: Bench,
-    tracks: Sequence[Track],
-    progress: Callable[[float], None] = lambda _: None,
-) -> list[Outcome]:
-    """March all tracks in all their winds.
+@dataclass(frozen=True, eq=False)
+class Searched:
+    """Tracks after the search: every case in single precision, both ends of the allowance.
 
-    First at both ends of the air load allowance in single precision; then, also in single
-    precision, finer gusts about the worst ones, and the worst cases in nominal air; then the worst
-    cases again in double precision, whose numbers take the place of the others.
+    Attributes:
+        bench: What they were marched with.
+        tracks: The tracks, none twice.
+        lanes: The cases.
+        numbers: Worst numbers of each case.
+    """
+
+    bench: Bench
+    tracks: tuple[Track, ...]
+    lanes: tuple[Lane, ...]
+    numbers: Mapping[str, FloatArray]
+
+    def highest_flap(self, track: int) -> tuple[float, float]:
+        """Highest flap of a track, and when it came."""
+        worst = worst_lane(self.numbers, lanes_of_track(self.lanes, track), "highest_flap_marched")
+        flap, when = self.numbers["highest_flap_marched"], self.numbers["when"]
+        return float(flap[worst]), float(when[worst])
+
+    def outcomes(self) -> list[Outcome]:
+        """What the tracks came to by the search alone; nominal stands for the worst."""
+        good = all_converged(len(self.tracks), [(self.lanes, self.numbers)])
+        both = (self.lanes, self.numbers)
+        return [outcome_of(both, both, i, converged=good[i]) for i in range(len(self.tracks))]
+
+
+def search(
+    bench: Bench, tracks: Sequence[Track], progress: Callable[[float], None] = lambda _: None
+) -> Searched:
+    """March tracks in all their winds at both ends of the air load allowance.
 
     Args:
         bench: What they are marched with.
@@ -140,36 +119,78 @@ def outcomes(
         progress: Called with the share of the work that is done.
 
     Returns:
-        One outcome a track.
+        The tracks with all their cases.
     """
-    if not tracks:
-        return []
-    first = [
+    lanes = tuple(
         Lane(i, ride, end)
         for i, track in enumerate(tracks)
-        for ride in bench.winds.rides(track, bench.free_rad_s)
+        for ride in _rides(bench, track)
         for end in bench.air.ends
-    ]
-    seen = _marched(bench, tracks, first, SEARCH, lambda share: progress(0.6 * share))
-    finer = [lane for i in range(len(tracks)) for lane in _finer(bench, tracks, first, seen, i)]
-    lanes = [*first, *finer]
-    if finer:
-        seen = _joined(seen, _marched(bench, tracks, finer, SEARCH, lambda _: None))
-    progress(0.75)
-    chosen = [lane for i in range(len(tracks)) for lane in _governing(lanes, seen, i)]
-    nominal = [replace(lane, air=bench.air.nominal) for lane in chosen]
-    middle = _marched(bench, tracks, nominal, SEARCH, lambda _: None)
-    progress(0.85)
-    last = _marched(bench, tracks, chosen, PRINTED, lambda share: progress(0.85 + 0.15 * share))
-    all_converged = _all_of(tracks, [(lanes, seen), (nominal, middle), (chosen, last)])
-    whole = _replaced((lanes, seen), (chosen, last))
-    return [
-        _outcome((lanes, whole), (nominal, middle), i, converged=all_converged[i])
-        for i in range(len(tracks))
-    ]
+    )
+    settings = SCAN if bench.is_thrifty else SEARCH
+    numbers = _marched(bench, tracks, lanes, settings, progress) if lanes else {}
+    return Searched(bench, tuple(tracks), lanes, numbers)
 
 
-_Numbers = dict[str, "FloatArray"]
+def _rides(bench: Bench, track: Track) -> list[Ride]:
+    """Winds of a track, each once: sectors of like wind differ in their turbulence alone."""
+    winds = [(s.mean_m_s, s.gust_m_s, s.upflow_slope) for s in bench.winds.sectors]
+    rides = bench.winds.rides(track, bench.free_rad_s)
+    return list(
+        dict.fromkeys(
+            ride if ride.series >= 0 else replace(ride, sector=winds.index(winds[ride.sector]))
+            for ride in rides
+        )
+    )
+
+
+def settle(
+    found: Sequence[Searched], progress: Callable[[float], None] = lambda _: None
+) -> list[Outcome]:
+    """Look again at what searches found worst.
+
+    Finer gusts about the worst ones and the worst cases in nominal air are marched, still in
+    single precision; then the worst cases in double precision, whose numbers take the place of
+    the others.
+
+    Args:
+        found: Searches with the same bench.
+        progress: Called with the share of the work that is done.
+
+    Returns:
+        One outcome a track, search after search.
+    """
+    if not any(one.tracks for one in found):
+        return []
+    whole = _together(found)
+    bench, tracks, first, seen = whole.bench, whole.tracks, whole.lanes, whole.numbers
+    places = range(len(tracks))
+    finer = [lane for i in places for lane in _finer(whole, i)]
+    likely = [lane for i in places for lane in _governing(first, seen, i)]
+    nominal = [replace(lane, air=bench.air.nominal) for lane in likely]
+    both = _marched(bench, tracks, [*finer, *nominal], SEARCH, lambda s: progress(0.4 * s))
+    again, middle = split_at(both, len(finer))
+    lanes, seen = (*first, *finer), joined(seen, again)
+    chosen = [lane for i in places for lane in _governing(lanes, seen, i)]
+    last = _marched(bench, tracks, chosen, PRINTED, lambda share: progress(0.4 + 0.6 * share))
+    good = all_converged(len(tracks), [(lanes, seen), (nominal, middle), (chosen, last)])
+    merged = replaced((lanes, seen), (chosen, last))
+    return [outcome_of((lanes, merged), (nominal, middle), i, converged=good[i]) for i in places]
+
+
+def _together(found: Sequence[Searched]) -> Searched:
+    """Searches one after the other as one."""
+    lanes: list[Lane] = []
+    tracks: list[Track] = []
+    numbers = next(one.numbers for one in found if one.tracks)
+    numbers = {name: numbers[name][:0] for name in numbers}
+    for one in found:
+        if not one.tracks:
+            continue
+        lanes += [replace(lane, track=lane.track + len(tracks)) for lane in one.lanes]
+        tracks += one.tracks
+        numbers = joined(numbers, one.numbers)
+    return Searched(found[0].bench, tuple(tracks), tuple(lanes), numbers)
 
 
 def _marched(
@@ -178,7 +199,7 @@ def _marched(
     lanes: Sequence[Lane],
     settings: MarchSettings,
     progress: Callable[[float], None],
-) -> _Numbers:
+) -> Numbers:
     """Worst numbers of each lane; each different lane is marched once."""
     different: dict[Lane, int] = {}
     where = np.array([different.setdefault(lane, len(different)) for lane in lanes])
@@ -227,66 +248,17 @@ def stacked(tracks: Sequence[Track]) -> Histories:
     )
 
 
-def flap_inertia_kg_m2(rotor: Rotor) -> float:
-    """Moment of inertia of one blade about its flap hinge or equivalent hinge."""
-    hinge = hub_freedom(rotor).hinge_m
-    return float(flap_inertia(rotor.blade, hinge).second_moment_kg_m2)
-
-
-def worst_of_cases(inertia_kg_m2: float, result: MarchResult) -> _Numbers:
-    """The worst of all blades of each case, by quantity, each (cases,).
-
-    Beside the quantities: ``least_thrust``, ``when`` (of the highest flap) and ``converged``.
-    """
-    extremes, contacts = result.extremes, result.contacts
-    closing = np.max(contacts.closing_rad_s, axis=1)
-    return {
-        "highest_flap_marched": np.max(extremes.highest_flap_rad, axis=1),
-        "lowest_flap_marched": np.min(extremes.lowest_flap_rad, axis=1),
-        "droop_stop_peak_moment": np.max(extremes.droop_N_m, axis=1),
-        "up_stop_peak_moment": np.max(extremes.up_N_m, axis=1),
-        "contacts_after_lift_off": np.max(contacts.fast_count, axis=1).astype(np.float64),
-        "contact_highest_speed": np.max(contacts.fastest_rad_s, axis=1),
-        "contact_longest": np.max(contacts.longest_s, axis=1),
-        "contact_closing_speed": closing,
-        "contact_energy": 0.5 * inertia_kg_m2 * closing**2,
-        "highest_tip": np.max(extremes.highest_tip_m, axis=1),
-        "lowest_tip": np.min(extremes.lowest_tip_m, axis=(1, 2)),
-        "lag_peak": np.max(extremes.lag_rad, axis=1),
-        "lag_stop_peak_moment": np.max(extremes.lag_stop_N_m, axis=1),
-        "root_flap_peak_moment": np.max(extremes.root_N_m, axis=1),
-        "hub_moment_peak": extremes.hub_N_m,
-        "thrust_peak": extremes.thrust_N,
-        "least_thrust": extremes.least_thrust_N,
-        "when": extremes.worst_s,
-        "converged": result.converged.astype(np.float64),
-    }
-
-
-def _of(lanes: Sequence[Lane], track: int) -> NDArray[np.int64]:
-    return np.flatnonzero([lane.track == track for lane in lanes])
-
-
-def _worst_lane(numbers: _Numbers, where: NDArray[np.int64], quantity: str) -> int:
-    """Place of the worst value; one that is not a number is never the worst."""
-    values = numbers[quantity][where]
-    if quantity in LEAST:
-        values = -values
-    return int(where[np.argmax(np.where(np.isfinite(values), values, -np.inf))])
-
-
-def _finer(
-    bench: Bench, tracks: Sequence[Track], lanes: Sequence[Lane], seen: _Numbers, track: int
-) -> list[Lane]:
+def _finer(whole: Searched, track: int) -> list[Lane]:
     """Gusts about the worst ones of a track that passes the region of the stops."""
+    bench, tracks, lanes, seen = whole.bench, whole.tracks, whole.lanes, whole.numbers
     if not tracks[track].is_low:
         return []
-    where = _of(lanes, track)
+    where = lanes_of_track(lanes, track)
     found: list[Lane] = []
     peaks = gust_peaks_s(tracks[track], bench.free_rad_s)
     spacing = float(np.min(np.diff(peaks))) if peaks.size > 1 else 2.0
     for quantity in REFINED:
-        worst = lanes[_worst_lane(seen, where, quantity)]
+        worst = lanes[worst_lane(seen, where, quantity)]
         ride = worst.ride
         if ride.gust_m_s <= 0.0:
             continue
@@ -300,59 +272,7 @@ def _finer(
     return [lane for lane in dict.fromkeys(found) if lane not in lanes]
 
 
-def _governing(lanes: Sequence[Lane], seen: _Numbers, track: int) -> list[Lane]:
+def _governing(lanes: Sequence[Lane], seen: Numbers, track: int) -> list[Lane]:
     """The worst cases of a track, each once."""
-    where = _of(lanes, track)
-    return list(dict.fromkeys(lanes[_worst_lane(seen, where, q)] for q in GOVERNING))
-
-
-def _replaced(
-    whole: tuple[Sequence[Lane], _Numbers], again: tuple[Sequence[Lane], _Numbers]
-) -> _Numbers:
-    """Numbers of all lanes, those of lanes that were marched again replaced."""
-    place = {lane: i for i, lane in enumerate(whole[0])}
-    where = np.array([place[lane] for lane in again[0]])
-    merged = {name: values.copy() for name, values in whole[1].items()}
-    for name, values in merged.items():
-        values[where] = again[1][name]
-    return merged
-
-
-def _joined(first: _Numbers, second: _Numbers) -> _Numbers:
-    return {name: np.concatenate([first[name], second[name]]) for name in first}
-
-
-def _all_of(
-    tracks: Sequence[Track], parts: Sequence[tuple[Sequence[Lane], _Numbers]]
-) -> list[bool]:
-    """Whether all lanes of each track converged."""
-    good = [True] * len(tracks)
-    for lanes, numbers in parts:
-        for lane, converged in zip(lanes, numbers["converged"], strict=True):
-            good[lane.track] = good[lane.track] and bool(converged)
-    return good
-
-
-def _outcome(
-    last: tuple[Sequence[Lane], _Numbers],
-    middle: tuple[Sequence[Lane], _Numbers],
-    track: int,
-    *,
-    converged: bool,
-) -> Outcome:
-    lanes, numbers = last
-    where, between = _of(lanes, track), _of(middle[0], track)
-
-    def worst(values: FloatArray, quantity: str) -> float:
-        return float(np.min(values) if quantity in LEAST else np.max(values))
-
-    both = (*MOST, *LEAST)
-    top = _worst_lane(numbers, where, "highest_flap_marched")
-    return Outcome(
-        nominal={q: worst(middle[1][q][between], q) for q in both},
-        worst={q: worst(numbers[q][where], q) for q in both},
-        other={"thrust_peak": float(np.min(numbers["least_thrust"][where]))},
-        converged=converged,
-        when_s=float(numbers["when"][top]),
-        governing=lanes[top],
-    )
+    where = lanes_of_track(lanes, track)
+    return list(dict.fromkeys(lanes[worst_lane(seen, where, q)] for q in GOVERNING))

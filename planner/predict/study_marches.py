@@ -11,9 +11,10 @@ import numpy as np
 from planner.methods.clearance import clearance_m
 from planner.model.results import Labels, Status
 from planner.predict.cases import air_of
+from planner.predict.march_outcome import LEAST, MOST
 from planner.predict.march_parts import Part, RunParts, march_parts
 from planner.predict.march_pool import Crew, crew
-from planner.predict.march_runs import LEAST, MOST, Bench
+from planner.predict.march_runs import Bench
 from planner.predict.march_winds import winds_of
 from planner.predict.rows import Rows
 from planner.predict.shaft import TAKES, shaft_of
@@ -26,7 +27,7 @@ if TYPE_CHECKING:
     from planner.model.results import Prediction
     from planner.model.rotor import Rotor
     from planner.model.stand import Obstruction
-    from planner.predict.march_runs import Outcome
+    from planner.predict.march_outcome import Outcome
 
 _ID = "marches"
 QUANTITIES = (*MOST, *LEAST, "blade_clearance")
@@ -76,7 +77,8 @@ def bench_of(inputs: Inputs, hands: Crew) -> Bench:
         (air.wind_m_s, air.gust_m_s, 2.0 * rotor.blade.radius_m),
     )
     free = inputs.bounds("stop_free_speed")[2]
-    return Bench(rotor, inputs["stand.mounting"], air, winds, free, hands)
+    thrifty = inputs.requests.is_thrifty
+    return Bench(rotor, inputs["stand.mounting"], air, winds, free, hands, is_thrifty=thrifty)
 
 
 def predictions_of(parts: Sequence[Part], inputs: Inputs) -> dict[str, Prediction]:
@@ -115,7 +117,7 @@ def _row(rows: Rows, part: Part, rotor: Rotor, clearance: _Clearance) -> None:
 
 def _extreme(outcomes: Sequence[Outcome], quantity: str, at: str) -> float:
     """Worst of all pieces of a part."""
-    values = [getattr(outcome, at)[quantity] for outcome in outcomes]
+    values: list[float] = [getattr(outcome, at)[quantity] for outcome in outcomes]
     return min(values) if quantity in LEAST else max(values)
 
 

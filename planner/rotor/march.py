@@ -22,8 +22,8 @@ if TYPE_CHECKING:
     FloatArray = NDArray[np.float64]
     BoolArray = NDArray[np.bool_]
 
-BLADES_AT_ONCE = 1024
-"""Blades in a block: its arrays stay in the processor's cache."""
+BLADES_AT_ONCE = 4096
+"""Blades in a block: few enough for its arrays to stay in the processor's cache."""
 LOOK_EVERY = 32
 """Steps between looks for cases that are done."""
 STEP_LIMIT_FACTOR = 1.05

@@ -10,6 +10,7 @@ import numpy as np
 
 from planner.model.canonical import plain
 from planner.model.plan import (
+    ABORT_CAUSES,
     AbortActions,
     Block,
     Cyclic,
@@ -54,7 +55,7 @@ def sample_record(n_steps: int = 12, verdict: str = "CAUTION") -> Json:
     rules = plan.rule_book.rules
     findings = _findings(rules, walk, verdict)
     record: Json = {
-        "layout": 1,
+        "layout": 2,
         "made_by": {"whirlcard": "0.1.0", "python": "3.11", "numpy": "2.4.6", "scipy": "1.17.1"},
         "files": [
             {"name": name, "sha256": digit * 64}
@@ -122,6 +123,7 @@ def sample_plan(n_steps: int) -> Plan:
             "centred",
             ("Drive torque off", "Collective to 0.5°, cyclic centred",
              "No brake above 150 rpm", "Call ABORT on the loop, three times"),
+            to_si(1.0, "deg/s"), 2.0, brake=True, brake_from_rad_s=to_si(140.0, "rpm"),
         ),
         rotor=_rotor(),
         stand=_stand(),
@@ -235,6 +237,26 @@ def _book() -> RuleBook:
             "at least",
             Limit(constant=0.01),
         ),
+        _rule(
+            "stop-peak",
+            "stops",
+            "Peak moment on a droop stop",
+            "droop_stop_peak_moment",
+            "at most",
+            Limit(share=0.66, reference="droop_stop_moment_rating"),
+            channel="strain gauge",
+            where=("ramp", "stop", "abort"),
+        ),
+        _rule(
+            "rest",
+            "aborts",
+            "Time to rest",
+            "time_to_rest",
+            "at most",
+            Limit(constant=300.0),
+            channel="clock",
+            where=("abort",),
+        ),
     ]
     confirmed = [
         Rule(f"confirm-{i}", "confirmed", "people", title, "", practice, ("run",), when=when)
@@ -263,12 +285,12 @@ def _book() -> RuleBook:
 
 def _rule(  # noqa: PLR0917, PLR0913
     rule_id: str, hazard_class: str, title: str, quantity: str, sense: Any, limit: Limit,
-    channel: str = "",
+    channel: str = "", where: tuple[Any, ...] = ("hold", "ramp", "stop"),
 ) -> Rule:  # fmt: skip
     caution = replace(limit, constant=limit.constant * 1.2) if limit.constant else None
     return Rule(
         rule_id, "predicted", hazard_class, title, "keeps the article whole",
-        "common practice; the facility sets the value", ("hold", "ramp", "stop"),
+        "common practice; the facility sets the value", where,
         quantity=quantity, sense=sense, limit=limit, caution=caution,
         unit=REGISTER[quantity].unit, channel=channel,
         watcher="Data watcher" if channel else "", caution_acceptor="Stand safety officer",
@@ -304,16 +326,51 @@ def _predictions(plan: Plan, walk: tuple[Segment, ...]) -> Json:
                 put("band_rate", s.id, rate, 0.0, band.id)
     found: Json = {name: {"study": "sample", "rows": [_row(*row) for row in rows]}
                    for name, rows in numbers.items()}  # fmt: skip
-    for name, low in (("flap 1", 1.02), ("lag 1", 0.3)):
+    found |= _marched(plan, walk)
+    for name, low in (("flap 1", 1.02), ("lag 1", 0.3), ("stand rocking", 0.5236)):
         rows = found.setdefault("crossing_speed", {"study": "sample", "rows": []})["rows"]
         row = _row("", "", 30.0 * low, 29.0 * low, 31.0 * low)
         rows.append({**row, "mode": name, "harmonic": "1"})
     return found
 
 
+MARCHED = {
+    "lowest_flap_marched": -0.08, "highest_flap_marched": 0.12, "droop_stop_peak_moment": 1000.0,
+    "up_stop_peak_moment": 0.0, "contacts_after_lift_off": 0.0,
+}  # fmt: skip
+TIMES = {"time_to_half": 20.0, "time_to_30": 34.0, "time_to_10": 50.0, "time_to_rest": 60.0}
+
+
+def _marched(plan: Plan, walk: tuple[Segment, ...]) -> Json:
+    """Numbers of ramps, the stop and aborts; a lost brake takes half as long again."""
+    found: Json = {}
+    for s in walk:
+        share = _state(s)[0]
+        for state in [""] if s.kind == "stop" else ["", *ABORT_CAUSES]:
+            numbers = _of_place(plan, share * (1.5 if state == "brake lost" else 1.0))
+            for name, place, value in numbers:
+                own = name in MARCHED or name == "contact_highest_speed"
+                if state or s.kind == "stop" or (own and s.kind == "ramp"):
+                    row = _row(s.id, "", value, *sorted((0.9 * value, 1.1 * value)))
+                    rows = found.setdefault(name, {"study": "sample", "rows": []})["rows"]
+                    rows.append({**row, "state": state, **place})
+    return found
+
+
+def _of_place(plan: Plan, longer: float) -> list[tuple[str, Json, float]]:
+    bands: list[Json] = [{"band": band.id} for band in plan.keep_outs]
+    return [
+        *((name, {}, value) for name, value in MARCHED.items()),
+        ("contact_highest_speed", {}, to_si(100.0, "rpm")),
+        *((name, {}, longer * value) for name, value in TIMES.items()),
+        *(("band_cycles", band, longer * 12.0) for band in bands),
+        *(("band_amplification", {**band, "mode": "stand rocking"}, 6.0) for band in bands),
+    ]
+
+
 def _row(segment: str, band: str, value: float, low: float, high: float) -> Json:
     return {
-        "segment": segment, "mode": "", "harmonic": "", "band": band, "value": value,
+        "segment": segment, "mode": "", "harmonic": "", "band": band, "state": "", "value": value,
         "low": low, "high": high, "status": "ok", "reason": "", "speed_rad_s": None, "hand": None,
     }  # fmt: skip
 
@@ -321,7 +378,8 @@ def _row(segment: str, band: str, value: float, low: float, high: float) -> Json
 def _findings(rules: tuple[Rule, ...], walk: tuple[Segment, ...], verdict: str) -> list[Json]:
     findings: list[Json] = []
     for i, rule in enumerate(r for r in rules if r.kind == "predicted"):
-        words = {s.id: "GO" for s in walk}
+        kinds = {*rule.where, *(("hold", "ramp") if "abort" in rule.where else ())}
+        words = {s.id: "GO" for s in walk if s.kind in kinds}
         if i == 0 and verdict in {"NOT ASSESSED", "NO-GO"}:
             words |= {s.id: "NOT ASSESSED" for s in walk if s.kind != "hold"}
         worst = walk[len(walk) // 2]
@@ -336,8 +394,18 @@ def _findings(rules: tuple[Rule, ...], walk: tuple[Segment, ...], verdict: str) 
             "reason": "" if word == "GO" else f"the invented number is near at {worst.id}",
             "tested": len(walk), "not_assessed": 0, "closed_by": "", "segment_verdicts": words,
             "segment_margins": {s.id: (0.05 + 0.01 * j) * limit for j, s in enumerate(walk)},
+            "by_state": by_state("GO", worst.id, limit) if "abort" in rule.where else {},
         })  # fmt: skip
     return findings
+
+
+def by_state(verdict: str, segment: str, limit: float = 1.0) -> Json:
+    """What a rule comes to for each cause of an abort."""
+    said = {
+        "verdict": verdict, "segment": segment, "low": 0.5 * limit, "high": 0.6 * limit,
+        "limit": limit, "margin": 0.4 * limit, "closed_by": "",
+    }  # fmt: skip
+    return {cause: dict(said) for cause in ABORT_CAUSES}
 
 
 def _coverage() -> list[Json]:
@@ -347,8 +415,8 @@ def _coverage() -> list[Json]:
         for c in CLASSES
         for where in ("hold", "ramp")
     ]  # fmt: skip
-    return [*closed, {"hazard_class": "aborts", "where": "abort", "closed_by": "DOC-7",
-                      "verdict": "GO", "reason": ""}]  # fmt: skip
+    return [*closed, {"hazard_class": "aborts", "where": "abort",
+                      "closed_by": "stop-peak, rest", "verdict": "GO", "reason": ""}]  # fmt: skip
 
 
 def _times(walk: tuple[Segment, ...]) -> list[tuple[Segment, float, float]]:
