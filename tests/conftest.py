@@ -3,20 +3,24 @@
 from __future__ import annotations
 
 import functools
+import os
 import pathlib
 from typing import TYPE_CHECKING
 
 import pytest
 from hypothesis import settings
 
+from planner.files.kept import FolderStore
 from planner.files.read import read_plan
 from planner.judge.requests import requests
 from planner.model.plan import segments
+from planner.predict.histories import timed
 from planner.predict.register import REFERENCES, REGISTER
 from planner.predict.run import predict
+from planner.record.layout import versions
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Mapping
+    from collections.abc import Callable, Iterator, Mapping
 
     from planner.model.plan import Plan
     from planner.model.results import Prediction
@@ -28,6 +32,7 @@ SAMPLES = pathlib.Path(__file__).parent.parent / "sample_plans"
 SAMPLE_NAMES = (
     "articulated-run-up",
     "articulated-gusty",
+    "articulated-gusty-start",
     "hingeless-model",
     "teetering-pair",
 )
@@ -40,7 +45,19 @@ def _sample(name: str) -> Plan:
 
 
 def predict_plan(plan: Plan) -> Mapping[str, Prediction]:
-    return predict(plan, segments(plan), requests(plan.rule_book))
+    """Predict as the commands do: what a test before this one has marched is found again."""
+    store = FolderStore(pathlib.Path(os.environ["WHIRLCARD_KEPT"]))
+    wanted = requests(plan.rule_book)
+    walk = timed(plan, segments(plan), wanted)
+    return predict(plan, walk, wanted, store=store, versions=versions())
+
+
+@pytest.fixture(scope="session", autouse=True)
+def _own_kept_folder(tmp_path_factory: pytest.TempPathFactory) -> Iterator[None]:
+    """Results are kept in a folder of the tests' own, each sample's marches for all tests."""
+    with pytest.MonkeyPatch.context() as patch:
+        patch.setenv("WHIRLCARD_KEPT", str(tmp_path_factory.mktemp("kept")))
+        yield
 
 
 @functools.cache

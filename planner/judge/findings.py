@@ -11,7 +11,7 @@ from planner.judge.limits import mismatch
 from planner.judge.outcomes import Bench, Outcome, judge_row
 from planner.judge.rows import Row, rows_of
 from planner.judge.selection import select
-from planner.model.results import Finding, Status, Verdict
+from planner.model.results import Finding, OfCause, Status, Verdict
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -68,9 +68,10 @@ def gather(rule: Rule, outcomes: Sequence[Outcome], fault: str = "") -> Finding:
         reason=_reason(worst, outcomes),
         tested=sum(outcome.kind == "assessed" for outcome in outcomes),
         not_assessed=sum(outcome.kind == "not assessed" for outcome in outcomes),
-        closed_by=", ".join(dict.fromkeys(o.closed_by for o in outcomes if o.closed_by)),
+        closed_by=_closers(outcomes),
         segment_verdicts=_by_segment(outcomes),
         segment_margins=_margins(outcomes),
+        by_state=_by_state(outcomes),
     )
 
 
@@ -169,6 +170,33 @@ def _margins(outcomes: Sequence[Outcome]) -> dict[str, float]:
         if segment and outcome.kind == "assessed":
             least[segment] = min(outcome.margin, least.get(segment, math.inf))
     return least
+
+
+def _by_state(outcomes: Sequence[Outcome]) -> dict[str, OfCause]:
+    """What the aborts of each cause come to."""
+    groups: dict[str, list[Outcome]] = {}
+    for outcome in outcomes:
+        if outcome.row.labels.state:
+            groups.setdefault(outcome.row.labels.state, []).append(outcome)
+    return {state: _of_cause(group) for state, group in groups.items()}
+
+
+def _of_cause(outcomes: Sequence[Outcome]) -> OfCause:
+    worst = min(outcomes, key=_badness)
+    return OfCause(
+        verdict=worst.verdict.value,
+        segment=worst.row.labels.segment,
+        low=worst.row.low,
+        high=worst.row.high,
+        limit=worst.limit,
+        margin=worst.margin,
+        closed_by=_closers(outcomes),
+    )
+
+
+def _closers(outcomes: Sequence[Outcome]) -> str:
+    """Numbers of the outside documents that stand in for what was not assessed."""
+    return ", ".join(dict.fromkeys(o.closed_by for o in outcomes if o.closed_by))
 
 
 def _unmatched(rule: Rule, fault: str) -> Finding:

@@ -122,6 +122,21 @@ class Requests:
 
 
 @dataclass(frozen=True)
+class OfCause:
+    """What a rule comes to over the aborts of one cause, filled from the worst; numbers in SI."""
+
+    verdict: str
+    segment: str
+    """Where the worst abort begins."""
+    low: float
+    high: float
+    limit: float
+    margin: float
+    closed_by: str = ""
+    """Numbers of outside documents that stand in for what was not assessed."""
+
+
+@dataclass(frozen=True)
 class Finding:
     """One rule judged over everything it covers."""
 
@@ -145,6 +160,8 @@ class Finding:
     segment_verdicts: Mapping[str, str] = field(default_factory=dict)
     segment_margins: Mapping[str, float] = field(default_factory=dict)
     """Least margin of the assessed rows of each segment, SI."""
+    by_state: Mapping[str, OfCause] = field(default_factory=dict)
+    """The same for the aborts of each cause."""
 
 
 @dataclass(frozen=True)

@@ -48,8 +48,8 @@ SEARCH = MarchSettings(steps_per_turn=24, longest_step_s=0.01, substeps=4, singl
 PRINTED = MarchSettings(steps_per_turn=48, longest_step_s=0.01, substeps=8)
 """For what is printed. DEVELOPERS.md tells the convergence study."""
 SCAN = MarchSettings(steps_per_turn=16, longest_step_s=0.015, substeps=6, single=True)
-"""For the search of a thrifty bench; within 0.02 deg of flap and 1 % of a stop moment of the search
-above (computed on the articulated sample in 9 m/s), in three quarters of its time."""
+"""For the search of a thrifty bench; within 0.02 deg of flap and 1 % of a stop moment of the
+search above, in three quarters of its time (computed: the articulated sample in 9 m/s)."""
 
 
 @dataclass(frozen=True, eq=False)

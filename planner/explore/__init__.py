@@ -1,0 +1,1 @@
+"""Loops over predicting and judging: the wind gate."""
