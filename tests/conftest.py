@@ -14,16 +14,17 @@ from planner.files.kept import FolderStore
 from planner.files.read import read_plan
 from planner.judge.requests import requests
 from planner.model.plan import segments
+from planner.predict import run
 from planner.predict.histories import timed
 from planner.predict.register import REFERENCES, REGISTER
-from planner.predict.run import predict
 from planner.record.layout import versions
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Iterator, Mapping
+    from collections.abc import Callable, Iterator, Mapping, Sequence
 
     from planner.model.plan import Plan
     from planner.model.results import Prediction
+    from planner.predict.study import Study
 
 settings.register_profile("repeatable", derandomize=True, deadline=None, database=None)
 settings.load_profile("repeatable")
@@ -36,6 +37,7 @@ SAMPLE_NAMES = (
     "hingeless-model",
     "teetering-pair",
 )
+STUDIES = run.STUDIES
 
 
 @functools.cache
@@ -44,12 +46,22 @@ def _sample(name: str) -> Plan:
     return read_plan(SAMPLES / name, vocabulary, REFERENCES).plan
 
 
-def predict_plan(plan: Plan) -> Mapping[str, Prediction]:
+def kept_results() -> FolderStore:
+    """Where the tests keep what they march."""
+    return FolderStore(pathlib.Path(os.environ["WHIRLCARD_KEPT"]))
+
+
+def predict_plan(plan: Plan, studies: Sequence[Study] = STUDIES) -> Mapping[str, Prediction]:
     """Predict as the commands do: what a test before this one has marched is found again."""
-    store = FolderStore(pathlib.Path(os.environ["WHIRLCARD_KEPT"]))
     wanted = requests(plan.rule_book)
     walk = timed(plan, segments(plan), wanted)
-    return predict(plan, walk, wanted, store=store, versions=versions())
+    with pytest.MonkeyPatch.context() as patch:
+        patch.setattr(run, "STUDIES", tuple(studies))
+        return run.predict(plan, walk, wanted, store=kept_results(), versions=versions())
+
+
+def _unmarched(studies: Sequence[Study]) -> tuple[Study, ...]:
+    return tuple(study for study in studies if study.id != "marches")
 
 
 @pytest.fixture(scope="session", autouse=True)
@@ -77,7 +89,14 @@ def predicted() -> Callable[[str], Mapping[str, Prediction]]:
 
 @pytest.fixture
 def run_predict() -> Callable[[Plan], Mapping[str, Prediction]]:
-    return predict_plan
+    """Predict a changed plan without its marches, which would take a minute each time."""
+    return lambda plan: predict_plan(plan, _unmarched(run.STUDIES))
+
+
+@pytest.fixture
+def without_marches(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Commands on changed plans march nothing; whatever is judged of it is NOT ASSESSED."""
+    monkeypatch.setattr(run, "STUDIES", _unmarched(run.STUDIES))
 
 
 @pytest.fixture

@@ -73,7 +73,8 @@ class Outcome:
     Attributes:
         nominal: Quantity to its worst value in nominal air.
         worst: Quantity to its worst value over all cases.
-        other: Quantity to its mildest extreme; the least thrust for thrust.
+        other: The least thrust, and the times of the first and the last touch after lift-off in
+            any case, not a number where there is none.
         converged: Every case was marched to its end and resolved its stops.
     """
 
@@ -92,7 +93,8 @@ def flap_inertia_kg_m2(rotor: Rotor) -> float:
 def worst_of_cases(inertia_kg_m2: float, result: MarchResult) -> Numbers:
     """The worst of all blades of each case, by quantity, each (cases,).
 
-    Beside the quantities: ``least_thrust``, ``when`` (of the highest flap) and ``converged``.
+    Beside the quantities: ``least_thrust``, ``when`` (of the highest flap), ``first`` and ``last``
+    touch after lift-off (not a number where there is none), and ``converged``.
     """
     extremes, contacts = result.extremes, result.contacts
     closing = np.max(contacts.closing_rad_s, axis=1)
@@ -115,6 +117,8 @@ def worst_of_cases(inertia_kg_m2: float, result: MarchResult) -> Numbers:
         "thrust_peak": extremes.thrust_N,
         "least_thrust": extremes.least_thrust_N,
         "when": extremes.worst_s,
+        "first": np.fmin.reduce(contacts.first_s, axis=1),
+        "last": np.fmax.reduce(contacts.last_s, axis=1),
         "converged": result.converged.astype(np.float64),
     }
 
@@ -192,6 +196,10 @@ def outcome_of(
     return Outcome(
         nominal={q: worst(middle[1][q][between], q) for q in both},
         worst={q: worst(numbers[q][where], q) for q in both},
-        other={"thrust_peak": float(np.min(numbers["least_thrust"][where]))},
+        other={
+            "least_thrust": float(np.min(numbers["least_thrust"][where])),
+            "first": float(np.fmin.reduce(numbers["first"][where])),
+            "last": float(np.fmax.reduce(numbers["last"][where])),
+        },
         converged=converged,
     )

@@ -134,6 +134,25 @@ MARCHED = (
         "none: compare lift_off_speed_in_wind",
     ),
     _march(
+        "contact_first",
+        "First droop-stop contact after lift-off",
+        "s",
+        "t",
+        "none",
+        "Time from the begin of a ramp or the stop to the first touch of a blade that has been off "
+        "its droop stop for a whole turn, earliest of all cases; aborts tell it by rotor speed.",
+        "none: the rigid drop from rest, t = √(2 Δβ I/(g S)), is tested",
+    ),
+    _march(
+        "contact_last",
+        "Last droop-stop contact after lift-off",
+        "s",
+        "t",
+        "none",
+        "As the first one, latest over all cases.",
+        "none: as for the first",
+    ),
+    _march(
         "contact_longest",
         "Longest droop-stop contact after lift-off",
         "s",

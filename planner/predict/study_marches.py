@@ -30,7 +30,8 @@ if TYPE_CHECKING:
     from planner.predict.march_outcome import Outcome
 
 _ID = "marches"
-QUANTITIES = (*MOST, *LEAST, "blade_clearance")
+MOMENTS = {"contact_first": "first", "contact_last": "last"}
+QUANTITIES = (*MOST, *LEAST, *MOMENTS, "blade_clearance")
 OF_STOPS = frozenset(
     {
         "droop_stop_peak_moment",
@@ -40,6 +41,7 @@ OF_STOPS = frozenset(
         "contact_longest",
         "contact_closing_speed",
         "contact_energy",
+        *MOMENTS,
     }
 )
 OF_LAG = frozenset({"lag_peak", "lag_stop_peak_moment"})
@@ -50,7 +52,12 @@ _UNRESOLVED = (
     "a case did not stay finite, or its steps do not resolve the stiffness of the stop: state "
     "the stiffness that the stop really has, or have it assessed otherwise"
 )
+_BY_SPEED = "contacts of an abort are told by rotor speed (contact_highest_speed)"
+_NO_TOUCH = "no blade touches its droop stop after lift-off"
 _LEVEL = "clearance is computed for an upright or inverted shaft only"
+
+
+_Hands = dict[tuple[str, Labels], float]
 
 
 def run(inputs: Inputs) -> Mapping[str, Prediction]:
@@ -84,18 +91,34 @@ def bench_of(inputs: Inputs, hands: Crew) -> Bench:
 def predictions_of(parts: Sequence[Part], inputs: Inputs) -> dict[str, Prediction]:
     """Rows of all marched quantities; clearance at holds comes from their periodic flap."""
     rows = {quantity: Rows(quantity, _ID) for quantity in QUANTITIES}
-    clearance = _clearance(inputs)
+    clearance, hands = _clearance(inputs), _periodic(inputs)
     for part in parts:
         for quantity in QUANTITIES:
-            _row(rows[quantity], part, inputs["rotor"], clearance)
+            _row(rows[quantity], part, inputs["rotor"], (clearance, hands))
     for segment in inputs["segments"]:
         if segment.kind == "hold":
             _at_hold(rows["blade_clearance"], segment, inputs, clearance)
     return {quantity: filled.prediction() for quantity, filled in rows.items()}
 
 
-def _row(rows: Rows, part: Part, rotor: Rotor, clearance: _Clearance) -> None:
+def _periodic(inputs: Inputs) -> _Hands:
+    """Extremes of periodic flap along ramps that stay above the region of the stops."""
+    hands: dict[tuple[str, Labels], float] = {}
+    for marched, periodic, end in (
+        ("highest_flap_marched", "flap_highest", "high"),
+        ("lowest_flap_marched", "flap_lowest", "low"),
+    ):
+        found = inputs.prior[periodic]
+        values = getattr(found, end)
+        for labels, status, value in zip(found.labels, found.status, values, strict=True):
+            if status is Status.OK and labels.segment:
+                hands[marched, labels] = float(value)
+    return hands
+
+
+def _row(rows: Rows, part: Part, rotor: Rotor, known: tuple[_Clearance, _Hands]) -> None:
     """One part's row of one quantity."""
+    clearance, hands = known
     status, reason = _fault(rows.quantity, part, rotor, clearance)
     if status is not Status.OK:
         rows.flag(part.labels, status, reason, speed_rad_s=part.top_rad_s)
@@ -107,12 +130,34 @@ def _row(rows: Rows, part: Part, rotor: Rotor, clearance: _Clearance) -> None:
         )
         rows.add(part.labels, value, low=worst, speed_rad_s=part.top_rad_s)
         return
+    if rows.quantity in MOMENTS:
+        _moment_row(rows, part)
+        return
     value, worst = (_extreme(part.outcomes, rows.quantity, at) for at in ("nominal", "worst"))
     low = high = worst
     if rows.quantity == "thrust_peak":
-        low = min(outcome.other["thrust_peak"] for outcome in part.outcomes)
-    ends = (low, value) if rows.quantity in LEAST else (min(low, value), max(high, value))
-    rows.add(part.labels, value, low=ends[0], high=ends[1], speed_rad_s=part.top_rad_s)
+        low = min(outcome.other["least_thrust"] for outcome in part.outcomes)
+    hand = hands.get((rows.quantity, part.labels), math.nan)
+    rows.add(part.labels, value, low=low, high=high, speed_rad_s=part.top_rad_s, hand=hand)
+
+
+def _moment_row(rows: Rows, part: Part) -> None:
+    """First or last touch after lift-off, from the begin of a ramp or the stop."""
+    if part.labels.state:
+        rows.flag(part.labels, Status.NOT_APPLICABLE, _BY_SPEED, speed_rad_s=part.top_rad_s)
+        return
+    name = MOMENTS[rows.quantity]
+    times = [
+        begins + outcome.other[name]
+        for begins, outcome in zip(part.begins_s, part.outcomes, strict=True)
+    ]
+    found = [time for time in times if math.isfinite(time)]
+    if not found:
+        rows.flag(part.labels, Status.NOT_APPLICABLE, _NO_TOUCH, speed_rad_s=part.top_rad_s)
+        return
+    rows.add(
+        part.labels, min(found) if name == "first" else max(found), speed_rad_s=part.top_rad_s
+    )
 
 
 def _extreme(outcomes: Sequence[Outcome], quantity: str, at: str) -> float:
