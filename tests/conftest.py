@@ -41,7 +41,8 @@ STUDIES = run.STUDIES
 
 
 @functools.cache
-def _sample(name: str) -> Plan:
+def read_sample(name: str) -> Plan:
+    """A sample plan as its folder states it."""
     vocabulary = {entry.id: (entry.unit, entry.axes) for entry in REGISTER.values()}
     return read_plan(SAMPLES / name, vocabulary, REFERENCES).plan
 
@@ -60,7 +61,8 @@ def predict_plan(plan: Plan, studies: Sequence[Study] = STUDIES) -> Mapping[str,
         return run.predict(plan, walk, wanted, store=kept_results(), versions=versions())
 
 
-def _unmarched(studies: Sequence[Study]) -> tuple[Study, ...]:
+def unmarched(studies: Sequence[Study]) -> tuple[Study, ...]:
+    """All but the marches."""
     return tuple(study for study in studies if study.id != "marches")
 
 
@@ -74,12 +76,12 @@ def _own_kept_folder(tmp_path_factory: pytest.TempPathFactory) -> Iterator[None]
 
 @functools.cache
 def _predicted(name: str) -> Mapping[str, Prediction]:
-    return predict_plan(_sample(name))
+    return predict_plan(read_sample(name))
 
 
 @pytest.fixture
 def sample() -> Callable[[str], Plan]:
-    return _sample
+    return read_sample
 
 
 @pytest.fixture
@@ -90,15 +92,15 @@ def predicted() -> Callable[[str], Mapping[str, Prediction]]:
 @pytest.fixture
 def run_predict() -> Callable[[Plan], Mapping[str, Prediction]]:
     """Predict a changed plan without its marches, which would take a minute each time."""
-    return lambda plan: predict_plan(plan, _unmarched(run.STUDIES))
+    return lambda plan: predict_plan(plan, unmarched(run.STUDIES))
 
 
 @pytest.fixture
 def without_marches(monkeypatch: pytest.MonkeyPatch) -> None:
     """Commands on changed plans march nothing; whatever is judged of it is NOT ASSESSED."""
-    monkeypatch.setattr(run, "STUDIES", _unmarched(run.STUDIES))
+    monkeypatch.setattr(run, "STUDIES", unmarched(run.STUDIES))
 
 
 @pytest.fixture
 def articulated() -> Plan:
-    return _sample("articulated-run-up")
+    return read_sample("articulated-run-up")

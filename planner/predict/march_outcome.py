@@ -76,12 +76,14 @@ class Outcome:
         other: The least thrust, and the times of the first and the last touch after lift-off in
             any case, not a number where there is none.
         converged: Every case was marched to its end and resolved its stops.
+        shown: The cases with the highest and with the lowest flap.
     """
 
     nominal: dict[str, float]
     worst: dict[str, float]
     other: dict[str, float]
     converged: bool
+    shown: tuple[Lane, Lane]
 
 
 def flap_inertia_kg_m2(rotor: Rotor) -> float:
@@ -202,4 +204,8 @@ def outcome_of(
             "last": float(np.fmax.reduce(numbers["last"][where])),
         },
         converged=converged,
+        shown=(
+            lanes[worst_lane(numbers, where, "highest_flap_marched")],
+            lanes[worst_lane(numbers, where, "lowest_flap_marched")],
+        ),
     )

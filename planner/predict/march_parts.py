@@ -62,8 +62,8 @@ class Part:
     reason: str = ""
     collective_rad: float = 0.0
     """Greatest size of collective in it."""
-    begins_s: tuple[float, ...] = ()
-    """When each piece begins, from the begin of a ramp or the stop."""
+    pieces: tuple[Track, ...] = ()
+    """Pieces of a ramp or the stop, in order of time."""
 
 
 def march_parts(
@@ -181,8 +181,9 @@ def _ramp_part(segment: Segment, ramp: _Ramp, seen: Mapping[int, Outcome]) -> Pa
     if ramp.status is not Status.OK:
         return replace(bare, status=ramp.status, reason=ramp.reason)
     found = tuple(seen[id(piece)] for piece in ramp.pieces)
-    begins = tuple(piece.begins_s for piece in ramp.pieces)
-    return replace(bare, outcomes=found, collective_rad=_collective(ramp.pieces), begins_s=begins)
+    return replace(
+        bare, outcomes=found, collective_rad=_collective(ramp.pieces), pieces=ramp.pieces
+    )
 
 
 def _abort_part(abort: Abort, ended: Mapping[int, Outcome], top_rad_s: float) -> Part:

@@ -203,13 +203,14 @@ def _marched(
     """Worst numbers of each lane; each different lane is marched once."""
     different: dict[Lane, int] = {}
     where = np.array([different.setdefault(lane, len(different)) for lane in lanes])
-    cases = _cases(bench, tracks, list(different))
+    cases = cases_of(bench, tracks, list(different))
     result = bench.crew.march(bench.job(tracks, settings), cases, progress)
     numbers = worst_of_cases(flap_inertia_kg_m2(bench.rotor), result)
     return {name: values[where] for name, values in numbers.items()}
 
 
-def _cases(bench: Bench, tracks: Sequence[Track], lanes: Sequence[Lane]) -> MarchCases:
+def cases_of(bench: Bench, tracks: Sequence[Track], lanes: Sequence[Lane]) -> MarchCases:
+    """Cases as the rotor marches them."""
     spacing = 2.0 * np.pi / bench.rotor.n_blades
     rides = [lane.ride for lane in lanes]
     return make_march_cases(

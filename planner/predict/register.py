@@ -10,7 +10,7 @@ from types import MappingProxyType
 from typing import TYPE_CHECKING
 
 from planner.predict.register_general import GENERAL
-from planner.predict.register_march import MARCHED, SPEEDS
+from planner.predict.register_march import COURSE, MARCHED, SPEEDS
 from planner.predict.register_resonance import RESONANCE
 from planner.predict.register_rotor import ROTOR
 
@@ -20,7 +20,10 @@ if TYPE_CHECKING:
     from planner.model.results import Quantity
 
 REGISTER: Mapping[str, Quantity] = MappingProxyType(
-    {quantity.id: quantity for quantity in (*GENERAL, *ROTOR, *MARCHED, *RESONANCE, *SPEEDS)}
+    {
+        quantity.id: quantity
+        for quantity in (*GENERAL, *ROTOR, *MARCHED, COURSE, *RESONANCE, *SPEEDS)
+    }
 )
 
 REFERENCES: Mapping[str, str] = MappingProxyType(

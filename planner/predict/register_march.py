@@ -139,8 +139,8 @@ MARCHED = (
         "s",
         "t",
         "none",
-        "Time from the begin of a ramp or the stop to the first touch of a blade that has been off "
-        "its droop stop for a whole turn, earliest of all cases; aborts tell it by rotor speed.",
+        "Time from the begin of a ramp or the stop to the first touch of a blade that was off "
+        "its droop stop for a turn, earliest of all cases; aborts tell it by rotor speed.",
         "none: the rigid drop from rest, t = √(2 Δβ I/(g S)), is tested",
     ),
     _march(
@@ -297,6 +297,23 @@ def _time(quantity_id: str, name: str, detail: str) -> Quantity:
         allowance="torque",
     )
 
+
+COURSE = Quantity(
+    id="flap_course_marched",
+    name="Flap along the start and the stop, marched",
+    unit="deg",
+    symbol="β",
+    axes=("segment", "mode"),
+    danger="none",
+    study="marches",
+    method=_METHOD + "The case with the highest flap and the one with the lowest, marched again: "
+    "rotor speed and the middle, lowest and highest flap of all blades, stretch by stretch of "
+    "time, for the chart. The extremes over all cases stand under their own names.",
+    validity=_VALIDITY,
+    source=_SOURCE,
+    hand_check="none: a picture of the cases behind highest_flap_marched and lowest_flap_marched",
+    allowance="air_load",
+)
 
 SPEEDS = (
     Quantity(

@@ -11,6 +11,7 @@ import numpy as np
 from planner.methods.clearance import clearance_m
 from planner.model.results import Labels, Status
 from planner.predict.cases import air_of
+from planner.predict.march_course import COURSE, course_rows
 from planner.predict.march_outcome import LEAST, MOST
 from planner.predict.march_parts import Part, RunParts, march_parts
 from planner.predict.march_pool import Crew, crew
@@ -66,8 +67,10 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     _ = shaft.friction_n_m  # without it no run-down is known
     whole = RunParts(shaft, inputs["segments"], inputs["shutdown"], inputs["abort"])
     with crew() as hands:
-        parts = march_parts(whole, bench_of(inputs, hands), inputs.progress)
-    return predictions_of(parts, inputs)
+        bench = bench_of(inputs, hands)
+        parts = march_parts(whole, bench, inputs.progress)
+    found = predictions_of(parts, inputs)
+    return {**found, COURSE: course_rows(parts, bench, inputs["segments"])}
 
 
 def bench_of(inputs: Inputs, hands: Crew) -> Bench:
@@ -148,8 +151,8 @@ def _moment_row(rows: Rows, part: Part) -> None:
         return
     name = MOMENTS[rows.quantity]
     times = [
-        begins + outcome.other[name]
-        for begins, outcome in zip(part.begins_s, part.outcomes, strict=True)
+        piece.begins_s + outcome.other[name]
+        for piece, outcome in zip(part.pieces, part.outcomes, strict=True)
     ]
     found = [time for time in times if math.isfinite(time)]
     if not found:

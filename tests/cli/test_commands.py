@@ -20,6 +20,7 @@ SAMPLES = pathlib.Path(__file__).parent.parent.parent / "sample_plans"
 VERDICTS = {
     "articulated-run-up": ("GO", 0),
     "articulated-gusty": ("NO-GO", 3),
+    "articulated-gusty-start": ("NO-GO", 3),
     "hingeless-model": ("GO", 0),
     "teetering-pair": ("CAUTION", 0),
 }
@@ -218,6 +219,7 @@ def test_json_is_json_on_any_terminal(folder):
     assert json.loads(done.stdout)["verdict"] == "GO"
 
 
+@pytest.mark.usefixtures("without_marches")
 def test_states_without_a_solution_print_without_a_number(folder):
     path = folder / "plan.toml"
     text = path.read_text("utf-8").replace(

@@ -17,15 +17,14 @@ from planner.record.layout import (
     from_bytes,
     to_bytes,
 )
+from tests.conftest import kept_results, read_sample
 
 FILES = [("plan.toml", "0" * 64)]
 
 
 @pytest.fixture(scope="module")
 def record():
-    from tests.conftest import _sample  # noqa: PLC0415
-
-    return build(_sample("articulated-run-up"), FILES)
+    return build(read_sample("articulated-run-up"), FILES, store=kept_results())
 
 
 def test_record_holds_every_part(record):
@@ -38,11 +37,11 @@ def test_record_survives_the_round_trip(record):
 
 
 def test_same_plan_gives_the_same_bytes(record, articulated):
-    assert to_bytes(build(articulated, FILES)) == to_bytes(record)
+    assert to_bytes(build(articulated, FILES, store=kept_results())) == to_bytes(record)
 
 
 def test_meaning_digest_ignores_files_and_files_digest_does_not(record, articulated):
-    other = build(articulated, [("plan.toml", "1" * 64)])
+    other = build(articulated, [("plan.toml", "1" * 64)], store=kept_results())
     assert other["meaning_digest"] == record["meaning_digest"]
     assert other["files_digest"] != record["files_digest"]
 
