@@ -10,6 +10,7 @@ from planner.paper.boxes import Box, Picture, gap, heading, new_page, paragraph
 from planner.paper.calls import rule_boxes
 from planner.paper.closing import as_run_boxes, reentry_boxes, signature_boxes
 from planner.paper.coast import coast_boxes
+from planner.paper.course_chart import course_boxes
 from planner.paper.fan import fan_boxes
 from planner.paper.flap_chart import flap_drawing
 from planner.paper.front import (
@@ -71,6 +72,7 @@ def _body(reading: Reading, frame: Frame) -> list[Box]:
         as_run_boxes(frame),
         fan_boxes(reading, frame, "13  Fan chart"),
         _flap_boxes(reading, frame),
+        course_boxes(reading, frame),
         signature_boxes(reading, frame),
     )
     return [box for part in parts for box in (*part, gap(_GAP))]

@@ -49,7 +49,10 @@ GOVERNING = (
     "highest_flap_marched",
     "lowest_flap_marched",
     "droop_stop_peak_moment",
+    "up_stop_peak_moment",
+    "root_flap_peak_moment",
     "hub_moment_peak",
+    "contacts_after_lift_off",
     "contact_closing_speed",
 )
 """A track's worst case of each of these is marched again in double precision."""

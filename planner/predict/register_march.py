@@ -158,8 +158,8 @@ MARCHED = (
         "s",
         "t",
         "high",
-        "Longest time that a blade which has left its droop stop lies on it again before the "
-        "rotor has come down to its own lift-off; zero where none does.",
+        "Longest touch of a blade that has been off its droop stop for a whole turn, of touches "
+        "that end: resting after the stop is none. Zero where there is none.",
         "none: read off the flap chart",
     ),
     _march(
@@ -206,8 +206,10 @@ MARCHED = (
         "m",
         "d",
         "low",
-        "Least distance of any blade, at its lowest by azimuth, from the stand and from each "
-        "stated obstruction; at holds from the periodic solution in the gust.",
+        "Least distance of any blade, as low as it comes at any azimuth and straight from hinge to "
+        "tip, from the ground and from each stated obstruction, whichever way the wind turns the "
+        "low side; at holds from the periodic solution in the gust. What of the stand reaches out "
+        "counts where it is stated as an obstruction.",
         "none of its own: distances of the stand file less lowest_tip, redone with a pencil",
     ),
     _march(

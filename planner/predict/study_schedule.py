@@ -11,7 +11,7 @@ from planner.predict.study import Inputs, Study
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
-    from planner.model.plan import KeepOut, Segment, Shutdown
+    from planner.model.plan import AbortActions, KeepOut, Segment, Shutdown
     from planner.model.results import Prediction
 
 _ID = "schedule"
@@ -77,12 +77,22 @@ def _ramp(rows: Mapping[str, Rows], segment: Segment, inputs: Inputs) -> None:
         for quantity in ("ramp_rate", "collective_rate"):
             rows[quantity].flag(label, *_no_time(segment), speed_rad_s=top)
         return
-    rows["collective_rate"].add(label, abs(change) / segment.duration_s, speed_rad_s=top)
+    rate = abs(change) / segment.duration_s
+    if segment.kind == "stop" and not shutdown.powered:
+        rate = _rate_of_the_crew(inputs, rate) if change else 0.0
+    rows["collective_rate"].add(label, rate, speed_rad_s=top)
     if segment.kind == "stop" and not shutdown.powered:
         reason = "an unpowered stop has no prescribed rate"
         rows["ramp_rate"].flag(label, Status.NOT_APPLICABLE, reason, speed_rad_s=top)
     else:
         rows["ramp_rate"].add(label, rate_rad_s2(segment), speed_rad_s=top)
+
+
+def _rate_of_the_crew(inputs: Inputs, even_rad_s: float) -> float:
+    """Rate at which the crew moves collective when power is off, as stated for aborts."""
+    abort: AbortActions = inputs["abort"]
+    stated = abort.collective_rate_rad_s
+    return even_rad_s if stated is None else stated
 
 
 def _no_time(segment: Segment) -> tuple[Status, str]:
@@ -163,6 +173,7 @@ SCHEDULE = Study(
         "segments",
         "keep_outs",
         "shutdown",
+        "abort",
         "rotor.design_maximum_rad_s",
         "rotor.proven_rad_s",
         "stand.drive",
