@@ -16,9 +16,10 @@ ALLOWED = {
     "rotor": {"methods", "model", "units"},
     "predict": {"rotor", "methods", "model", "units"},
     "judge": {"predict", "model", "units"},
+    "explore": {"judge", "predict", "model", "units"},
     "record": {"judge", "predict", "model", "units"},
     "paper": {"record", "model", "units"},
-    "cli": {"paper", "record", "judge", "predict", "files", "model", "units"},
+    "cli": {"paper", "record", "explore", "judge", "predict", "files", "model", "units"},
 }
 LONGEST_MODULE = 400
 MODULES = sorted(PACKAGE.rglob("*.py"))

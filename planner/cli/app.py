@@ -160,6 +160,37 @@ def fan(
 
 
 @app.command()
+def wind(
+    plan: PlanArgument,
+    out: Annotated[
+        Path | None, typer.Option("--out", "-o", help="File ending in .pdf or .csv.")
+    ] = None,
+    step: Annotated[
+        str, typer.Option(help="Step of the mean wind, with its unit.", metavar="SPEED")
+    ] = "1 m/s",
+    paper: Annotated[Paper, typer.Option(help="Page size of a PDF.")] = Paper.a4,
+    kept: KeptOption = None,
+    fresh: FreshOption = False,
+) -> None:
+    """Find and draw the wind gate: the greatest wind for every start, stop and abort."""
+    from planner.cli.screen import check_target
+    from planner.cli.sources import Keeping, write
+    from planner.cli.wind import record_with_gate, told
+    from planner.judge.status import exit_status
+    from planner.judge.wind_gate import gate_verdict
+    from planner.paper.wind_page import wind_csv, wind_pdf
+
+    if out is not None:
+        check_target(out, (".pdf", ".csv"))
+    record, gate = record_with_gate(plan, Keeping(kept, fresh), step)
+    target = out or Path(f"{safe_name(record)}-wind.pdf")
+    is_table = target.suffix.lower() == ".csv"
+    write(target, wind_csv(record, gate).encode() if is_table else wind_pdf(record, gate, paper))
+    say(f"{told(gate)}\n\nWrote {target}")
+    raise typer.Exit(int(exit_status(gate_verdict(gate))))
+
+
+@app.command()
 def method(
     quantity: Annotated[
         str | None, typer.Argument(help="Id of a quantity; leave out for the list.")

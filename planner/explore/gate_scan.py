@@ -65,14 +65,17 @@ def scan(winds: Sequence[Wind], names: Sequence[str], attempt: Attempt) -> tuple
 def _try(sectors: Sequence[SectorScan], place: int, trial: Trial, attempt: Attempt) -> None:
     """Try a wind in sectors together; where they fail together, each by itself.
 
-    What passes with the winds of all sectors passes with those of each.
+    What passes with the winds of all sectors passes with those of each. Where all but the last
+    pass by themselves, the failure is the last one's.
     """
     if not sectors:
         return
     together = attempt(_from(trial, sectors))
-    for sector in sectors:
-        alone = together.passes or len(sectors) == 1
-        sector.tried[place] = together if alone else attempt(_from(trial, [sector]))
+    *others, last = sectors
+    for sector in others:
+        sector.tried[place] = together if together.passes else attempt(_from(trial, [sector]))
+    alone = any(not sector.tried[place].passes for sector in others)
+    last.tried[place] = attempt(_from(trial, [last])) if alone else together
 
 
 def _from(trial: Trial, sectors: Sequence[SectorScan]) -> Trial:

@@ -12,6 +12,7 @@ from planner.explore.gate_scan import scan
 from planner.explore.gate_trial import Wind, tried
 from planner.judge.wind_gate import gate_findings
 from planner.model.canonical import digest, plain
+from planner.predict.march_pool import crew
 from planner.predict.sectors import sectors_of
 
 if TYPE_CHECKING:
@@ -128,7 +129,8 @@ def _scanned(
     def attempt(trial: Trial) -> Tried:
         return tried(plan, trial, replace(desk, progress=_told(desk.progress, trial)))
 
-    return {sector.name: sector for sector in scan(winds, names, attempt)}
+    with crew():
+        return {sector.name: sector for sector in scan(winds, names, attempt)}
 
 
 def _told(progress: Progress, trial: Trial) -> Progress:

@@ -266,7 +266,7 @@ class PlanFile(Table):
         default=None, description="Lengths of the discrete gust; without it no gust is marched."
     )
     turbulence: TurbulenceTable | None = Field(
-        default=None, description="Gusty wind; without it no turbulence is marched."
+        default=None, description="Gusty wind; without it marches in wind are not assessed."
     )
     sector: list[SectorTable] = Field(
         default=[],

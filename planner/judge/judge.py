@@ -60,17 +60,21 @@ tests of the same numbers in ``tests/judge`` try every one of them.
 25. A passage without power is judged by its rate, which nobody chooses: an unpowered stop and each
     abort that runs down through a keep-out band are asked for turns inside it and for the response
     of each stand mode.
+26. A wind gate was computed for this very plan and the planned wind is above it in a sector:
+    NO-GO; NOT ASSESSED where the gate ends because something was not assessed. The gate of another
+    plan or version is never found, and lying inside a gate closes no class.
 """
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from planner.judge.case import ABORT, Case
 from planner.judge.coverage import coverage
 from planner.judge.findings import judge_rules
 from planner.judge.hand_checks import hand_check_findings
 from planner.judge.weather import wind_cap_findings
+from planner.judge.wind_gate import gate_findings
 from planner.model.results import Judgement, Verdict
 
 if TYPE_CHECKING:
@@ -85,6 +89,7 @@ def judge(
     segments: Sequence[Segment],
     vocabulary: Mapping[str, Quantity],
     predictions: Predictions,
+    gate: Mapping[str, Any] | None = None,
 ) -> Judgement:
     """Judge a run against its rule book.
 
@@ -93,12 +98,13 @@ def judge(
         segments: the walk of the schedule, as ``planner.model.plan.segments`` gives it.
         vocabulary: the register of quantities.
         predictions: every predicted quantity by id.
+        gate: the wind gate that is kept for this very plan; None: none is.
 
     Returns:
-        Findings of the predicted rules in the book's order, then of the wind cap, then hand
-        checks that disagree; coverage of every hazard class; the verdict of each segment (its
-        worst row, or NOT ASSESSED where a class is open in its kind) and of the run (the worst of
-        all).
+        Findings of the predicted rules in the book's order, then of the wind cap, then of the
+        wind gate where there is one, then hand checks that disagree; coverage of every hazard
+        class; the verdict of each segment (its worst row, or NOT ASSESSED where a class is open in
+        its kind) and of the run (the worst of all).
 
     Raises:
         ValueError: a prediction whose columns differ in length or that is filed under another id.
@@ -108,6 +114,7 @@ def judge(
     findings = (
         *(one.finding for one in judged),
         *wind_cap_findings(plan),
+        *gate_findings(plan.site, gate),
         *hand_check_findings(vocabulary, predictions),
     )
     covered = coverage(case, judged)

@@ -1,4 +1,4 @@
-"""Dynamic inflow: the mass of air that has to be sped up before the downwash follows the thrust."""
+"""Dynamic inflow: the mass of air that is sped up before the downwash follows the thrust."""
 
 from __future__ import annotations
 

@@ -2,22 +2,22 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
-    FloatArray = NDArray[np.float64]
+    Array = NDArray[np.floating[Any]]
 
 
 def stop_moment_n_m(
-    penetration_rad: FloatArray,
-    closing_rad_s: FloatArray,
-    stiffness_N_m_rad: FloatArray,
-    damping_s_rad: FloatArray,
-) -> FloatArray:
+    penetration_rad: Array,
+    closing_rad_s: Array,
+    stiffness_N_m_rad: Array,
+    damping_s_rad: Array,
+) -> Array:
     """Moment of a stop on a blade that presses into it; never pulls.
 
     M = max(0, K p (1 + d p'))  for p > 0, else 0
@@ -46,22 +46,22 @@ def stop_moment_n_m(
         12.0
     """
     pressed = np.maximum(penetration_rad, 0.0)
-    moment: FloatArray = stiffness_N_m_rad * pressed
+    moment: Array = stiffness_N_m_rad * pressed
     moment *= np.maximum(1.0 + damping_s_rad * closing_rad_s, 0.0)
     return moment
 
 
 def stop_moment_after_step_n_m(
-    without_rad: FloatArray,
-    without_rad_s: FloatArray,
-    law: tuple[FloatArray, FloatArray],
-    yields: tuple[FloatArray, FloatArray],
-) -> FloatArray:
+    without_rad: Array,
+    without_rad_s: Array,
+    law: tuple[Array, Array],
+    yields: tuple[Array, Array],
+) -> Array:
     """Moment at the end of a step over which it grows linearly, from one scalar equation a lane.
 
     M = K (P - a M) (1 + d (V - b M)) has the smaller root
-    M = 2 c / (B + sqrt(B^2 - 4 A c)), A = K a d b, B = 1 + K a (1 + d V) + K d b P,
-    c = K P (1 + d V), which is real and lies in contact. It is 0 where P or 1 + d V is negative.
+    M = 2 K P D / (1 + x + y + sqrt(1 + 2 (x + y) + (x - y)^2)), D = 1 + d V, x = K a D,
+    y = K d b P, which lies in contact. It is 0 where P or D is negative.
 
     Args:
         without_rad: Penetration P at the end without that growth, (lanes,) [rad].
@@ -81,9 +81,19 @@ def stop_moment_after_step_n_m(
     """
     (K, d), (a, b) = law, yields
     P = np.maximum(without_rad, 0.0)
-    pressing = np.maximum(1.0 + d * without_rad_s, 0.0)
-    B = 1.0 + K * (a * pressing + d * b * P)
-    c = K * P * pressing
-    root = np.sqrt(np.maximum(B * B - 4.0 * K * a * d * b * c, 0.0))
-    moment: FloatArray = 2.0 * c / (B + root)
+    D = d * without_rad_s
+    D += 1.0
+    np.maximum(D, 0.0, out=D)
+    x, y = K * a * D, K * d * b * P
+    root = x - y
+    root *= root
+    x += y
+    root += 2.0 * x
+    root += 1.0
+    np.sqrt(root, out=root)
+    root += x
+    root += 1.0
+    moment: Array = 2.0 * K * P
+    moment *= D
+    moment /= root
     return moment

@@ -6,6 +6,7 @@ import os
 from concurrent.futures import ProcessPoolExecutor, as_completed
 from concurrent.futures.process import BrokenProcessPool
 from contextlib import contextmanager
+from contextvars import ContextVar
 from dataclasses import dataclass, fields
 from multiprocessing import get_context
 from typing import TYPE_CHECKING, Any
@@ -121,13 +122,25 @@ class Crew:
             self._pool = None
 
 
+_AT_WORK: ContextVar[Crew | None] = ContextVar("crew at work", default=None)
+
+
 @contextmanager
 def crew() -> Iterator[Crew]:
-    """Processes for one study, as many as there are cores; gone when it is done or fails."""
+    """Processes for one study, as many as there are cores; gone when it is done or fails.
+
+    Within another such context the same crew stays at work: for many studies in a row.
+    """
+    before = _AT_WORK.get()
+    if before is not None:
+        yield before
+        return
     found = Crew(os.cpu_count() or 1)
+    token = _AT_WORK.set(found)
     try:
         yield found
     finally:
+        _AT_WORK.reset(token)
         found.dismiss()
 
 

@@ -133,9 +133,14 @@ def search(
 
 
 def _rides(bench: Bench, track: Track) -> list[Ride]:
-    """Winds of a track, each once: sectors of like wind differ in their turbulence alone."""
+    """Winds of a track, each once: sectors of like wind differ in their turbulence alone.
+
+    A thrifty bench leaves out calm and steady wind where there are gusts, whose mean is as strong.
+    """
     winds = [(s.mean_m_s, s.gust_m_s, s.upflow_slope) for s in bench.winds.sectors]
     rides = bench.winds.rides(track, bench.free_rad_s)
+    if bench.is_thrifty:
+        rides = [ride for ride in rides if ride.gust_m_s > 0.0 or ride.series >= 0] or rides
     return list(
         dict.fromkeys(
             ride if ride.series >= 0 else replace(ride, sector=winds.index(winds[ride.sector]))

@@ -206,8 +206,8 @@ MARCHED = (
         "m",
         "d",
         "low",
-        "Least distance of any blade, as low as it comes at any azimuth and straight from hinge to "
-        "tip, from the ground and from each stated obstruction, whichever way the wind turns the "
+        "Least distance of any blade, as low as it comes at any azimuth, straight from hinge to "
+        "tip, from the ground and each stated obstruction, whichever way the wind turns the "
         "low side; at holds from the periodic solution in the gust. What of the stand reaches out "
         "counts where it is stated as an obstruction.",
         "none of its own: distances of the stand file less lowest_tip, redone with a pencil",

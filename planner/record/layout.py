@@ -16,6 +16,8 @@ aborts, is read as layout 2: its rows have no ``state``, which is then empty.
     references        reference id -> value at 100 % rpm
     series            run, fan and flap charts
     findings, coverage, verdict, segment_verdicts
+    wind_gate         the gate that is kept for this very plan, see planner.explore.wind_gate; null
+                      where none is (records written before there were gates lack the key)
     content_digest    digest of everything above: an edit by hand is noticed when read back. It
                       shows change, not who made it
 """
@@ -31,11 +33,12 @@ import planner
 from planner.judge.judge import judge
 from planner.judge.references import reference_table
 from planner.judge.requests import requests
+from planner.judge.wind_gate import gate_key
 from planner.model.canonical import digest_of_plain, plain
 from planner.model.plan import segments
+from planner.predict.histories import timed
 from planner.predict.kept import NOTHING_KEPT
 from planner.predict.progress import silent
-from planner.predict.histories import timed
 from planner.predict.register import REGISTER
 from planner.predict.run import predict
 from planner.predict.series import series
@@ -91,8 +94,9 @@ def build(
     walk = timed(plan, segments(plan), wanted)
     predictions = predict(plan, walk, wanted, progress, store, versions())
     progress("judging")
-    judgement = judge(plan, walk, REGISTER, predictions)
     meaning = plain(plan)
+    gate = gate_of(digest_of_plain(meaning), store)
+    judgement = judge(plan, walk, REGISTER, predictions, gate)
     listed = [{"name": name, "sha256": sha256} for name, sha256 in files]
     record = {
         "layout": LAYOUT,
@@ -110,8 +114,15 @@ def build(
         "coverage": plain(judgement.coverage),
         "verdict": judgement.verdict.value,
         "segment_verdicts": plain(judgement.segment_verdicts),
+        "wind_gate": gate,
     }
     return {**record, "content_digest": digest_of_plain(record)}
+
+
+def gate_of(meaning_digest: str, store: Store) -> dict[str, Any] | None:
+    """The wind gate that is kept for this very plan; looked up, never computed on the way."""
+    found = store.get_plain(gate_key(meaning_digest, versions()), even_if_fresh=True)
+    return dict(found) if found and found.get("kept_for") == meaning_digest else None
 
 
 def versions() -> dict[str, str]:

@@ -23,10 +23,6 @@ if TYPE_CHECKING:
 
     FloatArray = NDArray[np.float64]
 
-ELASTIC_MODES = 3
-"""Bending modes of the hinged blade beside rigid flap and the shape of resting on a stop."""
-
-
 @dataclass(frozen=True, eq=False)
 class FlapUnit:
     """Equations of what flaps together: M q'' + C q' + (K0 + Omega^2 K1) q = F.
@@ -110,7 +106,7 @@ class _Family:
     is_hinged: bool
 
 
-def flap_unit(rotor: Rotor, arrays: RotorArrays, n_elastic: int = ELASTIC_MODES) -> FlapUnit:
+def flap_unit(rotor: Rotor, arrays: RotorArrays, n_elastic: int) -> FlapUnit:
     """Bind a rotor's hub and blade to the equations of its flapping units.
 
     An articulated blade flaps rigidly about its hinge, in its lowest hinged bending modes, and in

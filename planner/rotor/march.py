@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 
@@ -26,7 +26,6 @@ BLADES_AT_ONCE = 4096
 """Blades in a block: few enough for its arrays to stay in the processor's cache."""
 LOOK_EVERY = 32
 """Steps between looks for cases that are done."""
-STEP_LIMIT_FACTOR = 1.05
 
 
 @dataclass(frozen=True, eq=False)

@@ -12,181 +12,222 @@ from planner.rotor.march_sections import CELLS, pseudo_tables
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
+    from planner.rotor.flap_unit import FlapUnit
     from planner.rotor.setup import RotorArrays
 
+    FloatArray = NDArray[np.float64]
     Array = NDArray[np.floating[Any]]
+    ComplexArray = NDArray[np.complexfloating[Any]]
 
-LEAST_SPEED_M_S = 1e-6
+TINY_M_S = 1e-30
+"""Keeps the direction of no wind at all a number."""
 
 
 @dataclass(frozen=True, eq=False)
-class BladeFlow:
-    """What the air load of each marched blade depends on; (blades,) unless stated.
+class UnitFlow:
+    """What the air load depends on; (cases, blades) unless stated.
 
     Attributes:
-        speed_rad_s: Rotor speed.
+        x: Freedoms and their rates, (cases, units, 2n).
+        speed_rad_s: Rotor speed, (cases,).
         along_m_s: Wind along the blade, outward.
         across_m_s: Wind against the blade's motion.
-        flap_rad: Rigid flap.
-        flap_rate_rad_s: Its rate.
+        up_m_s: Upward wind, (cases,).
+        sine: Of rigid flap.
+        cosine: Of rigid flap.
         pitch_rad: Pitch at the collective radius.
-        through_m_s: Induced velocity less upward wind at the stations, (blades, stations).
-        bend_rate_m_s: Rate of elastic height at the stations, (blades, stations).
-        bend_slope: Elastic slope at the stations, (blades, stations).
+        induced_m_s: Induced velocity averaged over azimuth, (cases, stations).
+        tilt: What the induced velocity of the tip differs by from its average, over it.
     """
 
+    x: Array
     speed_rad_s: Array
     along_m_s: Array
     across_m_s: Array
-    flap_rad: Array
-    flap_rate_rad_s: Array
+    up_m_s: Array
+    sine: Array
+    cosine: Array
     pitch_rad: Array
-    through_m_s: Array
-    bend_rate_m_s: Array
-    bend_slope: Array
+    induced_m_s: Array
+    tilt: Array
+
+
+PER_BLADE = 6
+"""Numbers of each blade, beside its freedoms, that its flow is linear in."""
 
 
 class MarchAir:
-    """Blade-element loads with work space kept from step to step."""
+    """Blade-element loads with work space kept from step to step.
 
-    def __init__(self, arrays: RotorArrays, blades: int, dtype: type[np.floating[Any]]) -> None:
-        """Prepare tables and work space for a number of blades."""
-        self._tables = pseudo_tables(arrays.sections, dtype)
-        shape = (blades, arrays.chord_m.size)
-        self._real = [np.empty(shape, dtype) for _ in range(7)]
-        self._whole = [np.empty(shape, np.int32) for _ in range(2)]
-        kind = self._tables.flat.dtype
-        self._complex = [np.empty(shape, kind) for _ in range(4)]
-        self._row_start = self._tables.row_start.astype(np.int32)
-        self.arm_m = arrays.arm_m.astype(dtype)
-        self.still_m = arrays.still_m.astype(dtype)
-        self.cos_twist = np.cos(arrays.twist_rad).astype(dtype)
-        self.sin_twist = np.sin(arrays.twist_rad).astype(dtype)
-        self.half_chord = (0.5 * arrays.chord_m).astype(dtype)
+    Flow and forces are complex: in the plane of the disc as real part, through it as imaginary
+    part, so that turning the flow and turning lift and drag is one product each.
+    """
+
+    def __init__(
+        self,
+        arrays: RotorArrays,
+        unit: FlapUnit,
+        shape: tuple[int, int],
+        dtype: type[np.floating[Any]],
+    ) -> None:
+        """Prepare tables and work space for a number of cases and blades of each."""
+        self._tables = tables = pseudo_tables(arrays.sections, dtype)
+        whole, self._n = (*shape, arrays.chord_m.size), unit.n_freedoms
+        kind = tables.flat.dtype
+        self._real = [np.empty(whole, dtype) for _ in range(3)]
+        self._complex = [np.empty(whole, kind) for _ in range(4)]
+        self._corner = np.empty(whole, np.intp)
+        self._pitch = np.empty(shape, kind)
+        self._row_start = tables.row_start.astype(dtype)
+        self._one_row = not np.any(tables.row_start)
+        self._twist = np.exp(-1j * arrays.twist_rad).astype(kind)
+        self._half_chord = (0.5 * arrays.chord_m).astype(dtype)
+        matrix = flow_matrix(arrays, unit)
+        edge = 2 * arrays.chord_m.size * unit.n_blades
+        self._of_motion = np.ascontiguousarray(matrix[:, :edge]).astype(dtype)
+        self._of_induced = np.ascontiguousarray(matrix[:, edge:]).astype(dtype)
+        self._row = np.empty((shape[0], shape[1] // unit.n_blades, matrix.shape[0]), dtype)
 
     def loads(
-        self, flow: BladeFlow, density_kg_m3: Array, sound_m_s: Array, load_factor: Array
-    ) -> tuple[Array, Array, Array]:
-        """Forces per length of every station: normal, normal without load factor, in the plane.
+        self, flow: UnitFlow, sound_m_s: Array, load_factor: Array | None
+    ) -> tuple[Array, ComplexArray]:
+        """Forces per length over air density at every station.
 
         The same equations as `planner.rotor.airload`: u_T, u_P and the section's lift and drag
         turned into the blade's axes.
 
         Args:
             flow: State of the blades.
-            density_kg_m3: Air density, (blades,).
-            sound_m_s: Speed of sound, (blades,).
-            load_factor: Multiplies lift, (blades,).
+            sound_m_s: Speed of sound, (cases,).
+            load_factor: Multiplies lift but for the momentum balance, (cases,); None for 1.
 
         Returns:
-            Normal force, the same that the momentum balance sees, and force against rotation,
-            each (blades, stations) [N/m]. The arrays are overwritten by the next call.
+            Thrust of all blades that the momentum balance sees, (cases, stations), and force
+            normal to the blade + i force against rotation, (cases, blades, stations)
+            [m3/s2]. The latter is overwritten by the next call.
         """
-        tangential, through, speed = self._velocities(flow)
-        lift_drag = self._sections(flow, tangential, through, speed, sound_m_s)
-        pressure, unfactored, normal, plane = self._real[3:7]
-        np.multiply(speed, self.half_chord, out=pressure)
-        pressure *= density_kg_m3[:, None]
-        lift, drag = lift_drag.real, lift_drag.imag
-        np.multiply(lift, tangential, out=unfactored)
-        np.multiply(lift, through, out=plane)
-        scale = load_factor[:, None]
-        np.multiply(unfactored, scale, out=normal)
-        plane *= scale
-        through *= drag
-        tangential *= drag
-        normal -= through
-        unfactored -= through
-        plane += tangential
-        for force in (normal, unfactored, plane):
-            force *= pressure
-        return normal, unfactored, plane
+        air = self._velocities(flow)
+        speed = np.abs(air, out=self._real[0])
+        coefficients = self._sections(flow.pitch_rad, air, speed, sound_m_s)
+        speed *= self._half_chord
+        air *= speed
+        force = np.multiply(coefficients, air, out=self._complex[3])
+        cosine = flow.cosine[:, :, None]
+        ring: Array = force.real[:, 0] * cosine[:, 0]
+        for blade in range(1, cosine.shape[1]):
+            ring += force.real[:, blade] * cosine[:, blade]
+        if load_factor is not None:
+            coefficients.real *= load_factor[:, None, None]
+            np.multiply(coefficients, air, out=force)
+        return ring, force
 
-    def _velocities(self, flow: BladeFlow) -> tuple[Array, Array, Array]:
-        """Air from ahead, through the disc, and both together."""
-        tangential, through, speed, work = self._real[:4]
-        cosine = np.cos(flow.flap_rad)
-        np.multiply((flow.speed_rad_s * cosine)[:, None], self.arm_m, out=tangential)
-        np.multiply(flow.speed_rad_s[:, None], self.still_m, out=work)
-        tangential += work
-        tangential += flow.across_m_s[:, None]
-        np.multiply(flow.through_m_s, cosine[:, None], out=through)
-        np.multiply(flow.flap_rate_rad_s[:, None], self.arm_m, out=work)
-        through += work
-        through += flow.bend_rate_m_s
-        np.add(flow.bend_slope, np.sin(flow.flap_rad)[:, None], out=work)
-        work *= flow.along_m_s[:, None]
-        through += work
-        np.multiply(tangential, tangential, out=speed)
-        np.multiply(through, through, out=work)
-        speed += work
-        np.sqrt(speed, out=speed)
-        np.maximum(speed, LEAST_SPEED_M_S, out=speed)
-        return tangential, through, speed
+    def _velocities(self, flow: UnitFlow) -> ComplexArray:
+        """Air from ahead + i air through the disc, against the axis of the blade."""
+        row, n = self._row, self._n
+        units = row.shape[:2]
+        row[..., : 2 * n] = flow.x
+        of_blades = row[..., 2 * n :].reshape(*units, -1, n + PER_BLADE)
+        per_blade = (*units, -1)
+        along = flow.along_m_s.reshape(per_blade)
+        np.multiply(flow.x[:, :, None, :n], along[..., None], out=of_blades[..., :n])
+        even = flow.along_m_s * flow.sine - flow.up_m_s[:, None] * flow.cosine
+        speed = flow.speed_rad_s[:, None]
+        of_blades[..., n] = (speed * flow.cosine).reshape(per_blade)
+        of_blades[..., n + 1] = speed[:, :, None]
+        of_blades[..., n + 2] = flow.across_m_s.reshape(per_blade)
+        of_blades[..., n + 3] = even.reshape(per_blade)
+        of_blades[..., n + 4] = flow.cosine.reshape(per_blade)
+        of_blades[..., n + 5] = (flow.cosine * flow.tilt).reshape(per_blade)
+        shape = self._pitch.shape
+        moving = np.matmul(row, self._of_motion)
+        air: ComplexArray = moving.view(self._twist.dtype).reshape(*shape, -1)
+        through = np.matmul(row, self._of_induced).reshape(*shape, -1)
+        through *= flow.induced_m_s[:, None, :]
+        air.imag += through
+        return air
 
     def _sections(
-        self, flow: BladeFlow, tangential: Array, through: Array, speed: Array, sound_m_s: Array
-    ) -> NDArray[np.complexfloating[Any]]:
+        self, pitch_rad: Array, air: ComplexArray, speed: Array, sound_m_s: Array
+    ) -> ComplexArray:
         """Lift + i drag from the direction of the flow, turned by pitch and twist."""
-        cosine, sine, work = self._real[3:6]
-        cp, sp = np.cos(flow.pitch_rad)[:, None], np.sin(flow.pitch_rad)[:, None]
-        turn_cos = cp * self.cos_twist - sp * self.sin_twist
-        turn_sin = sp * self.cos_twist + cp * self.sin_twist
-        np.multiply(turn_cos, tangential, out=cosine)
-        np.multiply(turn_sin, through, out=work)
-        cosine += work
-        np.multiply(turn_sin, tangential, out=sine)
-        np.multiply(turn_cos, through, out=work)
-        sine -= work
-        place = self._pseudo_angle(cosine, sine, work)
-        corner, cell = self._whole
-        np.copyto(cell, place, casting="unsafe")
+        np.cos(pitch_rad, out=self._pitch.real)
+        np.sin(-pitch_rad, out=self._pitch.imag)
+        turned = np.multiply(self._pitch[:, :, None], self._twist, out=self._complex[1])
+        turned *= air
+        place = self._pseudo_angle(turned)
+        cell = np.floor(place, out=self._real[1])
         place -= cell
-        np.add(cell, self._row_start, out=corner)
+        if not self._one_row:
+            cell += self._row_start
         if self._tables.mach_planes == 1:
-            return self._between(corner, place, self._complex[0])
-        mach = self._real[4]
-        np.multiply(speed, (self._tables.per_mach / sound_m_s)[:, None], out=mach)
+            return self._between(cell, place, self._complex[1])
+        mach = speed * (self._tables.per_mach / sound_m_s)[:, None, None]
         mach -= self._tables.lowest_mach * self._tables.per_mach
         np.clip(mach, 0.0, self._tables.mach_planes - 1.001, out=mach)
-        np.copyto(cell, mach, casting="unsafe")
-        mach -= cell
-        cell *= CELLS + 1
-        corner += cell
-        low = self._between(corner, place, self._complex[0])
-        corner += CELLS + 1
-        high = self._between(corner, place, self._complex[2])
+        plane = np.floor(mach)
+        mach -= plane
+        plane *= CELLS + 1
+        cell += plane
+        low = self._between(cell, place, self._complex[1])
+        high = self._between(None, place, self._complex[3])
         high -= low
         high *= mach
         low += high
         return low
 
-    def _pseudo_angle(self, cosine: Array, sine: Array, work: Array) -> Array:
-        """Place in the table's cells, from 0 to less than their number; overwrites all three."""
-        np.abs(cosine, out=work)
-        spare = self._real[6]
-        np.abs(sine, out=spare)
-        work += spare
-        work += LEAST_SPEED_M_S
-        np.divide(sine, work, out=work)
-        behind = cosine < 0.0
-        np.copysign(2.0, sine, out=spare)
-        spare -= work
-        np.copyto(work, spare, where=behind)
-        work += 2.0
-        work *= 0.25 * CELLS
-        np.minimum(work, CELLS - 0.001, out=work)
-        np.copyto(cosine, work)
-        return cosine
+    def _pseudo_angle(self, turned: ComplexArray) -> Array:
+        """Place in the table's cells, from 0 to their number."""
+        place, work = self._real[2], self._real[1]
+        np.abs(turned.real, out=work)
+        np.abs(turned.imag, out=place)
+        place += work
+        place += TINY_M_S
+        np.divide(turned.real, place, out=place)
+        place *= -0.25 * CELLS
+        place += 0.25 * CELLS
+        np.copysign(place, turned.imag, out=place)
+        place += 0.5 * CELLS
+        return place
 
-    def _between(
-        self, corner: NDArray[np.int32], share: Array, into: NDArray[np.complexfloating[Any]]
-    ) -> NDArray[np.complexfloating[Any]]:
-        flat = self._tables.flat
-        other = self._complex[1]
-        flat.take(corner, out=into, mode="clip")
-        flat[1:].take(corner, out=other, mode="clip")
-        other -= into
-        other *= share
-        into += other
+    def _between(self, cell: Array | None, share: Array, into: ComplexArray) -> ComplexArray:
+        """Coefficients within a cell; without one, in the next plane over the cell before."""
+        first = 0 if cell is not None else CELLS + 1
+        if cell is not None:
+            np.copyto(self._corner, cell, casting="unsafe")
+        self._tables.flat[first:].take(self._corner, out=into, mode="clip")
+        rise = self._tables.rise[first:].take(self._corner, out=self._complex[2], mode="clip")
+        rise *= share
+        into += rise
         return into
+
+
+def flow_matrix(arrays: RotorArrays, unit: FlapUnit) -> FloatArray:
+    """From what moves the air past a unit to the flow at its stations.
+
+    Rows: freedoms and their rates; then of each blade its freedoms times the wind along it,
+    speed times cosine of flap, speed, wind across, even wind through, cosine of flap, and that
+    times the tilt of the induced velocity. Columns: air from ahead and air through by turns,
+    station after station and blade after blade; then what the induced velocity counts.
+
+    Args:
+        arrays: Station arrays.
+        unit: What flaps together.
+
+    Returns:
+        The matrix, (2n + blades (n + 6), blades * stations * 3).
+    """
+    n, nb, stations = unit.n_freedoms, unit.n_blades, arrays.chord_m.size
+    air = np.zeros((2 * n + nb * (n + PER_BLADE), nb, stations, 2))
+    induced = np.zeros((*air.shape[:2], stations))
+    rising = unit.shape + unit.rigid[:, :, None] * arrays.arm_m
+    for blade in range(nb):
+        first = 2 * n + blade * (n + PER_BLADE)
+        air[n : 2 * n, blade, :, 1] = rising[blade]
+        air[first : first + n, blade, :, 1] = unit.slope[blade]
+        air[first + n, blade, :, 0] = arrays.arm_m
+        air[first + n + 1, blade, :, 0] = arrays.still_m
+        air[first + n + 2, blade, :, 0] = 1.0
+        air[first + n + 3, blade, :, 1] = 1.0
+        induced[first + n + 4, blade] = 1.0
+        induced[first + n + 5, blade] = arrays.station_radius_m / arrays.radius_m
+    return np.hstack([air.reshape(air.shape[0], -1), induced.reshape(air.shape[0], -1)])

@@ -151,7 +151,9 @@ def make_march_cases(**values: ArrayLike) -> MarchCases:
         wrong = sorted(set(given) ^ set(names))
         msg = f"march cases: expected the fields {', '.join(names)}; missing or unknown: {wrong}"
         raise ValueError(msg)
-    arrays = [np.atleast_1d(np.asarray(given[n], dtype=_KINDS.get(n, np.float64))) for n in names]
+    arrays: list[NDArray[Any]] = [
+        np.atleast_1d(np.asarray(given[n], dtype=_KINDS.get(n, np.float64))) for n in names
+    ]
     return MarchCases(*(np.array(array) for array in np.broadcast_arrays(*arrays)))
 
 
@@ -165,6 +167,7 @@ class MarchSettings:
         substeps: Steps within a step of a rotor with a blade on or near a stop.
         lead_in_turns: Turns at the history's first state before it begins, from turning rotors.
         lead_in_s: The same for rotors at rest.
+        elastic_modes: Bending modes beside rigid flap and the shape of resting on a stop.
         gradient: Fore-aft gradient of the induced velocity is kept.
         single: Precision is float32, for screening.
     """
@@ -174,6 +177,7 @@ class MarchSettings:
     substeps: int = 8
     lead_in_turns: float = 6.0
     lead_in_s: float = 2.0
+    elastic_modes: int = 3
     gradient: bool = True
     single: bool = False
 

@@ -1,4 +1,4 @@
-"""Induced velocity of marched cases: momentum of each ring with the mass of air that goes along."""
+"""Induced velocity of marched cases: momentum of each ring, and the mass of air in it."""
 
 from __future__ import annotations
 
@@ -19,7 +19,6 @@ LOSS_EVERY = 4
 """Steps between renewals of the tip and root loss factors, which change slowly."""
 LEAST_M_S = 1e-6
 GRADIENT_SHARE = 15.0 * np.pi / 32.0
-HALF_SPEED_SHARE = 0.5
 
 
 class MarchInflow:

@@ -44,14 +44,15 @@ class MarchLag:
     @property
     def from_middle_rad(self) -> Array:
         """Lag angle from the middle of its stops."""
-        return self.x[..., 0] - self._dtype(self._model.middle_rad)
+        angle: Array = self.x[..., 0] - self._dtype(self._model.middle_rad)
+        return angle
 
     def step(
         self,
         node: NDArray[np.int64],
         loads: UnitLoads,
-        speed: tuple[FloatArray, FloatArray],
-        ratio: FloatArray,
+        speed: tuple[Array, Array],
+        ratio: Array,
     ) -> None:
         """One step.
 
@@ -61,20 +62,30 @@ class MarchLag:
             speed: Rotor speed and its rate, each (cases,).
             ratio: This step over the one before, (cases,).
         """
-        model, dtype = self._model, self._dtype
+        model = self._model
         whole = model.inertia_kg_m2 + model.hinge_m * model.first_moment_kg_m
-        load = loads.lag_air_N_m + (speed[1] * whole).astype(dtype)[:, None]
-        twice = (2.0 * model.inertia_kg_m2 * speed[0]).astype(dtype)[:, None]
-        load = load - twice * loads.flap_rad * loads.flap_rate_rad_s
-        rise = (load - self._load) * ratio.astype(dtype)[:, None]
+        load = loads.flap_rad * loads.flap_rate_rad_s
+        load *= (-2.0 * model.inertia_kg_m2 * speed[0])[:, None]
+        load += loads.lag_air_N_m
+        load += (whole * speed[1])[:, None]
+        row = np.empty((*load.shape, 4), load.dtype)
+        row[..., :2] = self.x
+        row[..., 2] = load
+        np.subtract(load, self._load, out=row[..., 3])
+        row[..., 3] *= ratio[:, None]
         self._load = load
-        row = np.stack([self.x[..., 0], self.x[..., 1], load, rise], axis=-1)
-        self.x = np.matmul(row, model.table.whole[node])
-        if not model.laws.exist:
-            return
-        parts = model.table.whole_stop[node]
-        self.x += self.stop_N_m[..., None] * parts[:, None, 0]
-        give = parts[:, 1]
+        after = np.matmul(row, model.table.whole.take(node, axis=0))
+        self.x = after[..., :2]
+        if model.laws.exist:
+            self._press(node)
+
+    def _press(self, node: NDArray[np.int64]) -> None:
+        """Add what the stops do over the step."""
+        by_stop = self._model.table.by_stop.take(node, axis=0)
+        if np.count_nonzero(self.stop_N_m):
+            self.x += self.stop_N_m[..., None] * by_stop[:, None, 0, :2]
+        give = (by_stop[:, 1, :1], by_stop[:, 1, 1:2])
         reach = (self.x[..., 0], self.x[..., 1])
-        self.stop_N_m = self._stops.moment(reach, self._stops.places(), (give[:, :1], give[:, 1:]))
-        self.x += self.stop_N_m[..., None] * parts[:, None, 1]
+        self.stop_N_m = self._stops.moment(reach, self._stops.places, give)
+        if np.count_nonzero(self.stop_N_m):
+            self.x += self.stop_N_m[..., None] * by_stop[:, None, 1, :2]

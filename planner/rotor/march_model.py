@@ -13,9 +13,11 @@ from planner.methods.blade_inertia import blade_inertia
 from planner.model.rotor import ArticulatedHub
 from planner.rotor.blade_views import mass_distribution
 from planner.rotor.case import gravity_vector_m_s2
-from planner.rotor.flap_unit import ELASTIC_MODES, FlapUnit, flap_unit
-from planner.rotor.march_stops import FAR_RAD, StopLaws, stop_laws
-from planner.rotor.march_table import StepTable, step_table
+from planner.rotor.flap_unit import FlapUnit, flap_unit
+from planner.rotor.march_stops import StopLaws, no_stops, stop_laws
+from planner.rotor.march_substeps import SubstepTable, substep_table
+from planner.rotor.march_table import StepTable, Vibrating, step_table
+from planner.rotor.march_view import Viewer
 from planner.rotor.setup import RotorArrays, rotor_arrays
 
 if TYPE_CHECKING:
@@ -62,6 +64,8 @@ class MarchModel:
         units: Units marched in a case; fewer than the rotor has stand for all of them.
         laws: Flap stops.
         table: Steps of flap.
+        substeps: Steps of flap on or near a stop, where the hub has stops.
+        viewer: Reads a unit's state.
         lag: Lag, where the hub has lag hinges.
         settings: Fineness.
         gravity_m_s2: Gravity downwind, crosswind and along thrust.
@@ -76,22 +80,14 @@ class MarchModel:
     units: int
     laws: StopLaws
     table: StepTable
+    substeps: SubstepTable | None
+    viewer: Viewer
     lag: LagModel | None
     settings: MarchSettings
     gravity_m_s2: tuple[float, float, float]
     resolves_stops: bool
     root_weight_kg_m: float
     root_centrifugal_kg_m2: float
-
-    @cached_property
-    def flap_column(self) -> NDArray[np.floating[Any]]:
-        """What counts as flap for unit freedoms, in the march's precision, (n, 1)."""
-        return self.unit.flap_view.astype(self.settings.dtype)[:, None]
-
-    @cached_property
-    def spin_stiffness(self) -> NDArray[np.floating[Any]]:
-        """Stiffness for unit speed, in the march's precision, (n, n)."""
-        return self.unit.spin_stiffness.astype(self.settings.dtype)
 
     @cached_property
     def blade_offsets_rad(self) -> FloatArray:
@@ -109,7 +105,6 @@ def march_model(
     *,
     mounting: Mounting = "upright",
     one_blade: bool = False,
-    n_elastic: int = ELASTIC_MODES,
 ) -> MarchModel:
     """Bind a rotor for marching.
 
@@ -121,7 +116,6 @@ def march_model(
         mounting: How the rotor stands.
         one_blade: One unit stands for all of the rotor: its load drives the inflow as if every
             blade were like it. For comparisons; hub moments are then not computed.
-        n_elastic: Bending modes beside rigid flap and the resting shape.
 
     Returns:
         The model.
@@ -130,23 +124,23 @@ def march_model(
         ValueError: A table, hub or stop that cannot be used.
     """
     arrays = rotor_arrays(rotor, n_stations)
-    unit = flap_unit(rotor, arrays, n_elastic)
+    unit = flap_unit(rotor, arrays, settings.elastic_modes)
     laws = stop_laws(rotor, unit)
     about = blade_inertia(mass_distribution(rotor.blade), unit.root_m)
     gravity = np.ravel(gravity_vector_m_s2(mounting))
-    table = step_table(
-        unit.mass,
-        unit.damping,
-        (unit.stiffness, unit.spin_stiffness),
-        unit.hinge,
-        (top_rad_s, settings),
+    system = Vibrating(
+        unit.mass, unit.damping, unit.stiffness, unit.spin_stiffness, unit.flap_view
     )
+    table = step_table(system, (top_rad_s, settings))
+    fine = (settings.substeps, settings.dtype)
     return MarchModel(
         arrays=arrays,
         unit=unit,
         units=1 if one_blade else arrays.n_blades // unit.n_blades,
         laws=laws,
         table=table,
+        substeps=substep_table(system, unit, table, fine) if laws.exist else None,
+        viewer=Viewer(unit, settings.dtype),
         lag=_lag(rotor, top_rad_s, settings),
         settings=settings,
         gravity_m_s2=(float(gravity[0]), float(gravity[1]), float(gravity[2])),
@@ -180,13 +174,14 @@ def _lag(rotor: Rotor, top_rad_s: float, settings: MarchSettings) -> LagModel | 
     about = blade_inertia(mass_distribution(rotor.blade), hub.lag_hinge_m)
     inertia, first = float(about.second_moment_kg_m2), float(about.first_moment_kg_m)
     one = np.ones((1, 1))
-    table = step_table(
+    system = Vibrating(
         inertia * one,
         hub.lag_damper_N_m_s_rad * one,
-        (hub.lag_spring_N_m_rad * one, hub.lag_hinge_m * first * one),
+        hub.lag_spring_N_m_rad * one,
+        hub.lag_hinge_m * first * one,
         np.ones(1),
-        (top_rad_s, settings),
     )
+    table = step_table(system, (top_rad_s, settings))
     stop = rotor.lag_stop
     middle = 0.0 if stop is None else 0.5 * (stop.lead_angle_rad + stop.lag_angle_rad)
     return LagModel(hub.lag_hinge_m, inertia, first, _lag_laws(rotor), table, middle)
@@ -195,18 +190,7 @@ def _lag(rotor: Rotor, top_rad_s: float, settings: MarchSettings) -> LagModel | 
 def _lag_laws(rotor: Rotor) -> StopLaws:
     stop = rotor.lag_stop
     if stop is None:
-        nothing = (1.0, 0.0)
-        return StopLaws(
-            -FAR_RAD,
-            -FAR_RAD,
-            FAR_RAD,
-            nothing,
-            nothing,
-            np.inf,
-            0.0,
-            False,
-            False,  # noqa: FBT003
-        )
+        return no_stops()
     law = (stop.stiffness_N_m_rad, stop.damping_N_m_s_rad / stop.moment_rating_N_m)
     low, high = stop.lead_angle_rad, stop.lag_angle_rad
-    return StopLaws(low, low, high, law, law, np.inf, 0.0, False, True)  # noqa: FBT003
+    return StopLaws(low, low, high, law, law, np.inf, 0.0, high_is_droop=False, exist=True)

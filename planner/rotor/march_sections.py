@@ -26,11 +26,13 @@ UNEVEN_MACH_PLANES = 61
 class PseudoTables:
     """Lift + i drag of the stations over pseudo-angle and even steps of Mach number.
 
-    The pseudo-angle of a direction (c, s) is s / (|c| + |s|), carried on over the quadrants from
-    -2 to 2; it grows with the angle and has the same period.
+    The pseudo-angle of a direction (c, s) is 1 - c / (|c| + |s|) with the sign of s, from -2 to 2;
+    it grows with the angle and has the same period. The tables run over the pseudo-angle of the
+    angle of attack with its sign changed.
 
     Attributes:
-        flat: Coefficients, one after another, (rows * planes * (cells + 1),).
+        flat: Coefficients at the cells' begins, one after another, (rows * planes * (cells + 1),).
+        rise: What they change by over each cell, of the same shape.
         row_start: Start of each station's table, (stations,).
         mach_planes: Planes of Mach number.
         lowest_mach: Mach number of the first plane.
@@ -38,6 +40,7 @@ class PseudoTables:
     """
 
     flat: NDArray[np.complexfloating]
+    rise: NDArray[np.complexfloating]
     row_start: NDArray[np.int64]
     mach_planes: int
     lowest_mach: float
@@ -61,7 +64,7 @@ def pseudo_tables(
         the highest lift.
     """
     pseudo = np.linspace(-2.0, 2.0, CELLS + 1)
-    angle = _angle(pseudo)
+    angle = -_angle(pseudo)
     mach = _even_mach(sections.mach)
     planes = mach.size
     rows, first = np.unique(sections.row, return_index=True)
@@ -74,8 +77,10 @@ def pseudo_tables(
         parts.append(lift[:, :, station] + 1j * drag[:, :, station])
     place = np.searchsorted(rows, sections.row)
     kind = np.complex64 if dtype is np.float32 else np.complex128
+    flat = np.concatenate([part.ravel() for part in parts])
     return PseudoTables(
-        flat=np.concatenate([part.ravel() for part in parts]).astype(kind),
+        flat=flat.astype(kind),
+        rise=np.append(np.diff(flat), 0.0).astype(kind),
         row_start=(place * planes * (CELLS + 1)).astype(np.int64),
         mach_planes=planes,
         lowest_mach=float(mach[0]),
@@ -98,4 +103,4 @@ def _angle(pseudo: FloatArray) -> FloatArray:
     within = 1.0 - np.abs(np.abs(pseudo) - 1.0)
     sine = np.sign(pseudo) * within
     cosine = np.where(np.abs(pseudo) <= 1.0, 1.0 - within, within - 1.0)
-    return np.where(np.abs(pseudo) >= 2.0, np.sign(pseudo) * np.pi, np.arctan2(sine, cosine))
+    return np.arctan2(sine, cosine)

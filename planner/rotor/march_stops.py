@@ -16,6 +16,7 @@ if TYPE_CHECKING:
     from planner.rotor.flap_unit import FlapUnit
 
     Array = NDArray[np.floating[Any]]
+    FloatArray = NDArray[np.float64]
     BoolArray = NDArray[np.bool_]
 
 FAR_RAD = 1e3
@@ -66,34 +67,44 @@ def stop_laws(rotor: Rotor, unit: FlapUnit) -> StopLaws:
         ValueError: A stop without stiffness.
     """
     droop, up = rotor.droop_stop, rotor.up_stop
-    if not unit.is_hinged or droop is None:
-        nothing = (1.0, 0.0)
-        return StopLaws(
-            -FAR_RAD,
-            -FAR_RAD,
-            FAR_RAD,
-            nothing,
-            nothing,
-            np.inf,
-            0.0,
-            False,
-            False,  # noqa: FBT003
-        )
+    if not unit.is_hinged or (droop is None and up is None):
+        return no_stops()
     fixed = unit.fixed_flap_rad
-    low, gone = droop.angle_rad - fixed, droop.angle_rad - fixed
+    low = gone = -FAR_RAD if droop is None else droop.angle_rad - fixed
+    high = FAR_RAD if up is None else up.angle_rad - fixed
     release, reseat = np.inf, 0.0
-    if droop.retraction is not None:
+    if droop is not None and droop.retraction is not None:
         gone = droop.retraction.retracted_angle_rad - fixed
         release, reseat = droop.retraction.release_rad_s, droop.retraction.reseat_rad_s
-    high = FAR_RAD if up is None else up.angle_rad - fixed
-    lower, upper = _law("droop stop", droop), _law("up stop", up or droop)
-    if unit.n_blades > 1:
+    lower, upper = _law("droop stop", droop or up), _law("up stop", up or droop)
+    paired = unit.n_blades > 1
+    if paired:
         low, gone = max(low, -high), max(gone, -high)
-        return StopLaws(low, gone, -low, lower, lower, release, reseat, True, True)  # noqa: FBT003
-    return StopLaws(low, gone, high, lower, upper, release, reseat, False, True)  # noqa: FBT003
+        high, upper = -low, lower
+    return StopLaws(
+        low, gone, high, lower, upper, release, reseat, high_is_droop=paired, exist=True
+    )
 
 
-def _law(name: str, stop: Stop) -> tuple[float, float]:
+def no_stops() -> StopLaws:
+    """The laws of a hinge that turns freely."""
+    nothing = (1.0, 0.0)
+    return StopLaws(
+        -FAR_RAD,
+        -FAR_RAD,
+        FAR_RAD,
+        nothing,
+        nothing,
+        np.inf,
+        0.0,
+        high_is_droop=False,
+        exist=False,
+    )
+
+
+def _law(name: str, stop: Stop | None) -> tuple[float, float]:
+    if stop is None:
+        return 1.0, 0.0
     if not stop.stiffness_N_m_rad > 0.0 or not stop.moment_rating_N_m > 0.0:
         msg = (
             f"{name}: expected a stiffness and a rated moment above 0, found "
@@ -115,37 +126,37 @@ class MarchStops:
         """All stops in their static place."""
         self.laws = laws
         self._dtype = dtype
-        self.is_retracted = np.zeros(shape, dtype=bool)
+        self._moves = bool(np.isfinite(laws.release_rad_s))
+        self._set(np.zeros(shape, dtype=bool))
 
     def take(self, where: NDArray[Any]) -> MarchStops:
         """The same for some of the cases."""
         part = MarchStops(self.laws, (0, 0), self._dtype)
-        part.is_retracted = self.is_retracted[where]
+        part._set(self.is_retracted[where])
         return part
 
-    @property
-    def moves(self) -> bool:
-        """The lower stop retracts."""
-        return bool(np.isfinite(self.laws.release_rad_s))
-
-    def move(self, speed_rad_s: Array, rotation_rad: Array, seats: BoolArray) -> None:
-        """Retract or re-seat stops at this speed, where the blades allow it."""
-        if not self.moves:
-            return
-        self.is_retracted |= (speed_rad_s >= self.laws.release_rad_s)[:, None]
-        slow = (speed_rad_s <= self.laws.reseat_rad_s) & seats
-        above = rotation_rad >= self.laws.low_rad
-        if self.laws.high_is_droop:
-            above &= rotation_rad <= -self.laws.low_rad
-        self.is_retracted &= ~(slow[:, None] & above)
-
-    def places(self) -> tuple[Array, Array]:
-        """Lower and upper stop of each unit, (cases, units)."""
+    def _set(self, is_retracted: BoolArray) -> None:
+        """Put every stop in its place."""
         laws, dtype = self.laws, self._dtype
-        low = np.where(self.is_retracted, laws.retracted_rad, laws.low_rad).astype(dtype)
+        self.is_retracted = is_retracted
+        low = np.where(is_retracted, laws.retracted_rad, laws.low_rad).astype(dtype)
+        high = -low if laws.high_is_droop else np.full_like(low, laws.high_rad)
+        self.places = (low, high)
+        """Lower and upper stop of each unit, (cases, units)."""
+
+    def move(self, speed_rad_s: FloatArray, rotation_rad: Array, seats: BoolArray) -> None:
+        """Retract or re-seat stops at this speed, where the blades allow it."""
+        if not self._moves:
+            return
+        laws = self.laws
+        slow = (speed_rad_s <= laws.reseat_rad_s) & seats
+        above = rotation_rad >= laws.low_rad
         if laws.high_is_droop:
-            return low, -low
-        return low, np.full_like(low, laws.high_rad)
+            above &= rotation_rad <= -laws.low_rad
+        now = self.is_retracted | (speed_rad_s >= laws.release_rad_s)[:, None]
+        now &= ~(slow[:, None] & above)
+        if np.any(now != self.is_retracted):
+            self._set(now)
 
     def moment(
         self,
@@ -153,7 +164,7 @@ class MarchStops:
         places: tuple[Array, Array],
         yields: tuple[Array, Array],
     ) -> Array:
-        """Moment at the end of a sub-step: of the lower stop positive, of the upper negative.
+        """Moment at the end of a part of a step: of the lower stop above 0, of the upper below.
 
         Args:
             rotation: Rotation at the hinge without that moment, and its rate, (cases, units).
@@ -164,16 +175,25 @@ class MarchStops:
             Signed moment, (cases, units) [N m].
         """
         below, above = places[0] - rotation[0], rotation[0] - places[1]
+        if not np.count_nonzero(above > 0.0):
+            if not np.count_nonzero(below > 0.0):
+                return np.zeros_like(below)
+            law = self._law(np.asarray(True))  # noqa: FBT003 - a mask
+            return stop_moment_after_step_n_m(below, -rotation[1], law, yields)
+        depth = np.maximum(below, above)
         is_low = below >= above
         sign = np.where(is_low, self._dtype(1.0), self._dtype(-1.0))
-        low, high = self.laws.low, self.laws.high
-        if low == high:
-            law = (self._dtype(low[0]), self._dtype(low[1]))
-        else:
-            law = (
-                np.where(is_low, self._dtype(low[0]), self._dtype(high[0])),
-                np.where(is_low, self._dtype(low[1]), self._dtype(high[1])),
-            )
-        depth = np.maximum(below, above)
+        law = self._law(is_low)
         moment = stop_moment_after_step_n_m(depth, -sign * rotation[1], law, yields)
-        return np.asarray(sign * moment)
+        moment *= sign
+        return moment
+
+    def _law(self, is_low: BoolArray) -> tuple[Array, Array]:
+        """Stiffness and damping of the stop in question."""
+        low, high, dtype = self.laws.low, self.laws.high, self._dtype
+        if low == high:
+            return np.asarray(low[0], dtype), np.asarray(low[1], dtype)
+        return (
+            np.where(is_low, dtype(low[0]), dtype(high[0])),
+            np.where(is_low, dtype(low[1]), dtype(high[1])),
+        )

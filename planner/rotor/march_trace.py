@@ -8,7 +8,6 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from planner.rotor.march_block import Block
-from planner.rotor.march_contact import rotation
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -70,19 +69,13 @@ def course(
         time = float(block.time_s[0])
         if time < 0.0:
             continue
-        flap = rotation(model, block.x)[0] + model.unit.fixed_flap_rad
-        both = flap if model.unit.n_blades == 1 else _pair(flap, model.unit.fixed_flap_rad)
+        both = block.flap_rad
         highest, lowest = max(highest, float(both.max())), min(lowest, float(both.min()))
         if time >= end * (len(rows) + 1) / stretches:
             rows.append((time, _speed(histories, case, time), highest, lowest))
             highest, lowest = -np.inf, np.inf
     columns = np.array(rows).T
     return Course(*columns)
-
-
-def _pair(flap: NDArray[np.floating], fixed_rad: float) -> NDArray[np.floating]:
-    """Flap of both blades of a pair."""
-    return np.concatenate([flap, 2.0 * fixed_rad - flap])
 
 
 def _speed(histories: Histories, case: MarchCases, time_s: float) -> float:

@@ -26,7 +26,7 @@ class Contacts:
 
     Attributes:
         touching: The blade is on its stop now.
-        free_rad: Azimuth that it has turned since it left it.
+        left_rad: Azimuth of the first blade when this one was last on it.
         lifted: It has been off for a whole turn at least once, or began turning and free.
         lift_off_s: When it first had; not a number where it never did.
         count: Touches after that.
@@ -40,7 +40,7 @@ class Contacts:
     """
 
     touching: BoolArray
-    free_rad: FloatArray
+    left_rad: FloatArray
     lifted: BoolArray
     lift_off_s: FloatArray
     count: IndexArray
@@ -55,21 +55,24 @@ class Contacts:
     @staticmethod
     def none(shape: tuple[int, int]) -> Contacts:
         """Nothing has happened yet."""
-        whole, missing = np.zeros(shape, np.int64), np.full(shape, np.nan)
-        no, zero = np.zeros(shape, bool), np.zeros(shape)
+
+        def all_of(value: float) -> FloatArray:
+            return np.full(shape, value)
+
+        no, whole = np.zeros(shape, bool), np.zeros(shape, np.int64)
         return Contacts(
-            no.copy(),
-            zero.copy(),
-            no.copy(),
-            missing.copy(),
-            whole.copy(),
-            whole.copy(),
-            missing.copy(),
-            missing.copy(),
-            zero.copy(),
-            zero.copy(),
-            zero.copy(),
-            zero.copy(),
+            touching=no,
+            left_rad=all_of(0.0),
+            lifted=no.copy(),
+            lift_off_s=all_of(np.nan),
+            count=whole,
+            fast_count=whole.copy(),
+            first_s=all_of(np.nan),
+            last_s=all_of(np.nan),
+            began_s=all_of(0.0),
+            longest_s=all_of(0.0),
+            closing_rad_s=all_of(0.0),
+            fastest_rad_s=all_of(0.0),
         )
 
     def take(self, where: NDArray[Any]) -> Contacts:
@@ -81,83 +84,128 @@ class Contacts:
         for f in fields(self):
             getattr(self, f.name)[where] = getattr(part, f.name)
 
+    def start_free(self, begins: BoolArray, is_on: BoolArray, speed_rad_s: FloatArray) -> None:
+        """Blades that turn free of their stops when their history begins count as lifted.
+
+        Args:
+            begins: Cases whose history begins, (cases,).
+            is_on: Blades on their stops, (cases, units).
+            speed_rad_s: Rotor speed, (cases,).
+        """
+        self.lifted |= begins[:, None] & ~is_on & (speed_rad_s > 0.0)[:, None]
+
+    def lift(self, azimuth_rad: FloatArray, time_s: FloatArray, counts: BoolArray) -> None:
+        """Blades that have been off for a whole turn for the first time count as lifted.
+
+        Args:
+            azimuth_rad: Of the first blade, (cases,).
+            time_s: Time, (cases,).
+            counts: Cases whose history has begun and not ended, (cases,).
+        """
+        if self.lifted.all():
+            return
+        rises = azimuth_rad[:, None] - self.left_rad >= TURN_RAD
+        rises &= ~self.lifted & ~self.touching & counts[:, None]
+        if np.count_nonzero(rises):
+            self.lifted |= rises
+            self.lift_off_s = np.where(rises, time_s[:, None], self.lift_off_s)
+
 
 @dataclass(frozen=True, eq=False)
-class Moment:
-    """One instant of a block at the end of a sub-step.
+class Touches:
+    """What cases on or near a stop do over one step.
 
     Attributes:
-        time_s: From the begin of the history, (cases,).
-        step_s: Since the instant before, (cases,).
+        is_on: The moment on the lower stop is not zero after each part of the step,
+            (parts, cases, units).
+        closing_rad_s: Rate at which blades approach it at the begin and after each part,
+            (parts + 1, cases, units).
+        time_s: Begin of the step, (cases,).
+        step_s: Its length, (cases,).
         speed_rad_s: Rotor speed, (cases,).
-        counts_from_rad_s: Speed from which touches count by themselves, (cases,).
-        is_on: The moment on the lower stop is not zero, (cases, units).
-        closing_rad_s: Rate at which blades approach it, (cases, units).
+        azimuth_rad: Of the first blade at the begin, (cases,).
+        counts: The history has begun and not ended, (cases,).
+        is_fast: Touches count by themselves at this speed, (cases,).
     """
 
+    is_on: BoolArray
+    closing_rad_s: Array
     time_s: FloatArray
     step_s: FloatArray
     speed_rad_s: FloatArray
-    counts_from_rad_s: FloatArray
-    is_on: BoolArray
-    closing_rad_s: Array
+    azimuth_rad: FloatArray
+    counts: BoolArray
+    is_fast: BoolArray
 
 
-def start_free(
-    contacts: Contacts, begins: BoolArray, is_on: BoolArray, speed_rad_s: FloatArray
-) -> None:
-    """Blades that turn free of their stops when their history begins count as lifted."""
-    lifted = begins[:, None] & ~is_on & (speed_rad_s > 0.0)[:, None]
-    contacts.lifted |= lifted
-
-
-def turn_on(contacts: Contacts, turned_rad: FloatArray, counts: BoolArray) -> BoolArray:
-    """Count turns of blades away from their stops.
+def follow(contacts: Contacts, where: IndexArray, now: Touches) -> None:
+    """Carry contacts on over a step.
 
     Args:
-        contacts: To be carried on.
-        turned_rad: Azimuth turned, 0 where a blade may be on its stop, (cases,).
-        counts: Cases whose history has begun and whose blades are away, (cases,).
-
-    Returns:
-        Blades that have just been off for a whole turn for the first time, (cases, units).
+        contacts: Of the whole block.
+        where: Which of its cases these are.
+        now: What they did.
     """
-    contacts.free_rad += turned_rad[:, None]
-    rises: BoolArray = (contacts.free_rad >= TURN_RAD) & ~contacts.lifted & counts[:, None]
-    contacts.lifted |= rises
-    return rises
+    any_on = np.logical_or.reduce(now.is_on, axis=0)
+    changes = any_on != contacts.touching[where]
+    changes |= any_on != np.logical_and.reduce(now.is_on, axis=0)
+    if np.count_nonzero(changes):
+        _follow_changes(contacts, where, now, np.nonzero(changes))
+    case, unit = np.nonzero(now.is_on[-1])
+    azimuth = now.azimuth_rad + now.step_s * now.speed_rad_s
+    contacts.left_rad[where[case], unit] = azimuth[case]
+    any_on &= contacts.lifted[where]
+    any_on &= now.counts[:, None]
+    if np.count_nonzero(any_on):
+        fastest = np.where(any_on, now.speed_rad_s[:, None], 0.0)
+        contacts.fastest_rad_s[where] = np.maximum(contacts.fastest_rad_s[where], fastest)
 
 
-def follow(contacts: Contacts, now: Moment) -> None:
-    """Count touches up to an instant; nothing counts before the history begins."""
-    counts = (now.time_s >= 0.0)[:, None]
-    time = np.broadcast_to(now.time_s[:, None], now.is_on.shape)
-    speed = np.broadcast_to(now.speed_rad_s[:, None], now.is_on.shape)
-    begins = now.is_on & ~contacts.touching
-    ends = ~now.is_on & contacts.touching
-    if np.any(begins):
-        event = begins & contacts.lifted & counts
-        contacts.count += event
-        contacts.fast_count += event & (speed >= now.counts_from_rad_s[:, None])
-        contacts.first_s = np.where(event & np.isnan(contacts.first_s), time, contacts.first_s)
-        contacts.last_s = np.where(event, time, contacts.last_s)
-        closing = np.where(event, now.closing_rad_s, 0.0)
-        contacts.closing_rad_s = np.maximum(contacts.closing_rad_s, closing)
-        contacts.began_s = np.where(begins, time, contacts.began_s)
-    held = now.is_on & contacts.lifted & counts
-    if np.any(held):
-        contacts.fastest_rad_s = np.maximum(contacts.fastest_rad_s, np.where(held, speed, 0.0))
-    if np.any(ends):
-        event = ends & contacts.lifted & counts
-        stay = np.where(event, time - contacts.began_s, 0.0)
-        contacts.longest_s = np.maximum(contacts.longest_s, stay)
-    contacts.touching = now.is_on
-    turned = contacts.free_rad + (now.speed_rad_s * now.step_s)[:, None]
-    contacts.free_rad = np.where(now.is_on, 0.0, turned)
-    rises = (contacts.free_rad >= TURN_RAD) & ~contacts.lifted & counts
-    if np.any(rises):
-        contacts.lifted |= rises
-        contacts.lift_off_s = np.where(rises, time, contacts.lift_off_s)
+def _follow_changes(
+    contacts: Contacts, where: IndexArray, now: Touches, lanes: tuple[IndexArray, ...]
+) -> None:
+    """The same for blades that come down or rise off, each array (parts, lanes) or (lanes,)."""
+    case, unit = lanes
+    on = now.is_on[:, case, unit]
+    parts, lane = on.shape[0], (where[case], unit)
+    before = np.concatenate([contacts.touching[lane][None], on[:-1]])
+    share = (np.arange(1.0, parts + 1.0) / parts)[:, None]
+    time = now.time_s[case] + share * now.step_s[case]
+    turned = now.azimuth_rad[case] + share * (now.step_s * now.speed_rad_s)[case]
+    counts = contacts.lifted[lane] & now.counts[case]
+    begins, ends = on & ~before, ~on & before & counts
+    began = np.where(begins, time, contacts.began_s[lane])
+    began = np.maximum.accumulate(began, axis=0)
+    stay = np.where(ends, time - began, 0.0).max(axis=0)
+    contacts.longest_s[lane] = np.maximum(contacts.longest_s[lane], stay)
+    contacts.began_s[lane], contacts.touching[lane] = began[-1], on[-1]
+    left = np.where(on, turned, -np.inf).max(axis=0)
+    contacts.left_rad[lane] = np.maximum(contacts.left_rad[lane], left)
+    begins &= counts
+    if np.count_nonzero(begins):
+        closing = np.maximum(now.closing_rad_s[:-1, case, unit], now.closing_rad_s[1:, case, unit])
+        _count(contacts, lane, (begins, time, closing), now.is_fast[case])
+
+
+def _count(
+    contacts: Contacts,
+    lane: tuple[IndexArray, IndexArray],
+    touch: tuple[BoolArray, FloatArray, Array],
+    is_fast: BoolArray,
+) -> None:
+    """Count touches that begin after lift-off."""
+    begins, time, closing = touch
+    number = begins.sum(axis=0)
+    contacts.count[lane] += number
+    contacts.fast_count[lane] += number * is_fast
+    first = np.where(begins, time, np.inf).min(axis=0)
+    last = np.where(begins, time, -np.inf).max(axis=0)
+    touched = number > 0
+    before = contacts.first_s[lane]
+    contacts.first_s[lane] = np.where(touched & np.isnan(before), first, before)
+    contacts.last_s[lane] = np.where(touched, last, contacts.last_s[lane])
+    fastest = np.where(begins, closing, 0.0).max(axis=0)
+    contacts.closing_rad_s[lane] = np.maximum(contacts.closing_rad_s[lane], fastest)
 
 
 @dataclass(eq=False)
@@ -175,7 +223,7 @@ class Extremes:
         hub_N_m: Size of the hub moment of all blades, (cases,).
         thrust_N: Greatest thrust of the whole rotor, (cases,).
         least_thrust_N: Least thrust, (cases,).
-        lag_rad: Size of lag, (cases, blades).
+        lag_rad: Size of lag at or above the counting speed, (cases, blades).
         lag_stop_N_m: Moment on a lag stop, (cases, blades).
         worst_s: When the highest flap came, (cases,).
     """

@@ -120,11 +120,11 @@ def test_processes_that_cannot_be_had_are_done_without(
 
 
 @pytest.mark.parametrize("workers", [1, 2])
-def test_little_work_calls_nobody(small, cases, workers, monkeypatch):
+def test_little_work_calls_nobody(small, cases, alone, workers, monkeypatch):
     monkeypatch.setattr(Crew, "_all", lambda *_: pytest.fail("somebody was called"))
-    monkeypatch.setattr(march_pool, "march_cases", lambda *_: "done here")
+    monkeypatch.setattr(march_pool, "march_cases", lambda *_: alone)
     told: list[float] = []
-    assert Crew(workers).march(small, cases, told.append) == "done here"
+    assert Crew(workers).march(small, cases, told.append) is alone
     assert told == [1.0]
 
 
