@@ -95,10 +95,11 @@ def winds_to_try(plan: Plan, step_m_s: float) -> tuple[Wind, ...]:
         ValueError: A step that is not above 0, or too small.
     """
     book = plan.rule_book
-    if book.wind_mean_cap_m_s is None or book.wind_gust_cap_m_s is None:
+    mean_cap, gust_cap = book.wind_mean_cap_m_s, book.wind_gust_cap_m_s
+    if mean_cap is None or gust_cap is None or not math.isfinite(mean_cap + gust_cap):
         return ()
     spread = max(0.0, plan.site.wind_gust_m_s - plan.site.wind_mean_m_s)
-    top = max(0.0, min(book.wind_mean_cap_m_s, book.wind_gust_cap_m_s - spread))
+    top = max(0.0, min(mean_cap, gust_cap - spread))
     least = top / MOST_WINDS
     if not (step_m_s > 0.0 and least <= step_m_s < math.inf):
         msg = (

@@ -30,6 +30,8 @@ if TYPE_CHECKING:
 
 WORTH_BLADE_STEPS = 2e6
 """Work below this is done in the process itself: starting others takes about a second."""
+WORTH_SHARING = 2e5
+"""The same where the others are at work already."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -85,7 +87,8 @@ class Crew:
             The results, in the order of the cases.
         """
         work = blade_steps(job, cases)
-        if self._workers < 2 or float(np.sum(work)) < WORTH_BLADE_STEPS:  # noqa: PLR2004
+        least = WORTH_BLADE_STEPS if self._pool is None else WORTH_SHARING
+        if self._workers < 2 or float(np.sum(work)) < least:  # noqa: PLR2004
             result = march_cases(job, cases)
             progress(1.0)
             return result

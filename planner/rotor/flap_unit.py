@@ -23,6 +23,7 @@ if TYPE_CHECKING:
 
     FloatArray = NDArray[np.float64]
 
+
 @dataclass(frozen=True, eq=False)
 class FlapUnit:
     """Equations of what flaps together: M q'' + C q' + (K0 + Omega^2 K1) q = F.
@@ -209,7 +210,7 @@ def _single(family: _Family, arrays: RotorArrays) -> FlapUnit:
     spring = hub.spring_N_m_rad if family.is_hinged else 0.0
     hinge = family.hinge
     n = hinge.size
-    length = arrays.radius_m - family.root_m
+    view = hinge if family.is_hinged else family.at_tip / (arrays.radius_m - family.root_m)
     rigid = np.eye(n)[:1] if family.is_hinged else np.zeros((1, n))
     return FlapUnit(
         n_blades=1,
@@ -217,12 +218,12 @@ def _single(family: _Family, arrays: RotorArrays) -> FlapUnit:
         fixed_flap_rad=fixed,
         rigid=rigid,
         hinge=hinge,
-        flap_view=hinge if family.is_hinged else family.at_tip / length,
+        flap_view=view,
         shape=family.at_stations[None],
         slope=family.slope_at_stations[None],
         tip=family.at_tip[None],
         mass=family.mass,
-        damping=hub.damper_N_m_s_rad * np.outer(hinge, hinge),
+        damping=hub.damper_N_m_s_rad * np.outer(view, view),
         stiffness=family.stiffness + spring * np.outer(hinge, hinge),
         spin_stiffness=family.spin_stiffness,
         spin_fixed=family.root_spin,

@@ -80,6 +80,7 @@ class Block:
         speed = first.speed_rad_s
         turning = speed > 0.0
         turns_s = settings.lead_in_turns * 2.0 * np.pi / np.where(turning, speed, 1.0)
+        turns_s = np.minimum(turns_s, settings.longest_lead_in_s)
         lead = np.where(turning, turns_s, settings.lead_in_s)
         self.time_s = -lead
         self.azimuth_rad = self.cases.azimuth_rad - speed * lead

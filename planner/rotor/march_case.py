@@ -166,6 +166,7 @@ class MarchSettings:
         longest_step_s: Longest step at low speed and at rest.
         substeps: Steps within a step of a rotor with a blade on or near a stop.
         lead_in_turns: Turns at the history's first state before it begins, from turning rotors.
+        longest_lead_in_s: Longest time of these turns.
         lead_in_s: The same for rotors at rest.
         elastic_modes: Bending modes beside rigid flap and the shape of resting on a stop.
         gradient: Fore-aft gradient of the induced velocity is kept.
@@ -176,6 +177,7 @@ class MarchSettings:
     longest_step_s: float = 0.01
     substeps: int = 8
     lead_in_turns: float = 6.0
+    longest_lead_in_s: float = 10.0
     lead_in_s: float = 2.0
     elastic_modes: int = 3
     gradient: bool = True

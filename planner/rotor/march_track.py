@@ -18,6 +18,9 @@ if TYPE_CHECKING:
 AZIMUTH_BINS = 36
 """Parts of a turn for which the lowest tip is kept."""
 TURN_RAD = 2.0 * np.pi
+JOIN_S = 0.02
+"""Touches less than this apart are one: a stop rings at more than fifty a second, and how often a
+blade parts from it then depends on the number of bending modes."""
 
 
 @dataclass(eq=False)
@@ -27,10 +30,13 @@ class Contacts:
     Attributes:
         touching: The blade is on its stop now.
         left_rad: Azimuth of the first blade when this one was last on it.
+        left_s: Time when it was.
         lifted: It has been off for a whole turn at least once, or began turning and free.
         lift_off_s: When it first had; not a number where it never did.
         count: Touches after that.
-        fast_count: Touches after that at or above the case's counting speed.
+        fast_count: Touches at or above the case's counting speed, lifted or not: lying on the
+            stop when that speed is passed is one too.
+        fast_s: Time when it was last on its stop at such a speed.
         first_s: First touch after that; not a number where there was none.
         last_s: Last touch after that.
         began_s: When the present touch began.
@@ -41,10 +47,12 @@ class Contacts:
 
     touching: BoolArray
     left_rad: FloatArray
+    left_s: FloatArray
     lifted: BoolArray
     lift_off_s: FloatArray
     count: IndexArray
     fast_count: IndexArray
+    fast_s: FloatArray
     first_s: FloatArray
     last_s: FloatArray
     began_s: FloatArray
@@ -63,10 +71,12 @@ class Contacts:
         return Contacts(
             touching=no,
             left_rad=all_of(0.0),
+            left_s=all_of(-np.inf),
             lifted=no.copy(),
             lift_off_s=all_of(np.nan),
             count=whole,
             fast_count=whole.copy(),
+            fast_s=all_of(-np.inf),
             first_s=all_of(np.nan),
             last_s=all_of(np.nan),
             began_s=all_of(0.0),
@@ -153,12 +163,26 @@ def follow(contacts: Contacts, where: IndexArray, now: Touches) -> None:
         _follow_changes(contacts, where, now, np.nonzero(changes))
     case, unit = np.nonzero(now.is_on[-1])
     azimuth = now.azimuth_rad + now.step_s * now.speed_rad_s
+    end_s = now.time_s + now.step_s
     contacts.left_rad[where[case], unit] = azimuth[case]
-    any_on &= contacts.lifted[where]
+    contacts.left_s[where[case], unit] = end_s[case]
     any_on &= now.counts[:, None]
+    if np.count_nonzero(now.is_fast) and np.count_nonzero(any_on & now.is_fast[:, None]):
+        _count_fast(contacts, where, any_on & now.is_fast[:, None], (now.time_s, end_s))
+    any_on &= contacts.lifted[where]
     if np.count_nonzero(any_on):
         fastest = np.where(any_on, now.speed_rad_s[:, None], 0.0)
         contacts.fastest_rad_s[where] = np.maximum(contacts.fastest_rad_s[where], fastest)
+
+
+def _count_fast(
+    contacts: Contacts, where: IndexArray, is_on: BoolArray, times: tuple[FloatArray, FloatArray]
+) -> None:
+    """Count blades on their stops at speed, unless they were so just before."""
+    begin, end = (time[:, None] for time in times)
+    before = contacts.fast_s[where]
+    contacts.fast_count[where] += is_on & (begin - before > JOIN_S)
+    contacts.fast_s[where] = np.where(is_on, end, before)
 
 
 def _follow_changes(
@@ -173,7 +197,9 @@ def _follow_changes(
     time = now.time_s[case] + share * now.step_s[case]
     turned = now.azimuth_rad[case] + share * (now.step_s * now.speed_rad_s)[case]
     counts = contacts.lifted[lane] & now.counts[case]
-    begins, ends = on & ~before, ~on & before & counts
+    seen = np.concatenate([contacts.left_s[lane][None], np.where(on, time, -np.inf)])
+    apart = time - np.maximum.accumulate(seen, axis=0)[:-1]
+    begins, ends = on & ~before & (apart > JOIN_S), ~on & before & counts
     began = np.where(begins, time, contacts.began_s[lane])
     began = np.maximum.accumulate(began, axis=0)
     stay = np.where(ends, time - began, 0.0).max(axis=0)
@@ -181,23 +207,22 @@ def _follow_changes(
     contacts.began_s[lane], contacts.touching[lane] = began[-1], on[-1]
     left = np.where(on, turned, -np.inf).max(axis=0)
     contacts.left_rad[lane] = np.maximum(contacts.left_rad[lane], left)
+    contacts.left_s[lane] = seen.max(axis=0)
     begins &= counts
     if np.count_nonzero(begins):
         closing = np.maximum(now.closing_rad_s[:-1, case, unit], now.closing_rad_s[1:, case, unit])
-        _count(contacts, lane, (begins, time, closing), now.is_fast[case])
+        _count(contacts, lane, (begins, time, closing))
 
 
 def _count(
     contacts: Contacts,
     lane: tuple[IndexArray, IndexArray],
     touch: tuple[BoolArray, FloatArray, Array],
-    is_fast: BoolArray,
 ) -> None:
     """Count touches that begin after lift-off."""
     begins, time, closing = touch
     number = begins.sum(axis=0)
     contacts.count[lane] += number
-    contacts.fast_count[lane] += number * is_fast
     first = np.where(begins, time, np.inf).min(axis=0)
     last = np.where(begins, time, -np.inf).max(axis=0)
     touched = number > 0
