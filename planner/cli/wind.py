@@ -69,7 +69,7 @@ def _gate_of_plan(source: Path, keeping: Keeping, step_m_s: float) -> Json:
     try:
         winds_to_try(plan, step_m_s)
     except ValueError as fault:
-        fail(f"--step: {fault}")
+        fail(f"--{fault}")
     notes: list[str] = []
     gate = _kept_or_found(plan, open_store(keeping, notes.append), step_m_s)
     for note in notes:
@@ -83,7 +83,7 @@ def _kept_or_found(plan: Plan, store: Store, step_m_s: float) -> Json:
     if before is not None and before["step_m_s"] == step_m_s:
         return dict(before)
     with ProgressLine() as progress:
-        gate = wind_gate(plan, Desk(versions(), progress, store), step_m_s)
+        gate = wind_gate(plan, Desk(versions(), progress), step_m_s)
     store.put_plain(key, gate)
     return gate
 

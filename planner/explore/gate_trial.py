@@ -29,7 +29,6 @@ if TYPE_CHECKING:
     from planner.judge.findings import Judged
     from planner.judge.outcomes import Outcome
     from planner.model.plan import Plan
-    from planner.predict.kept import Store
     from planner.predict.progress import Progress
 
 PARTS = ("ramp", "stop", ABORT)
@@ -91,7 +90,6 @@ class Desk:
 
     versions: Mapping[str, str]
     progress: Progress = silent
-    store: Store = NOTHING_KEPT
 
 
 def tried(plan: Plan, trial: Trial, desk: Desk) -> Tried:
@@ -110,7 +108,7 @@ def tried(plan: Plan, trial: Trial, desk: Desk) -> Tried:
     windy = plan_in(plan, trial)
     wanted_of_rules = replace(requests(plan.rule_book), is_thrifty=not trial.is_full)
     walk = timed(windy, segments(windy), wanted_of_rules)
-    predictions = predict(windy, walk, wanted_of_rules, desk.progress, desk.store, desk.versions)
+    predictions = predict(windy, walk, wanted_of_rules, desk.progress, NOTHING_KEPT, desk.versions)
     return Tried(trial, *judged(Case(windy, {s.id: s for s in walk}, REGISTER, predictions)))
 
 

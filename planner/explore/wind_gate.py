@@ -9,25 +9,26 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from planner.explore.gate_scan import scan
-from planner.explore.gate_trial import Wind, tried
+from planner.explore.gate_team import Team
+from planner.explore.gate_trial import Wind
 from planner.judge.wind_gate import gate_findings
 from planner.model.canonical import digest, plain
-from planner.predict.march_pool import crew
 from planner.predict.sectors import sectors_of
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
     from planner.explore.gate_scan import SectorScan
-    from planner.explore.gate_trial import Desk, Trial, Tried
+    from planner.explore.gate_trial import Desk, Tried
     from planner.model.plan import Plan
-    from planner.predict.progress import Progress
 
     Gate = dict[str, Any]
 
 STEP_M_S = 1.0
 MOST_WINDS = 100
 """A finer step would take hours."""
+AHEAD = 2
+"""Winds tried side by side; fixed, so that a gate does not depend on the machine."""
 ROUNDING = 1e-9
 NO_CAP = "the rule book: it states no cap for mean wind and gust, so that nothing bounds the gate"
 INSIDE = "GO: the planned wind is inside the gate of every sector"
@@ -127,21 +128,8 @@ def _likes(plan: Plan) -> dict[str, str]:
 def _scanned(
     plan: Plan, desk: Desk, winds: Sequence[Wind], names: Sequence[str]
 ) -> Mapping[str, SectorScan]:
-    def attempt(trial: Trial) -> Tried:
-        return tried(plan, trial, replace(desk, progress=_told(desk.progress, trial)))
-
-    with crew():
-        return {sector.name: sector for sector in scan(winds, names, attempt)}
-
-
-def _told(progress: Progress, trial: Trial) -> Progress:
-    """Progress that says which wind is tried."""
-
-    def tell(text: str, share: float | None = None, /) -> None:
-        wind = f"{trial.wind.mean_m_s:.3g} m/s" if trial.wind.gust_m_s else "calm"
-        progress(f"{'confirming' if trial.is_full else 'trying'} {wind}: {text}", share)
-
-    return tell
+    with Team(plan, desk) as team:
+        return {sector.name: sector for sector in scan(winds, names, team, AHEAD)}
 
 
 def _sector(name: str, found: SectorScan, winds: Sequence[Wind], plan: Plan) -> Gate:

@@ -74,7 +74,8 @@ def stop_moment_after_step_n_m(
         Moment away from the stop at the end of the step, (lanes,) [N m].
 
     Validity:
-        a and b not negative. Unconditionally stable; see `resolves_contact` for accuracy.
+        a and b not negative. Without damping energy is kept while sqrt(K / I) times the step
+        stays below 2 sqrt(3), I being the inertia; above that the march diverges.
 
     Source:
         The law of `stop_moment_n_m` (derived).

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from planner.model.results import Labels, Status
 from planner.predict.fineness import STATIONS
-from planner.predict.march_runs import PRINTED, cases_of, stacked
+from planner.predict.march_runs import PRINTED, cases_of
 from planner.predict.rows import Rows
 from planner.rotor.march_model import march_model
 from planner.rotor.march_trace import course
@@ -39,34 +40,45 @@ def course_rows(parts: Sequence[Part], bench: Bench, walk: Sequence[Segment]) ->
         One row a stretch of each of the two worst cases, in order of time.
     """
     rows = Rows(COURSE, "marches")
-    shown = {s.id for s in walk if s.kind != "hold" and 0.0 in {s.from_rad_s, s.to_rad_s}}
+    ends = {s.id for s in walk if s.kind != "hold" and 0.0 in {s.from_rad_s, s.to_rad_s}}
+    wanted: list[tuple[Labels, Track, Lane]] = []
     for part in parts:
         label = part.labels
-        if label.state or label.segment not in shown:
+        if label.state or label.segment not in ends:
             continue
         if part.status is not Status.OK or bench.is_thrifty:
             reason = part.reason or "left out of a scan over many winds"
             status = part.status if part.reason else Status.NOT_COMPUTED
             rows.flag(label, status, reason, speed_rad_s=part.top_rad_s)
             continue
-        for piece, outcome in zip(part.pieces, part.outcomes, strict=True):
-            if piece.is_low:
-                for words, lane in zip(CASES, outcome.shown, strict=True):
-                    _course(rows, replace(label, mode=words), bench, (piece, lane))
+        wanted += [
+            (replace(label, mode=words), piece, lane)
+            for piece, outcome in zip(part.pieces, part.outcomes, strict=True)
+            if piece.is_low
+            for words, lane in zip(CASES, outcome.shown, strict=True)
+        ]
+    if wanted:
+        _courses(rows, bench, wanted)
     return rows.prediction()
 
 
-def _course(rows: Rows, label: Labels, bench: Bench, shown: tuple[Track, Lane]) -> None:
-    """Rows of one case, marched in double precision."""
-    piece, lane = shown
-    job = bench.job([piece], PRINTED)
-    model = march_model(bench.rotor, job.top_rad_s, PRINTED, STATIONS, mounting=bench.mounting)
-    case = cases_of(bench, [piece], [replace(lane, track=0)])
-    found = course(model, stacked([piece]), bench.winds.rough, case, STRETCHES)
-    for speed, high, low in zip(
-        found.speed_rad_s.tolist(),
-        found.highest_rad.tolist(),
-        found.lowest_rad.tolist(),
-        strict=True,
-    ):
-        rows.add(label, 0.5 * (high + low), low=low, high=high, speed_rad_s=speed)
+def _courses(rows: Rows, bench: Bench, wanted: Sequence[tuple[Labels, Track, Lane]]) -> None:
+    """Rows of the cases, marched side by side in double precision."""
+    tracks = [track for _, track, _ in wanted]
+    lanes = [replace(lane, track=i) for i, (_, _, lane) in enumerate(wanted)]
+    job = bench.job(tracks, PRINTED)
+    model = march_model(
+        bench.rotor, job.top_rad_s, job.settings, STATIONS, mounting=bench.mounting
+    )
+    found = course(
+        model, job.histories, bench.winds.rough, cases_of(bench, tracks, lanes), STRETCHES
+    )
+    for i, (label, _, _) in enumerate(wanted):
+        for speed, high, low in zip(
+            found.speed_rad_s[i].tolist(),
+            found.highest_rad[i].tolist(),
+            found.lowest_rad[i].tolist(),
+            strict=True,
+        ):
+            if math.isfinite(high):
+                rows.add(label, 0.5 * (high + low), low=low, high=high, speed_rad_s=speed)

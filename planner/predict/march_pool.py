@@ -129,16 +129,19 @@ _AT_WORK: ContextVar[Crew | None] = ContextVar("crew at work", default=None)
 
 
 @contextmanager
-def crew() -> Iterator[Crew]:
-    """Processes for one study, as many as there are cores; gone when it is done or fails.
+def crew(workers: int | None = None) -> Iterator[Crew]:
+    """Processes for one study; gone when it is done or fails.
 
-    Within another such context the same crew stays at work: for many studies in a row.
+    Within another such context the same crew stays at work.
+
+    Args:
+        workers: How many; None: as many as there are cores.
     """
     before = _AT_WORK.get()
     if before is not None:
         yield before
         return
-    found = Crew(os.cpu_count() or 1)
+    found = Crew(workers or os.cpu_count() or 1)
     token = _AT_WORK.set(found)
     try:
         yield found

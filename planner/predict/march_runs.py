@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
@@ -27,7 +28,10 @@ from planner.predict.march_outcome import (
 )
 from planner.predict.march_pool import Job
 from planner.predict.march_winds import GUST_LENGTHS, gust_peaks_s
+from planner.rotor.flap_unit import flap_unit
 from planner.rotor.march_case import Histories, MarchCases, MarchSettings, make_march_cases
+from planner.rotor.march_model import RESOLVED_RAD, contact_rad_s
+from planner.rotor.setup import rotor_arrays
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
@@ -50,6 +54,8 @@ PRINTED = MarchSettings(steps_per_turn=48, longest_step_s=0.01, substeps=8)
 SCAN = MarchSettings(steps_per_turn=16, longest_step_s=0.015, substeps=6, single=True)
 """For the search of a thrifty bench; within 0.02 deg of flap and 1 % of a stop moment of the
 search above, in three quarters of its time (computed: the articulated sample in 9 m/s)."""
+MOST_SUBSTEPS = 32
+"""More than this would be needed by a stop that is stiffer than steel."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -72,11 +78,19 @@ class Bench:
             rotor=self.rotor,
             mounting=self.mounting,
             top_rad_s=max(top, self.free_rad_s, 1.0),
-            settings=settings,
+            settings=replace(settings, substeps=self._substeps(settings)),
             n_stations=STATIONS,
             histories=stacked(tracks),
             rough=self.winds.rough,
         )
+
+    def _substeps(self, settings: MarchSettings) -> int:
+        """Sub-steps that follow the stiffest stop, within reason: beyond it is not assessed."""
+        stops = (self.rotor.droop_stop, self.rotor.up_stop)
+        stiffest = max((stop.stiffness_N_m_rad for stop in stops if stop is not None), default=0.0)
+        unit = flap_unit(self.rotor, rotor_arrays(self.rotor, STATIONS), settings.elastic_modes)
+        turned = contact_rad_s(unit, stiffest) * settings.longest_step_s
+        return max(settings.substeps, min(math.ceil(turned / RESOLVED_RAD), MOST_SUBSTEPS))
 
 
 @dataclass(frozen=True, eq=False)

@@ -7,12 +7,13 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from planner.rotor.march_sections import CELLS, pseudo_tables
+from planner.rotor.march_sections import CELLS
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from planner.rotor.flap_unit import FlapUnit
+    from planner.rotor.march_sections import PseudoTables
     from planner.rotor.setup import RotorArrays
 
     FloatArray = NDArray[np.float64]
@@ -67,11 +68,11 @@ class MarchAir:
         self,
         arrays: RotorArrays,
         unit: FlapUnit,
+        tables: PseudoTables,
         shape: tuple[int, int],
-        dtype: type[np.floating[Any]],
     ) -> None:
-        """Prepare tables and work space for a number of cases and blades of each."""
-        self._tables = tables = pseudo_tables(arrays.sections, dtype)
+        """Prepare work space for a number of cases and blades of each."""
+        self._tables, dtype = tables, tables.flat.real.dtype
         whole, self._n = (*shape, arrays.chord_m.size), unit.n_freedoms
         kind = tables.flat.dtype
         self._real = [np.empty(whole, dtype) for _ in range(3)]

@@ -164,7 +164,8 @@ class MarchSettings:
     Attributes:
         steps_per_turn: Steps in one turn at speed.
         longest_step_s: Longest step at low speed and at rest.
-        substeps: Steps within a step of a rotor with a blade on or near a stop.
+        substeps: Least number of steps within a step of a rotor with a blade on or near a stop; a
+            stiff stop takes more.
         lead_in_turns: Turns at the history's first state before it begins, from turning rotors.
         longest_lead_in_s: Longest time of these turns.
         lead_in_s: The same for rotors at rest.

@@ -87,7 +87,8 @@ class LoadMaker:
         self._model, self._inflow = model, inflow
         unit, self._dtype = model.unit, model.settings.dtype
         self._blades = model.units * unit.n_blades
-        self._air = MarchAir(model.arrays, unit, (cases.count, self._blades), self._dtype)
+        shape = (cases.count, self._blades)
+        self._air = MarchAir(model.arrays, unit, model.sections, shape)
         self._offsets = model.blade_offsets_rad
         self._per_turn = model.arrays.n_blades / self._blades
         self._density = cases.air_density_kg_m3.astype(self._dtype)[:, None, None]

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
 
-from planner.methods.section_lookup import station_coefficients
+from planner.methods.section_lookup import station_lift_drag
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -67,17 +67,13 @@ def pseudo_tables(
     angle = -_angle(pseudo)
     mach = _even_mach(sections.mach)
     planes = mach.size
-    rows, first = np.unique(sections.row, return_index=True)
-    parts = []
-    for station in first:
-        many = np.zeros((planes, CELLS + 1, sections.row.size))
-        lift, drag, _ = station_coefficients(
-            sections, many + angle[None, :, None], many + mach[:, None, None]
-        )
-        parts.append(lift[:, :, station] + 1j * drag[:, :, station])
+    rows = np.unique(sections.row)
     place = np.searchsorted(rows, sections.row)
+    each = replace(sections, row=rows)
+    points = np.zeros((planes, CELLS + 1, rows.size))
+    found = station_lift_drag(each, points + angle[:, None], mach[:, None, None])
+    flat = np.moveaxis(found, -1, 0).ravel()
     kind = np.complex64 if dtype is np.float32 else np.complex128
-    flat = np.concatenate([part.ravel() for part in parts])
     return PseudoTables(
         flat=flat.astype(kind),
         rise=np.append(np.diff(flat), 0.0).astype(kind),

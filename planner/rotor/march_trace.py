@@ -1,4 +1,4 @@
-"""The course of one marched case over time, for charts: what running extremes do not keep."""
+"""The course of marched cases over time, for charts: what running extremes do not keep."""
 
 from __future__ import annotations
 
@@ -20,10 +20,10 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True, eq=False)
 class Course:
-    """Flap of a case in stretches of time, each array of shape (stretches,).
+    """Flap in stretches of equal time, each array of shape (cases, stretches).
 
     Attributes:
-        time_s: End of the stretch, from the begin of the history.
+        time_s: Middle of the stretch, from the begin of the history.
         speed_rad_s: Rotor speed then.
         highest_rad: Highest flap of any blade within it.
         lowest_rad: Lowest flap of any blade within it.
@@ -39,45 +39,46 @@ def course(
     model: MarchModel,
     histories: Histories,
     rough: Turbulence,
-    case: MarchCases,
+    cases: MarchCases,
     stretches: int,
 ) -> Course:
-    """March one case and keep the extremes of flap stretch by stretch.
+    """March cases side by side and keep the extremes of flap stretch by stretch.
 
     Args:
         model: The rotor.
         histories: Speed and pitch over time.
         rough: Turbulence series.
-        case: One case.
-        stretches: Into how many stretches of equal time its history is cut.
+        cases: The cases.
+        stretches: Into how many stretches of equal time each history is cut.
 
     Returns:
-        The course.
-
-    Raises:
-        ValueError: Not exactly one case.
+        The courses; a stretch shorter than a step holds no number.
     """
-    if case.count != 1:
-        msg = f"course: expected one case, found {case.count}; march many with `march`"
-        raise ValueError(msg)
-    block = Block(model, histories, rough, case)
-    end = float(block.end_s[0])
-    rows: list[tuple[float, float, float, float]] = []
-    highest, lowest = -np.inf, np.inf
-    while len(rows) < stretches:
+    block = Block(model, histories, rough, cases)
+    end = block.end_s
+    highest = np.full((cases.count, stretches), -np.inf)
+    lowest = np.full((cases.count, stretches), np.inf)
+    while not np.all(block.is_done):
         block.step()
-        time = float(block.time_s[0])
-        if time < 0.0:
-            continue
-        both = block.flap_rad
-        highest, lowest = max(highest, float(both.max())), min(lowest, float(both.min()))
-        if time >= end * (len(rows) + 1) / stretches:
-            rows.append((time, _speed(histories, case, time), highest, lowest))
-            highest, lowest = -np.inf, np.inf
-    columns = np.array(rows).T
-    return Course(*columns)
+        part = np.floor(block.time_s / end * stretches).astype(np.int64)
+        seen = np.flatnonzero((part >= 0) & (part < stretches))
+        flap = block.flap_rad[seen]
+        place = (seen, part[seen])
+        highest[place] = np.maximum(highest[place], flap.max(axis=1))
+        lowest[place] = np.minimum(lowest[place], flap.min(axis=1))
+    time = end[:, None] * (np.arange(stretches) + 0.5) / stretches
+    known = np.isfinite(highest)
+    return Course(
+        time_s=time,
+        speed_rad_s=_speeds(histories, cases, time),
+        highest_rad=np.where(known, highest, np.nan),
+        lowest_rad=np.where(known, lowest, np.nan),
+    )
 
 
-def _speed(histories: Histories, case: MarchCases, time_s: float) -> float:
-    table = histories.speed_rad_s[case.history[0]]
-    return float(np.interp(time_s, histories.step_s * np.arange(table.size), table))
+def _speeds(histories: Histories, cases: MarchCases, time_s: FloatArray) -> FloatArray:
+    """Rotor speed of each case at given times."""
+    tables = histories.speed_rad_s[cases.history]
+    at = histories.step_s * np.arange(tables.shape[1])
+    pairs = zip(time_s, tables, strict=True)
+    return np.stack([np.interp(time, at, table) for time, table in pairs])

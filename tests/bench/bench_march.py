@@ -15,16 +15,22 @@ import os
 for library in ("OMP", "OPENBLAS", "MKL"):
     os.environ.setdefault(f"{library}_NUM_THREADS", "1")
 
+import dataclasses  # noqa: E402 - the threads are set before numpy loads
 import statistics  # noqa: E402 - the threads are set before numpy loads
 import sys  # noqa: E402
 import time  # noqa: E402
+from functools import partial  # noqa: E402
 from typing import TYPE_CHECKING  # noqa: E402
 
+from planner.predict.march_runs import PRINTED, SEARCH  # noqa: E402
+from tests.reference.engine_cases import run  # noqa: E402
 from tests.reference.make_march_references import marched, setups  # noqa: E402
 from tests.reference.march_reference import Solver, contacts  # noqa: E402
 
 if TYPE_CHECKING:
     from collections.abc import Callable
+
+    from planner.rotor.march_case import MarchSettings
 
 REPEATS = 3
 LANES = (1, 64, 1000)
@@ -33,8 +39,12 @@ YARDSTICKS = {
     "RK45 1e-6": Solver("RK45", 1e-6, 1e-6),
     "DOP853 1e-6": Solver("DOP853", 1e-6, 1e-6),
 }
-MARCHES: dict[str, Callable[[int], object]] = {}
-"""What is measured: by name, a march of so many cases of the engagement."""
+MARCHES: dict[str, MarchSettings] = {
+    "double precision, as printed": PRINTED,
+    "single precision, 48 steps a turn": dataclasses.replace(PRINTED, single=True),
+    "single precision, as in the search": SEARCH,
+}
+"""What is measured, by name."""
 
 
 def cpu_s(call: Callable[[], object], repeats: int = REPEATS) -> float:
@@ -63,9 +73,9 @@ def main() -> None:
     stated = yardstick("LSODA 1e-6")
     for name in ("RK45 1e-6", "DOP853 1e-6"):
         yardstick(name, 1)
-    for name, run in MARCHES.items():
+    for name, settings in MARCHES.items():
         for lanes in LANES:
-            spent = cpu_s(lambda run=run, lanes=lanes: run(lanes))  # type: ignore[misc]
+            spent = cpu_s(partial(run, "engagement", settings, lanes))
             sys.stdout.write(
                 f"{name}, {lanes} cases: {spent:.2f} s, {stated * lanes / spent:.0f} times faster "
                 "a case\n"

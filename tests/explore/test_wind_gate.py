@@ -1,6 +1,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from typing import TYPE_CHECKING
 
 import pytest
 
@@ -12,6 +13,9 @@ from planner.model.canonical import digest
 from planner.model.plan import Plan, Sector
 from planner.model.results import Verdict
 from tests.judge.conftest import plan as invented
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
 
 DESK = Desk({})
 EXCEEDED = Fail("up-stop-peak at 1.1r: too much", is_exceeded=True)
@@ -35,14 +39,25 @@ def marches(monkeypatch):
     def install(limit, fail: Fail = EXCEEDED):
         asked: list[Trial] = []
 
-        def tried(plan, trial, _desk):
+        class Team:
+            def __init__(self, plan: Plan, _: Desk) -> None:
+                self.plan = plan
+
+            def __enter__(self) -> Team:
+                return self
+
+            def __exit__(self, *_: object) -> None: ...
+
+            def __call__(self, trials: Sequence[Trial]) -> list[Tried]:
+                return [tried(trial) for trial in trials]
+
+        def tried(trial: Trial) -> Tried:
             asked.append(trial)
-            assert {s.name for s in plan.site.sectors} >= set(trial.sectors) - {"all round"}
             limits = [limit if isinstance(limit, float) else limit[s] for s in trial.sectors]
             fails = (fail,) if trial.wind.mean_m_s > min(limits) else ()
             return Tried(trial, fails, () if fails else ("near the limit",))
 
-        monkeypatch.setattr(subject, "tried", tried)
+        monkeypatch.setattr(subject, "Team", Team)
         return asked
 
     return install
@@ -146,6 +161,7 @@ def test_what_is_kept_tells_plan_levels_and_their_fineness(marches):
         (0.0, 0.0, True, False, []),
         (1.5, 4.5, True, True, []),
         (3.0, 6.0, False, False, [EXCEEDED.words]),
+        (4.5, 7.5, False, False, [EXCEEDED.words]),  # tried ahead
     ]
     assert gate["levels"][0]["cautions"] == ["near the limit"]
 

@@ -9,7 +9,7 @@ import pytest
 
 from planner.methods.stop_contact import stop_moment_n_m
 from planner.predict.register import REGISTER
-from planner.predict.register_march import MARCHED, SPEEDS
+from planner.predict.register_march import COURSE, MARCHED, SPEEDS
 
 
 def test_marched_numbers_are_of_segments_and_aborts_only():
@@ -19,7 +19,8 @@ def test_marched_numbers_are_of_segments_and_aborts_only():
         assert quantity.axes[0] == "segment"
         assert quantity.allowance == ("air_load" if quantity in MARCHED else "torque")
     known = {q.id for q in REGISTER.values() if q.study in {"marches", "speeds"}}
-    assert known == {q.id for q in (*MARCHED, *SPEEDS)}
+    assert known == {q.id for q in (*MARCHED, COURSE, *SPEEDS)}
+    assert COURSE.axes == ("segment", "mode")  # a picture of starts and the stop, no abort's
 
 
 def test_contacts_are_those_where_the_stops_are_left_behind():

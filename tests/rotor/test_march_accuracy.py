@@ -18,13 +18,12 @@ STORED = json.loads(
     (pathlib.Path(__file__).parents[1] / "reference" / "march_references.json").read_text()
 )
 FROM_REST = ("engagement", "engagement in a gust")
-NO_LEAD = {"lead_in_s": 0.0, "lead_in_turns": 0.0}
 
 
 @functools.cache
 def found(name, *, search=False):
-    settings = dataclasses.replace(SEARCH if search else PRINTED, **NO_LEAD)
-    return run(name, settings)
+    settings = SEARCH if search else PRINTED
+    return run(name, dataclasses.replace(settings, lead_in_s=0.0, lead_in_turns=0.0))
 
 
 @pytest.mark.parametrize("name", FROM_REST)
