@@ -32,6 +32,9 @@ if TYPE_CHECKING:
     Json = dict[str, Any]
 
 
+_IN = " " * 6
+
+
 def record_with_gate(source: Path, keeping: Keeping, step: str) -> tuple[Json, Json]:
     """The record of a plan and its wind gate, found and kept where it is not kept already.
 
@@ -96,11 +99,9 @@ def told(gate: Mapping[str, Any]) -> str:
     for sector in gate["sectors"]:
         mean, gust = (speed_text(sector[key]) for key in ("mean_m_s", "gust_m_s"))
         lines.append(f"  {sector['name']:<30} {mean:<22} {gust}")
-        lines += textwrap.wrap(
-            f"limited by {limit_words(sector)}",
-            width,
-            initial_indent=" " * 6,
-            subsequent_indent=" " * 6,
-        )
+        details = [f"limited by {limit_words(sector)}"]
+        details += [f"CAUTION at the gate: {words}" for words in sector.get("cautions", ())]
+        for detail in details:
+            lines += textwrap.wrap(detail, width, initial_indent=_IN, subsequent_indent=_IN)
     lines += ["", *textwrap.wrap(gate["verdict"], width)]
     return "\n".join(lines).replace("\N{NO-BREAK SPACE}", " ")

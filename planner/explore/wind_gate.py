@@ -51,7 +51,7 @@ def wind_gate(plan: Plan, desk: Desk, step_m_s: float = STEP_M_S) -> Gate:
         ``anemometer_error_m_s``; ``cap`` and ``planned``: each ``mean_m_s`` and ``gust_m_s``;
         ``sectors``: each ``name``, ``mean_m_s`` and ``gust_m_s`` (null: closed), ``limited_by``,
         ``first_failure_mean_m_s`` (null: none), ``at_cap``, ``is_assessed`` (false: what ends it
-        is something that was not assessed, no limit);
+        is something that was not assessed, no limit), ``cautions`` at the gate;
         ``levels``: each ``sector``, ``mean_m_s``, ``gust_m_s`` (true wind), ``passes``,
         ``fails``, ``cautions``, ``is_full`` (tried at full fineness);
         ``verdict`` in words.
@@ -147,6 +147,7 @@ def _sector(name: str, found: SectorScan, winds: Sequence[Wind], plan: Plan) -> 
         "first_failure_mean_m_s": failed.trial.wind.mean_m_s if failed else None,
         "at_cap": bool(winds) and failed is None,
         "is_assessed": failed.fails[0].is_exceeded if failed else bool(winds),
+        "cautions": list(found.tried[top].cautions) if top >= 0 else [],
     }
 
 

@@ -235,7 +235,7 @@ class AbortTracks:
 
     def _parts(self, wanted: _Wanted, own: Order) -> tuple[Track, ...]:
         seats = wanted.cause != NOT_RESEATED
-        tracks = list(self._first(own))
+        tracks = list(self._first(own, seats=seats))
         for upper, lower in zip(wanted.uppers, wanted.lowers, strict=True):
             tracks += self._cut(upper, above=True, seats=True)
             tracks += self._cut(lower, above=False, seats=seats)
@@ -250,14 +250,14 @@ class AbortTracks:
             self._pieces[key] = tuple(piece for piece in pieces if piece.is_low != above)
         return self._pieces[key]
 
-    def _first(self, own: Order) -> tuple[Track, ...]:
+    def _first(self, own: Order, *, seats: bool) -> tuple[Track, ...]:
         """The beginning of a run-down, until its controls have reached their place and settled."""
         whole = self._found[own].history("first piece of an abort")
         end = own.move.delay_s + SETTLED_S
         if not own.move.is_frozen:
             end += max(own.move.collective_s, own.move.cyclic_rad / own.move.rate_rad_s)
         last = min(whole.speed_rad_s.size - 1, math.ceil(end / whole.step_s) + 1)
-        return pieces_of(rows_of(whole, 0, last), self._low)
+        return pieces_of(rows_of(whole, 0, last), self._low, seats=seats)
 
 
 @dataclass(frozen=True)

@@ -31,7 +31,7 @@ class Command:
 
     def __init__(self, folder: pathlib.Path) -> None:
         self.folder, self.steps, self.record = folder, list[float](), sample_record(2)
-        self.gate = gate_for(self.record)
+        self.gate = gate_for(self.record, cautions=["droop-stop-peak at 1.1r"])
 
     def found(self, _plan: object, _desk: object, step_m_s: float):
         self.steps.append(step_m_s)
@@ -57,6 +57,7 @@ def test_gate_is_found_told_drawn_and_kept(command, tmp_path):
     assert first.stdout == second.stdout
     assert (tmp_path / "wind.pdf").read_bytes().startswith(b"%PDF")
     lines = first.stdout.splitlines()
+    assert "      CAUTION at the gate: droop-stop-peak at 1.1r" in lines
     assert "Wind gate, read at the anemometer over 120 s" in lines[0]
     assert any(line.split()[:3] == ["field", "3.7", "m/s"] for line in lines)
     assert "      limited by up-stop-peak; first fails at 6.0 m/s" in lines

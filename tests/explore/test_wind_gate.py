@@ -164,6 +164,7 @@ def test_what_is_kept_tells_plan_levels_and_their_fineness(marches):
         (4.5, 7.5, False, False, [EXCEEDED.words]),  # tried ahead
     ]
     assert gate["levels"][0]["cautions"] == ["near the limit"]
+    assert gate["sectors"][0]["cautions"] == ["near the limit"]
 
 
 def test_winds_go_up_to_the_cap_and_a_plan_without_gusts_has_none():
