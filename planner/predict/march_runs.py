@@ -54,6 +54,8 @@ PRINTED = MarchSettings(steps_per_turn=48, longest_step_s=0.01, substeps=8)
 SCAN = MarchSettings(steps_per_turn=16, longest_step_s=0.015, substeps=6, single=True)
 """For the search of a thrifty bench; within 0.02 deg of flap and 1 % of a stop moment of the
 search above, in three quarters of its time (computed: the articulated sample in 9 m/s)."""
+ALONE_S = 2.0
+"""Spacing about a gust's peak that has no neighbour."""
 MOST_SUBSTEPS = 32
 """More than this would be needed by a stop that is stiffer than steel."""
 
@@ -231,6 +233,7 @@ def _marched(
 def cases_of(bench: Bench, tracks: Sequence[Track], lanes: Sequence[Lane]) -> MarchCases:
     """Cases as the rotor marches them."""
     spacing = 2.0 * np.pi / bench.rotor.n_blades
+    up = -1.0 if bench.mounting == "inverted" else 1.0  # along thrust
     rides = [lane.ride for lane in lanes]
     return make_march_cases(
         history=[lane.track for lane in lanes],
@@ -239,8 +242,9 @@ def cases_of(bench: Bench, tracks: Sequence[Track], lanes: Sequence[Lane]) -> Ma
         gust_m_s=[ride.gust_m_s for ride in rides],
         gust_start_s=[ride.start_s for ride in rides],
         gust_length_s=[ride.length_s for ride in rides],
-        upflow=[ride.upflow for ride in rides],
+        upflow=[up * ride.upflow for ride in rides],
         series=[ride.series for ride in rides],
+        series_start_s=[ride.series_start_s for ride in rides],
         air_density_kg_m3=[lane.air.density_kg_m3 for lane in lanes],
         speed_of_sound_m_s=[lane.air.sound_m_s for lane in lanes],
         load_factor=[lane.air.load_factor for lane in lanes],
@@ -276,7 +280,6 @@ def _finer(whole: Searched, track: int) -> list[Lane]:
     where = lanes_of_track(lanes, track)
     found: list[Lane] = []
     peaks = gust_peaks_s(tracks[track], bench.free_rad_s)
-    spacing = float(np.min(np.diff(peaks))) if peaks.size > 1 else 2.0
     for quantity in REFINED:
         worst = lanes[worst_lane(seen, where, quantity)]
         ride = worst.ride
@@ -284,12 +287,20 @@ def _finer(whole: Searched, track: int) -> list[Lane]:
             continue
         bounds = bench.winds.lengths_s(bench.winds.sectors[ride.sector])
         ratio = (bounds[1] / bounds[0]) ** (1.0 / (GUST_LENGTHS - 1))
+        spacing = _spacing_s(peaks, ride.start_s + 0.5 * ride.length_s)
         near = refined(ride.start_s, ride.length_s, spacing, ratio, bounds, 1)
         found += [
             replace(worst, ride=replace(ride, start_s=start, length_s=length))
             for start, length in zip(near[0].tolist(), near[1].tolist(), strict=True)
         ]
     return [lane for lane in dict.fromkeys(found) if lane not in lanes]
+
+
+def _spacing_s(peaks_s: FloatArray, peak_s: float) -> float:
+    """Distance from a gust's peak to the farther of its neighbours."""
+    place = int(np.argmin(np.abs(peaks_s - peak_s)))
+    gaps = np.diff(peaks_s)[max(place - 1, 0) : place + 1]
+    return float(np.max(gaps)) if gaps.size else ALONE_S
 
 
 def _governing(lanes: Sequence[Lane], seen: Numbers, track: int) -> list[Lane]:

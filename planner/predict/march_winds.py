@@ -26,10 +26,10 @@ if TYPE_CHECKING:
 
     FloatArray = NDArray[np.float64]
 
-PASSED_SHARES = (0.35, 0.7, 1.1)
+PASSED_SHARES = (0.02, 0.12, 0.35, 0.7, 1.1)
 """Shares of the speed where the stops are left behind at which gusts peak."""
 EARLY_S = 2.0
-"""Another gust peaks this long after the beginning of a run-down."""
+"""Another gust peaks this long after the beginning, of a start from rest too."""
 GUST_LENGTHS = 2
 ENTRY_SHARES = (0.0, 0.5)
 """Azimuth of the first blade when a history begins, in blade spacings, taken in turns."""
@@ -59,6 +59,7 @@ class Ride:
         series: Row of the turbulence; -1 for none.
         azimuth_share: Azimuth of the first blade at the beginning, in blade spacings.
         sector: Place of the sector.
+        series_start_s: Time within the turbulence when the history begins.
     """
 
     mean_m_s: float
@@ -69,6 +70,7 @@ class Ride:
     series: int
     azimuth_share: float
     sector: int
+    series_start_s: float = 0.0
 
 
 @dataclass(frozen=True)
@@ -100,17 +102,8 @@ class Winds:
             like = first.setdefault(wind, place)
             steady = Ride(sector.mean_m_s, 0.0, 0.0, 1.0, sector.upflow_slope, -1, 0.0, like)
             rides += [steady, *self._gusts(steady, sector, gust_peaks_s(track, free_rad_s))]
-            count = self.n_series if track.is_low else min(1, self.n_series)
             if sector.mean_m_s >= LEAST_TURBULENT_M_S:
-                rides += [
-                    replace(
-                        steady,
-                        series=place * self.n_series + i,
-                        azimuth_share=ENTRY_SHARES[i % 2],
-                        sector=place,
-                    )
-                    for i in range(count)
-                ]
+                rides += self._rough_rides(steady, place, gust_peaks_s(track, free_rad_s))
         return list(dict.fromkeys(rides))
 
     def _gusts(self, steady: Ride, sector: SectorWind, peaks_s: FloatArray) -> list[Ride]:
@@ -130,6 +123,24 @@ class Winds:
             )
             for i, (start, length) in enumerate(pairs)
         ]
+
+    def _rough_rides(self, steady: Ride, place: int, peaks_s: FloatArray) -> list[Ride]:
+        """Turbulence of a sector: the strongest gust of each series falls on one of the moments."""
+        first = place * self.n_series
+        return [
+            replace(
+                steady,
+                series=first + i,
+                azimuth_share=ENTRY_SHARES[i % 2],
+                sector=place,
+                series_start_s=self.strongest_s(first + i) - float(peaks_s[i % peaks_s.size]),
+            )
+            for i in range(self.n_series)
+        ]
+
+    def strongest_s(self, row: int) -> float:
+        """When the wind along the mean is strongest in a series of turbulence."""
+        return float(np.argmax(self.rough.wind_m_s[row, :, 0])) * self.rough.step_s
 
     def lengths_s(self, sector: SectorWind) -> tuple[float, float]:
         """Shortest and longest gust; one that crosses the disc faster is not even over it."""
@@ -201,7 +212,7 @@ def gust_peaks_s(track: Track, free_rad_s: float) -> FloatArray:
     history = track.history
     end = history.step_s * (history.speed_rad_s.size - 1)
     speed = history.speed_rad_s
-    peaks = [EARLY_S] if speed[0] > 0.0 and track.is_low and end > EARLY_S else []
+    peaks = [EARLY_S] if track.is_low and end > EARLY_S else []
     for share in PASSED_SHARES:
         beyond = speed >= share * free_rad_s
         changes = np.flatnonzero(beyond[1:] != beyond[:-1])

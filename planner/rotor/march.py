@@ -91,6 +91,8 @@ def _run(
                 block.step()
             finite = np.all(np.isfinite(block.x), axis=(1, 2))
             finite &= np.all(np.isfinite(block.induced_m_s), axis=1)
+            if block.lag is not None:
+                finite &= np.all(np.isfinite(block.lag.x), axis=(1, 2))
             stop = block.is_done | ~finite
             if not np.any(stop):
                 continue

@@ -66,6 +66,7 @@ class MarchCases:
         gust_length_s: How long it lasts from calm to calm, above 0.
         upflow: Upward wind over wind in the disc plane.
         series: Row of the turbulence; -1 for none.
+        series_start_s: Time within the series when the history begins.
         air_density_kg_m3: Air density.
         speed_of_sound_m_s: Speed of sound.
         load_factor: Multiplies the lift of every blade element, as for held cases.
@@ -84,6 +85,7 @@ class MarchCases:
     gust_length_s: FloatArray
     upflow: FloatArray
     series: IndexArray
+    series_start_s: FloatArray
     air_density_kg_m3: FloatArray
     speed_of_sound_m_s: FloatArray
     load_factor: FloatArray
@@ -125,6 +127,7 @@ _DEFAULTS: dict[str, Any] = {
     "gust_length_s": 1.0,
     "upflow": 0.0,
     "series": -1,
+    "series_start_s": 0.0,
     "load_factor": 1.0,
     "counts_from_rad_s": 0.0,
     "seats": True,

@@ -41,7 +41,7 @@ class Contacts:
         last_s: Last touch after that.
         began_s: When the present touch began.
         longest_s: Longest touch after that which ended.
-        closing_rad_s: Fastest closing rate at such a touch.
+        closing_rad_s: Fastest closing rate at any touch, before lift-off too.
         fastest_rad_s: Highest rotor speed in such a touch.
     """
 
@@ -208,19 +208,21 @@ def _follow_changes(
     left = np.where(on, turned, -np.inf).max(axis=0)
     contacts.left_rad[lane] = np.maximum(contacts.left_rad[lane], left)
     contacts.left_s[lane] = seen.max(axis=0)
-    begins &= counts
+    begins &= now.counts[case]
     if np.count_nonzero(begins):
         closing = np.maximum(now.closing_rad_s[:-1, case, unit], now.closing_rad_s[1:, case, unit])
-        _count(contacts, lane, (begins, time, closing))
+        fastest = np.where(begins, closing, 0.0).max(axis=0)
+        contacts.closing_rad_s[lane] = np.maximum(contacts.closing_rad_s[lane], fastest)
+        _count(contacts, lane, begins & counts, time)
 
 
 def _count(
     contacts: Contacts,
     lane: tuple[IndexArray, IndexArray],
-    touch: tuple[BoolArray, FloatArray, Array],
+    begins: BoolArray,
+    time: FloatArray,
 ) -> None:
     """Count touches that begin after lift-off."""
-    begins, time, closing = touch
     number = begins.sum(axis=0)
     contacts.count[lane] += number
     first = np.where(begins, time, np.inf).min(axis=0)
@@ -229,8 +231,6 @@ def _count(
     before = contacts.first_s[lane]
     contacts.first_s[lane] = np.where(touched & np.isnan(before), first, before)
     contacts.last_s[lane] = np.where(touched, last, contacts.last_s[lane])
-    fastest = np.where(begins, closing, 0.0).max(axis=0)
-    contacts.closing_rad_s[lane] = np.maximum(contacts.closing_rad_s[lane], fastest)
 
 
 @dataclass(eq=False)

@@ -120,10 +120,11 @@ class Course:
     def _rough(self, time_s: FloatArray) -> FloatArray:
         """Turbulence of the cases that ride a series, (cases, 3)."""
         samples = self._turbulence.wind_m_s
-        place = np.maximum(time_s, 0.0) / self._turbulence.step_s
+        n = samples.shape[1]
+        place = (time_s + self._cases.series_start_s) / self._turbulence.step_s
+        place = np.mod(place, n)
         column = place.astype(np.int64)
         share = (place - column)[:, None]
-        n = samples.shape[1]
         row = np.maximum(self._cases.series, 0)
         low = samples[row, column % n]
         now = low + share * (samples[row, (column + 1) % n] - low)
