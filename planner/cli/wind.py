@@ -15,7 +15,7 @@ from planner.explore.wind_gate import wind_gate, winds_to_try
 from planner.files.read import read_plan
 from planner.judge.wind_gate import gate_key
 from planner.model.canonical import digest
-from planner.paper.gate import limit_words, speed_text
+from planner.paper.gate import limit_words, speed_text, spread_words
 from planner.paper.texts import unprintable
 from planner.predict.register import REFERENCES, REGISTER
 from planner.record.layout import versions
@@ -103,5 +103,5 @@ def told(gate: Mapping[str, Any]) -> str:
         details += [f"CAUTION at the gate: {words}" for words in sector.get("cautions", ())]
         for detail in details:
             lines += textwrap.wrap(detail, width, initial_indent=_IN, subsequent_indent=_IN)
-    lines += ["", *textwrap.wrap(gate["verdict"], width)]
+    lines += ["", *textwrap.wrap(gate["verdict"] + spread_words(gate), width)]
     return "\n".join(lines).replace("\N{NO-BREAK SPACE}", " ")

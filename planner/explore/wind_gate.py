@@ -27,6 +27,8 @@ if TYPE_CHECKING:
 STEP_M_S = 1.0
 MOST_WINDS = 100
 """A finer step would take hours."""
+COARSEST_M_S = 2.0
+"""A coarser one could pass over winds that fail."""
 AHEAD = 2
 """Winds tried side by side; fixed, so that a gate does not depend on the machine."""
 ROUNDING = 1e-9
@@ -57,7 +59,7 @@ def wind_gate(plan: Plan, desk: Desk, step_m_s: float = STEP_M_S) -> Gate:
         ``verdict`` in words.
 
     Raises:
-        ValueError: A step that is not above 0, or too small.
+        ValueError: A step that is not above 0, too small or too coarse.
 
     Validity:
         The gate holds for the winds that were tried. Those below it were marched as finely as
@@ -93,7 +95,7 @@ def winds_to_try(plan: Plan, step_m_s: float) -> tuple[Wind, ...]:
     book states no cap there are none: nothing would bound the scan.
 
     Raises:
-        ValueError: A step that is not above 0, or too small.
+        ValueError: A step that is not above 0, too small or too coarse.
     """
     book = plan.rule_book
     mean_cap, gust_cap = book.wind_mean_cap_m_s, book.wind_gust_cap_m_s
@@ -102,10 +104,11 @@ def winds_to_try(plan: Plan, step_m_s: float) -> tuple[Wind, ...]:
     spread = max(0.0, plan.site.wind_gust_m_s - plan.site.wind_mean_m_s)
     top = max(0.0, min(mean_cap, gust_cap - spread))
     least = top / MOST_WINDS
-    if not (step_m_s > 0.0 and least <= step_m_s < math.inf):
+    if not (step_m_s > 0.0 and least <= step_m_s <= COARSEST_M_S):
         msg = (
-            f"step: expected a wind speed of at least {max(least, ROUNDING):.2g} m/s, found "
-            f"{step_m_s:g} m/s; a gate is found to the step, usually 1 m/s"
+            f"step: expected a wind speed from {max(least, ROUNDING):.2g} m/s to "
+            f"{COARSEST_M_S:g} m/s, found {step_m_s:g} m/s; a gate is found to the step, usually "
+            "1 m/s"
         )
         raise ValueError(msg)
     below = np.arange(step_m_s, top * (1.0 - ROUNDING), step_m_s).tolist()

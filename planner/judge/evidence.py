@@ -96,7 +96,11 @@ def _stops(place: Place, case: Case) -> tuple[Evidence, ...]:
         return _all("root_flap_moment") if hingeless else _all(*at_holds)
     marched = ("droop_stop_peak_moment", "up_stop_peak_moment", "contacts_after_lift_off")
     flap = _all("root_flap_peak_moment") if hingeless else _all(*marched)
-    return flap if case.plan.rotor.lag_stop is None else (*flap, *_all("lag_peak"))
+    return (
+        flap
+        if case.plan.rotor.lag_stop is None
+        else (*flap, *_all("lag_peak", "lag_stop_peak_moment"))
+    )
 
 
 def _clearance(_: Place, __: Case) -> tuple[Evidence, ...]:

@@ -58,8 +58,18 @@ def reading_words(gate: Json) -> str:
     return (
         f"Every start, the stop and every abort stay inside the rules up to this wind, read at "
         f"the anemometer over {texts.duration(gate['averaging_time_s'])}; its error of {error} is "
-        "taken off already, and no sector passes the cap."
+        "taken off already, and no sector passes the cap." + spread_words(gate)
     )
+
+
+def spread_words(gate: Json) -> str:
+    """How far above the mean gusts were tried: no gate tells of gusts that stand out farther."""
+    planned = gate.get("planned")
+    if not planned:
+        return ""
+    spread = max(0.0, planned["gust_m_s"] - planned["mean_m_s"])
+    words = texts.number(spread, "m/s", "down")
+    return f" Gusts were tried {words} above each mean wind: a gust farther above it is outside."
 
 
 def sector_text(reading: Reading, name: str) -> str:

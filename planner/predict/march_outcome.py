@@ -8,15 +8,11 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from planner.rotor.blade_views import flap_inertia
-from planner.rotor.setup import hub_freedom
-
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from numpy.typing import NDArray
 
-    from planner.model.rotor import Rotor
     from planner.predict.cases import AirState
     from planner.predict.march_winds import Ride
     from planner.rotor.march import MarchResult
@@ -89,30 +85,28 @@ class Outcome:
     shown: tuple[Lane, Lane]
 
 
-def flap_inertia_kg_m2(rotor: Rotor) -> float:
-    """Moment of inertia of one blade about its flap hinge or equivalent hinge."""
-    hinge = hub_freedom(rotor).hinge_m
-    return float(flap_inertia(rotor.blade, hinge).second_moment_kg_m2)
-
-
-def worst_of_cases(inertia_kg_m2: float, result: MarchResult) -> Numbers:
+def worst_of_cases(droop_N_m_rad: float, result: MarchResult) -> Numbers:
     """The worst of all blades of each case, by quantity, each (cases,).
 
     Beside the quantities: ``least_thrust``, ``when`` (of the highest flap), ``first`` and ``last``
     touch after lift-off (not a number where there is none), and ``converged``.
+
+    Args:
+        droop_N_m_rad: Stiffness of the droop stop; infinite where the hub has none.
+        result: What was marched.
     """
     extremes, contacts = result.extremes, result.contacts
-    closing = np.max(contacts.closing_rad_s, axis=1)
+    droop = np.max(extremes.droop_N_m, axis=1)
     return {
         "highest_flap_marched": np.max(extremes.highest_flap_rad, axis=1),
         "lowest_flap_marched": np.min(extremes.lowest_flap_rad, axis=1),
-        "droop_stop_peak_moment": np.max(extremes.droop_N_m, axis=1),
+        "droop_stop_peak_moment": droop,
         "up_stop_peak_moment": np.max(extremes.up_N_m, axis=1),
         "contacts_after_lift_off": np.max(contacts.fast_count, axis=1).astype(np.float64),
         "contact_highest_speed": np.max(contacts.fastest_rad_s, axis=1),
         "contact_longest": np.max(contacts.longest_s, axis=1),
-        "contact_closing_speed": closing,
-        "contact_energy": 0.5 * inertia_kg_m2 * closing**2,
+        "contact_closing_speed": np.max(contacts.closing_rad_s, axis=1),
+        "contact_energy": 0.5 * droop**2 / droop_N_m_rad,
         "highest_tip": np.max(extremes.highest_tip_m, axis=1),
         "lowest_tip": np.min(extremes.lowest_tip_m, axis=(1, 2)),
         "lag_peak": np.max(extremes.lag_rad, axis=1),

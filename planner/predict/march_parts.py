@@ -225,7 +225,10 @@ def _source(way: Way, ramp: _Ramp | None, ramps: _Found) -> Source:
             history.cyclic_sine_rad,
         )
     )
-    return Source(segment.id, speed, Controls(*controls), both)
+    own = Controls(*controls)
+    if len(both) == 1 and own != both[0]:
+        both = (*both, own)  # nothing on the other side covers it
+    return Source(segment.id, speed, own, both)
 
 
 def _worst_moment_s(pieces: Sequence[Track], ramps: _Found) -> float:

@@ -17,7 +17,6 @@ from planner.predict.march_outcome import (
     Numbers,
     Outcome,
     all_converged,
-    flap_inertia_kg_m2,
     joined,
     lanes_of_track,
     outcome_of,
@@ -226,7 +225,9 @@ def _marched(
     where = np.array([different.setdefault(lane, len(different)) for lane in lanes])
     cases = cases_of(bench, tracks, list(different))
     result = bench.crew.march(bench.job(tracks, settings), cases, progress)
-    numbers = worst_of_cases(flap_inertia_kg_m2(bench.rotor), result)
+    droop = bench.rotor.droop_stop
+    stiffness = math.inf if droop is None else droop.stiffness_N_m_rad
+    numbers = worst_of_cases(stiffness, result)
     return {name: values[where] for name, values in numbers.items()}
 
 

@@ -125,7 +125,7 @@ class Winds:
         ]
 
     def _rough_rides(self, steady: Ride, place: int, peaks_s: FloatArray) -> list[Ride]:
-        """Turbulence of a sector: the strongest gust of each series falls on one of the moments."""
+        """Turbulence of a sector, the strongest gust of each series at one of the moments."""
         first = place * self.n_series
         return [
             replace(

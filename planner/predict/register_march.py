@@ -168,7 +168,8 @@ MARCHED = (
         "deg/s",
         "dβ/dt",
         "high",
-        "Largest rate at which a blade meets its droop stop; zero where none does.",
+        "Largest rate at which the hinge of a blade meets its droop stop, bending included, "
+        "of all touches; zero where there is none.",
         "none: a rigid blade that falls by Δβ closes at √(2 g S Δβ / I) without air",
     ),
     _march(
@@ -177,8 +178,8 @@ MARCHED = (
         "J",
         "E",
         "high",
-        "Kinetic energy of the blade's flap as it meets its droop stop, largest of all touches.",
-        "none of its own: half of I times the closing speed squared for a rigid blade",
+        "Energy in the spring of a droop stop at its peak moment, M²/(2 K), resting included.",
+        "none of its own: one formula of droop_stop_peak_moment",
     ),
     _march(
         "lowest_tip",
@@ -260,7 +261,7 @@ MARCHED = (
         "N",
         "T",
         "both",
-        "Largest force along the shaft, either way, blade inertia included.",
+        "Largest air load of all blades along the shaft, either way; their inertia is not in it.",
         "none of its own: thrust is the periodic answer",
     ),
 )

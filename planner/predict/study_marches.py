@@ -55,6 +55,7 @@ _UNRESOLVED = (
 )
 _BY_SPEED = "contacts of an abort are told by rotor speed (contact_highest_speed)"
 _NO_TOUCH = "no blade touches its droop stop after lift-off"
+_LEVEL_LAG = "lag of a rotor with a level axis swings with its weight, which is not modelled"
 _LEVEL = "clearance is computed for an upright or inverted shaft only"
 
 
@@ -79,12 +80,13 @@ def bench_of(inputs: Inputs, hands: Crew) -> Bench:
     Raises:
         NotAssessedError: winds, air, or the speed where the stops are left behind are not known.
     """
-    air, rotor = air_of(inputs), inputs["rotor"]
+    air, rotor, site = air_of(inputs), inputs["rotor"], inputs["site"]
+    mean = min(air.wind_m_s + site.anemometer_error_m_s, air.gust_m_s)
     winds = winds_of(
         inputs["site"],
         inputs["stand.hub_height_m"],
         inputs["stand.obstructions"],
-        (air.wind_m_s, air.gust_m_s, 2.0 * rotor.blade.radius_m),
+        (mean, air.gust_m_s, 2.0 * rotor.blade.radius_m),
     )
     free = inputs.bounds("stop_free_speed")[2]
     thrifty = inputs.requests.is_thrifty
@@ -128,7 +130,7 @@ def _row(rows: Rows, part: Part, rotor: Rotor, known: tuple[_Clearance, _Hands])
         return
     if rows.quantity == "blade_clearance":
         value, worst = (
-            clearance.of_tip_m(_extreme(part.outcomes, "lowest_tip", at), part.collective_rad)
+            clearance.of_tip_m(clearance.low_side_m(part.outcomes, at), part.collective_rad)
             for at in ("nominal", "worst")
         )
         rows.add(part.labels, value, low=worst, speed_rad_s=part.top_rad_s)
@@ -179,6 +181,11 @@ def _fault(quantity: str, part: Part, rotor: Rotor, clearance: _Clearance) -> tu
             _HINGED,
         ),
         (quantity in OF_LAG and rotor.lag_stop is None, Status.NOT_APPLICABLE, _NO_LAG_STOP),
+        (
+            quantity in OF_LAG and clearance.mounting == "axis level",
+            Status.OUTSIDE_VALIDITY,
+            _LEVEL_LAG,
+        ),
         (part.status is not Status.OK, part.status, part.reason),
         (not all(o.converged for o in part.outcomes), Status.NOT_CONVERGED, _UNRESOLVED),
         (quantity == "blade_clearance", *clearance.fault),
@@ -205,6 +212,12 @@ class _Clearance:
         if self.mounting == "axis level":
             return Status.OUTSIDE_VALIDITY, _LEVEL
         return Status.OK, ""
+
+    def low_side_m(self, outcomes: Sequence[Outcome], at: str) -> float:
+        """Lowest tip over the hub as it stands: of an inverted rotor the one flapped highest."""
+        if self.mounting == "inverted":
+            return -_extreme(outcomes, "highest_tip", at)
+        return _extreme(outcomes, "lowest_tip", at)
 
     def of_tip_m(self, tip_m: float, collective_rad: float) -> float:
         """Clearance of a blade straight from hinge to tip, its trailing edge lowered by pitch."""
@@ -239,20 +252,22 @@ def _clearance(inputs: Inputs) -> _Clearance:
 def _at_hold(rows: Rows, segment: Segment, inputs: Inputs, clearance: _Clearance) -> None:
     """Clearance of the lowest periodic flap of a hold, as a straight blade."""
     label, speed = Labels(segment=segment.id), segment.to_rad_s
-    flap = inputs.prior["flap_lowest"]
+    inverted = clearance.mounting == "inverted"
+    flap = inputs.prior["flap_highest" if inverted else "flap_lowest"]
     places = [i for i, labels in enumerate(flap.labels) if labels.segment in {"", segment.id}]
     status = [flap.status[i] for i in places] or [Status.NOT_COMPUTED]
     reasons = [flap.reasons[i] for i in places] or ["no flap was predicted for this hold"]
     if clearance.fault[0] is not Status.OK:
         rows.flag(label, *clearance.fault, speed_rad_s=speed)
     elif status[0] is not Status.OK:
-        rows.flag(label, status[0], f"flap_lowest: {reasons[0]}", speed_rad_s=speed)
+        rows.flag(label, status[0], f"{flap.quantity}: {reasons[0]}", speed_rad_s=speed)
     else:
         length = clearance.radius_m - clearance.hinge_m
         pitch = abs(segment.to_collective_rad) + segment.window.collective_rad
+        sign, worst = (-1.0, flap.high) if inverted else (1.0, flap.low)
         value, low = (
-            clearance.of_tip_m(length * math.sin(float(ends[places[0]])), pitch)
-            for ends in (flap.value, flap.low)
+            clearance.of_tip_m(sign * length * math.sin(float(ends[places[0]])), pitch)
+            for ends in (flap.value, worst)
         )
         rows.add(label, value, low=low, speed_rad_s=speed)
 

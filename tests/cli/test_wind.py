@@ -105,7 +105,7 @@ def test_gate_of_a_record_is_drawn_as_a_table(command, tmp_path):
     [
         (("--step", "1"), '--step: expected a wind speed with its unit, such as "1 m/s"'),
         (("--step", "1 rpm"), "--step: expected a wind speed with its unit"),
-        (("--step", "0 m/s"), "--step: expected a wind speed of at least 0.12 m/s, found 0 m/s"),
+        (("--step", "0 m/s"), "--step: expected a wind speed from 0.12 m/s to 2 m/s, found 0 m/s"),
         (("--out", "gate.txt"), "--out: expected a file name ending in .pdf or .csv"),
     ],
 )
