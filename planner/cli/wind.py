@@ -103,5 +103,6 @@ def told(gate: Mapping[str, Any]) -> str:
         details += [f"CAUTION at the gate: {words}" for words in sector.get("cautions", ())]
         for detail in details:
             lines += textwrap.wrap(detail, width, initial_indent=_IN, subsequent_indent=_IN)
-    lines += ["", *textwrap.wrap(gate["verdict"] + spread_words(gate), width)]
+    lines += ["", *textwrap.wrap(gate["verdict"], width)]
+    lines += textwrap.wrap(spread_words(gate).strip(), width)
     return "\n".join(lines).replace("\N{NO-BREAK SPACE}", " ")

@@ -94,7 +94,12 @@ def _stops(place: Place, case: Case) -> tuple[Evidence, ...]:
     if place.kind == "hold":
         at_holds = ("droop_stop_clearance", "up_stop_clearance", "droop_stop_moment")
         return _all("root_flap_moment") if hingeless else _all(*at_holds)
-    marched = ("droop_stop_peak_moment", "up_stop_peak_moment", "contacts_after_lift_off")
+    marched = (
+        "droop_stop_peak_moment",
+        "up_stop_peak_moment",
+        "contacts_after_lift_off",
+        "contact_highest_speed",
+    )
     flap = _all("root_flap_peak_moment") if hingeless else _all(*marched)
     return (
         flap

@@ -28,6 +28,7 @@ if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
 
     from planner.model.plan import AbortActions, Segment, Shutdown
+    from planner.model.rotor import Rotor
     from planner.predict.march_outcome import Outcome
     from planner.predict.march_runs import Bench
     from planner.predict.shaft import Shaft, Way
@@ -36,6 +37,10 @@ if TYPE_CHECKING:
 WORST_WITHIN = (0.05, 0.95)
 """Shares of a ramp's time within which its worst moment is taken as the beginning of an abort."""
 AT_REST = "the rotor is at rest"
+IN_DOUBT = (
+    "it begins at a speed held between re-seat and release of the droop stop, whose place then "
+    "depends on the way there: hold above release or below re-seat"
+)
 
 
 @dataclass(frozen=True, eq=False)
@@ -97,7 +102,15 @@ def march_parts(
         if segment.id in tracks
     ]
     tops = {segment.id: segment.top_rad_s for segment in run.walk}
-    parts += [_abort_part(abort, seen, tops[abort.segment]) for abort in found]
+    doubtful = {
+        s.id for s, _ in ways if s.kind == "hold" and _stop_in_doubt(bench.rotor, s.to_rad_s)
+    }
+    parts += [
+        replace(part, status=Status.OUTSIDE_VALIDITY, reason=IN_DOUBT)
+        if part.labels.segment in doubtful and part.status is Status.OK
+        else part
+        for part in (_abort_part(abort, seen, tops[abort.segment]) for abort in found)
+    ]
     resting = [source.segment for source in sources if source.speed_rad_s <= 0.0]
     parts += [
         Part(Labels(segment=name, state=cause), 0.0, (), Status.NOT_APPLICABLE, AT_REST)
@@ -129,6 +142,8 @@ def _brakes(run: RunParts) -> tuple[float, float]:
 def _ramp(way: Way, run: RunParts, low_rad_s: float) -> _Ramp:
     """A ramp or the stop in pieces."""
     segment, controls = way
+    if _stop_in_doubt(run.shaft.rotor, segment.from_rad_s):
+        return _Ramp(status=Status.OUTSIDE_VALIDITY, reason=IN_DOUBT)
     try:
         if segment.kind == "stop" and not run.shutdown.powered:
             order = stop_order(run.shaft, way, run.shutdown, run.abort)
@@ -184,6 +199,14 @@ def _ramp_part(segment: Segment, ramp: _Ramp, seen: Mapping[int, Outcome]) -> Pa
     return replace(
         bare, outcomes=found, collective_rad=_collective(ramp.pieces), pieces=ramp.pieces
     )
+
+
+def _stop_in_doubt(rotor: Rotor, speed_rad_s: float) -> bool:
+    """Between re-seat and release speed nobody knows which place the droop stop is in."""
+    droop = rotor.droop_stop
+    if droop is None or droop.retraction is None:
+        return False
+    return droop.retraction.reseat_rad_s < speed_rad_s < droop.retraction.release_rad_s
 
 
 def _abort_part(abort: Abort, ended: Mapping[int, Outcome], top_rad_s: float) -> Part:
