@@ -27,10 +27,7 @@ from planner.predict.march_outcome import (
 )
 from planner.predict.march_pool import Job
 from planner.predict.march_winds import GUST_LENGTHS, gust_peaks_s
-from planner.rotor.flap_unit import flap_unit
 from planner.rotor.march_case import Histories, MarchCases, MarchSettings, make_march_cases
-from planner.rotor.march_model import RESOLVED_RAD, contact_rad_s
-from planner.rotor.setup import rotor_arrays
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
@@ -48,15 +45,13 @@ if TYPE_CHECKING:
 
 SEARCH = MarchSettings(steps_per_turn=24, longest_step_s=0.01, substeps=4, single=True)
 """For the search; within 0.05 deg of flap and 1 % of a stop moment of the settings below."""
-PRINTED = MarchSettings(steps_per_turn=48, longest_step_s=0.01, substeps=8)
+PRINTED = MarchSettings(steps_per_turn=48, longest_step_s=0.005, substeps=6)
 """For what is printed. DEVELOPERS.md tells the convergence study."""
 SCAN = MarchSettings(steps_per_turn=16, longest_step_s=0.015, substeps=6, single=True)
 """For the search of a thrifty bench; within 0.02 deg of flap and 1 % of a stop moment of the
 search above, in three quarters of its time (computed: the articulated sample in 9 m/s)."""
 ALONE_S = 2.0
 """Spacing about a gust's peak that has no neighbour."""
-MOST_SUBSTEPS = 32
-"""More than this would be needed by a stop that is stiffer than steel."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -79,19 +74,11 @@ class Bench:
             rotor=self.rotor,
             mounting=self.mounting,
             top_rad_s=max(top, self.free_rad_s, 1.0),
-            settings=replace(settings, substeps=self._substeps(settings)),
+            settings=settings,
             n_stations=STATIONS,
             histories=stacked(tracks),
             rough=self.winds.rough,
         )
-
-    def _substeps(self, settings: MarchSettings) -> int:
-        """Sub-steps that follow the stiffest stop, within reason: beyond it is not assessed."""
-        stops = (self.rotor.droop_stop, self.rotor.up_stop)
-        stiffest = max((stop.stiffness_N_m_rad for stop in stops if stop is not None), default=0.0)
-        unit = flap_unit(self.rotor, rotor_arrays(self.rotor, STATIONS), settings.elastic_modes)
-        turned = contact_rad_s(unit, stiffest) * settings.longest_step_s
-        return max(settings.substeps, min(math.ceil(turned / RESOLVED_RAD), MOST_SUBSTEPS))
 
 
 @dataclass(frozen=True, eq=False)

@@ -30,8 +30,7 @@ from tests.reference.make_march_references import STORED, setups  # noqa: E402
 from tests.reference.reference_rotor import reference_rotor  # noqa: E402
 
 NAMES = ("engagement in a gust", "coast-down")
-NO_LEAD = {"lead_in_s": 0.0, "lead_in_turns": 0.0}
-FINE = MarchSettings(96, 0.0025, 8, elastic_modes=4, **NO_LEAD)
+FINE = MarchSettings(96, 0.0025, 8, elastic_modes=4, lead_in_s=0.0, lead_in_turns=0.0)
 FINE_STATIONS = 24
 COLUMNS = ("highest deg", "lowest deg", "lowest tip %", "droop %", "up %", "contacts", "CPU s")
 
@@ -117,7 +116,7 @@ def main() -> None:
         fine = dataclasses.replace(changed, substeps=32)
         line(f"sub-steps at least {parts}", found(changed, 24), found(fine, 24))
     for words, settings in (("printed", PRINTED), ("search", SEARCH)):
-        used = dataclasses.replace(settings, **NO_LEAD)
+        used = dataclasses.replace(settings, lead_in_s=0.0, lead_in_turns=0.0)
         line(f"{words}, 16 stations", found(used, 16), stored())
     line("finest", finest, stored())
 

@@ -20,8 +20,8 @@ if TYPE_CHECKING:
     from planner.rotor.march_case import MarchCases, Turbulence
     from planner.rotor.march_model import MarchModel
 
-AIR = {"air_density_kg_m3": 1.2, "speed_of_sound_m_s": 340.0}
-NO_AIR = {"air_density_kg_m3": 1e-12, "speed_of_sound_m_s": 340.0}
+AIR: dict[str, Any] = {"air_density_kg_m3": 1.2, "speed_of_sound_m_s": 340.0}
+NO_AIR: dict[str, Any] = {"air_density_kg_m3": 1e-12, "speed_of_sound_m_s": 340.0}
 COARSE = MarchSettings(steps_per_turn=24, longest_step_s=0.02, substeps=4, lead_in_s=0.5)
 STATIONS = 8
 
@@ -54,7 +54,7 @@ def model_of(
     *,
     one_blade: bool = False,
     to_centre: bool = True,
-) -> MarchModel:
+) -> Any:
     """The rotor bound for marches up to 40 rad/s."""
     whole = marchable(rotor) if to_centre else rotor
     return march_model(whole, 40.0, settings, STATIONS, one_blade=one_blade)
@@ -68,7 +68,7 @@ def marched(
     return march(model, course, make_march_cases(**given), rough)
 
 
-def block_at_once(model: MarchModel, course: Histories, **cases: Any) -> Block:
+def block_at_once(model: MarchModel, course: Histories, **cases: Any) -> Any:
     """Cases without a lead-in, for looking at each step."""
     given = {"history": 0, "wind_m_s": 0.0, **AIR, **cases}
     block = Block(model, course, STILL, make_march_cases(**given))

@@ -64,7 +64,7 @@ def test_a_case_that_fails_is_marked_and_leaves_the_others_alone(make_rotor):
 
 
 def test_progress_tells_shares_up_to_one(make_rotor):
-    told = []
+    told: list[float] = []
     march(
         model_of(make_rotor("hingeless")),
         history(0.0, 0.1),
