@@ -52,6 +52,7 @@ def _samples(reading: Reading) -> list[Sample]:
     series = reading.record["series"]["flap"]
     names = list(series)
     opened = _open_segments(reading)
+    kinds = {s["id"]: s["kind"] for s in reading.record["segments"]}  # ramps, stop: marched
     samples: list[Sample] = []
     for values in zip(*(series[name] for name in names), strict=True):
         sample = dict(zip(names, values, strict=True))
@@ -62,7 +63,8 @@ def _samples(reading: Reading) -> list[Sample]:
             sample[name] = None if value is None else from_si(value, "deg")
         known = sample["lowest_rad"] is not None and sample["highest_rad"] is not None
         sample["drawn"] = known and bool(sample["assessed"])
-        sample["open"] = not sample["drawn"] or sample["segment"] in opened
+        is_hold = kinds.get(sample["segment"], "hold") == "hold"
+        sample["open"] = (not sample["drawn"] and is_hold) or sample["segment"] in opened
         samples.append(sample)
     return samples
 

@@ -76,6 +76,7 @@ class Outcome:
             any case, not a number where there is none.
         converged: Every case was marched to its end and resolved its stops.
         shown: The cases with the highest and with the lowest flap.
+        is_at_rest: The history begins or ends at rest.
     """
 
     nominal: dict[str, float]
@@ -83,6 +84,7 @@ class Outcome:
     other: dict[str, float]
     converged: bool
     shown: tuple[Lane, Lane]
+    is_at_rest: bool
 
 
 def worst_of_cases(droop_N_m_rad: float, result: MarchResult) -> Numbers:
@@ -173,6 +175,7 @@ def outcome_of(
     track: int,
     *,
     converged: bool,
+    is_at_rest: bool,
 ) -> Outcome:
     """What a track comes to.
 
@@ -181,6 +184,7 @@ def outcome_of(
         middle: Cases in nominal air and their numbers.
         track: Which track.
         converged: All its cases converged.
+        is_at_rest: Its history begins or ends at rest.
 
     Returns:
         The outcome.
@@ -201,6 +205,7 @@ def outcome_of(
             "last": float(np.fmax.reduce(numbers["last"][where])),
         },
         converged=converged,
+        is_at_rest=is_at_rest,
         shown=(
             lanes[worst_lane(numbers, where, "highest_flap_marched")],
             lanes[worst_lane(numbers, where, "lowest_flap_marched")],

@@ -107,7 +107,10 @@ class Searched:
         """What the tracks came to by the search alone; nominal stands for the worst."""
         good = all_converged(len(self.tracks), [(self.lanes, self.numbers)])
         both = (self.lanes, self.numbers)
-        return [outcome_of(both, both, i, converged=good[i]) for i in range(len(self.tracks))]
+        return [
+            outcome_of(both, both, i, converged=good[i], is_at_rest=self.tracks[i].is_at_rest)
+            for i in range(len(self.tracks))
+        ]
 
 
 def search(
@@ -182,7 +185,16 @@ def settle(
     last = _marched(bench, tracks, chosen, PRINTED, lambda share: progress(0.4 + 0.6 * share))
     good = all_converged(len(tracks), [(lanes, seen), (nominal, middle), (chosen, last)])
     merged = replaced((lanes, seen), (chosen, last))
-    return [outcome_of((lanes, merged), (nominal, middle), i, converged=good[i]) for i in places]
+    return [
+        outcome_of(
+            (lanes, merged),
+            (nominal, middle),
+            i,
+            converged=good[i],
+            is_at_rest=tracks[i].is_at_rest,
+        )
+        for i in places
+    ]
 
 
 def _together(found: Sequence[Searched]) -> Searched:

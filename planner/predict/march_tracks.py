@@ -72,6 +72,11 @@ class Track:
     begins_s: float = 0.0
 
     @property
+    def is_at_rest(self) -> bool:
+        """It begins or ends at rest."""
+        return bool(np.min(self.history.speed_rad_s[[0, -1]]) <= 0.0)
+
+    @property
     def key(self) -> tuple[bytes, bytes, bool]:
         """Equal for tracks that are the same."""
         history = self.history

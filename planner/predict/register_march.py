@@ -113,6 +113,17 @@ MARCHED = (
         "none: as for the droop stop, without the resting blade",
     ),
     _march(
+        "droop_stop_overrun",
+        "Blade below its droop stop on the way from or to rest",
+        "deg",
+        "Δβ",
+        "high",
+        "How far a blade sinks below the static droop stop: the stop's own give, or a retracting "
+        "stop that could not come back under a low blade. Does not apply where the stop is taken "
+        "not to come back, nor to parts that neither begin nor end at rest.",
+        "none of its own: the stop's angle less lowest_flap_marched",
+    ),
+    _march(
         "contacts_after_lift_off",
         "Droop-stop contacts where the stops are left behind",
         "",

@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 import itertools
+from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from planner.model.results import Status
+from planner.model.results import Labels, Status
 from planner.predict.study_modes import GREATEST_HARMONIC, MODES, fan_speeds, tracks
 
 if TYPE_CHECKING:
@@ -18,15 +19,28 @@ if TYPE_CHECKING:
     from planner.model.rotor import Stop
 
 
+SHARES_OF_SPEED = (
+    ("time_to_half", 0.5),
+    ("time_to_30", 0.3),
+    ("time_to_10", 0.1),
+    ("time_to_rest", 0.0),
+)
+"""Times of a run-down, with the share of its first speed that each belongs to."""
+
+
 def series(
     plan: Plan,
     segments: tuple[Segment, ...],
     predictions: Mapping[str, Prediction],
     requests: Requests,
 ) -> dict[str, Any]:
-    """All chart series of a plan."""
+    """All chart series of a plan; an unpowered stop takes the time that was computed for it."""
+    way = _way_to_rest(plan, segments, predictions)
+    if way:
+        last = replace(segments[-1], duration_s=way[-1][0])
+        segments = (*segments[:-1], last)
     return {
-        "run": _run(segments),
+        "run": _run(segments, way),
         "fan": _fan(plan, segments, predictions, requests),
         "flap": _flap(plan, segments, predictions),
     }
@@ -39,12 +53,32 @@ def _times(segments: tuple[Segment, ...]) -> list[tuple[float, float]]:
     return [(float(a), float(b)) for a, b in itertools.pairwise(ends)]
 
 
-def _run(segments: tuple[Segment, ...]) -> dict[str, Any]:
+def _way_to_rest(
+    plan: Plan, segments: tuple[Segment, ...], predictions: Mapping[str, Prediction]
+) -> list[tuple[float, float]]:
+    """Time from power off [s] and speed of an unpowered stop where both were computed."""
+    stop = segments[-1]
+    if stop.kind != "stop" or plan.shutdown.powered:
+        return []
+    way = [(0.0, stop.from_rad_s)]
+    for quantity, share in SHARES_OF_SPEED:
+        found = predictions[quantity]
+        places = [i for i, label in enumerate(found.labels) if label == Labels(segment=stop.id)]
+        if not places or found.status[places[0]] is not Status.OK:
+            return []
+        way.append((float(found.value[places[0]]), share * stop.from_rad_s))
+    return way
+
+
+def _run(segments: tuple[Segment, ...], way: list[tuple[float, float]]) -> dict[str, Any]:
     corners = [
         (time, speed, segment.id)
         for segment, (start, end) in zip(segments, _times(segments), strict=True)
         for time, speed in ((start, segment.from_rad_s), (end, segment.to_rad_s))
     ]
+    if way:
+        begin, stop = corners[-2][0], segments[-1].id
+        corners[-2:] = [(begin + time, speed, stop) for time, speed in way]
     return {
         "time_s": [c[0] for c in corners],
         "speed_rad_s": [c[1] for c in corners],

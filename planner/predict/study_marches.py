@@ -11,6 +11,7 @@ import numpy as np
 from planner.methods.clearance import clearance_m
 from planner.model.results import Labels, Status
 from planner.predict.cases import air_of
+from planner.predict.histories import NOT_RESEATED
 from planner.predict.march_course import COURSE, course_rows
 from planner.predict.march_outcome import LEAST, MOST
 from planner.predict.march_parts import Part, RunParts, march_parts
@@ -32,7 +33,8 @@ if TYPE_CHECKING:
 
 _ID = "marches"
 MOMENTS = {"contact_first": "first", "contact_last": "last"}
-QUANTITIES = (*MOST, *LEAST, *MOMENTS, "blade_clearance")
+OVERRUN = "droop_stop_overrun"
+QUANTITIES = (*MOST, *LEAST, *MOMENTS, OVERRUN, "blade_clearance")
 OF_STOPS = frozenset(
     {
         "droop_stop_peak_moment",
@@ -43,6 +45,7 @@ OF_STOPS = frozenset(
         "contact_closing_speed",
         "contact_energy",
         *MOMENTS,
+        OVERRUN,
     }
 )
 OF_LAG = frozenset({"lag_peak", "lag_stop_peak_moment"})
@@ -53,6 +56,8 @@ _UNRESOLVED = (
     "a case did not stay finite, or its steps do not resolve the stiffness of the stop: state "
     "the stiffness that the stop really has, or have it assessed otherwise"
 )
+_LEFT_OUT = "the stop does not come back here: that is the case looked at"
+_NOT_AT_REST = "it neither begins nor ends at rest"
 _BY_SPEED = "contacts of an abort are told by rotor speed (contact_highest_speed)"
 _NO_TOUCH = "no blade touches its droop stop after lift-off"
 _LEVEL_LAG = "lag of a rotor with a level axis swings with its weight, which is not modelled"
@@ -138,12 +143,31 @@ def _row(rows: Rows, part: Part, rotor: Rotor, known: tuple[_Clearance, _Hands])
     if rows.quantity in MOMENTS:
         _moment_row(rows, part)
         return
+    if rows.quantity == OVERRUN:
+        _overrun_row(rows, part, rotor)
+        return
     value, worst = (_extreme(part.outcomes, rows.quantity, at) for at in ("nominal", "worst"))
     low = high = worst
     if rows.quantity == "thrust_peak":
         low = min(outcome.other["least_thrust"] for outcome in part.outcomes)
     hand = hands.get((rows.quantity, part.labels), math.nan)
     rows.add(part.labels, value, low=low, high=high, speed_rad_s=part.top_rad_s, hand=hand)
+
+
+def _overrun_row(rows: Rows, part: Part, rotor: Rotor) -> None:
+    """How far a blade sinks below its static droop stop on the way from or to rest."""
+    droop, speed = rotor.droop_stop, part.top_rad_s
+    rests = [outcome for outcome in part.outcomes if outcome.is_at_rest]
+    if part.labels.state == NOT_RESEATED:
+        rows.flag(part.labels, Status.NOT_APPLICABLE, _LEFT_OUT, speed_rad_s=speed)
+    elif droop is None or not rests:
+        rows.flag(part.labels, Status.NOT_APPLICABLE, _NOT_AT_REST, speed_rad_s=speed)
+    else:
+        value, worst = (
+            max(0.0, droop.angle_rad - _extreme(rests, "lowest_flap_marched", at))
+            for at in ("nominal", "worst")
+        )
+        rows.add(part.labels, value, high=worst, speed_rad_s=speed)
 
 
 def _moment_row(rows: Rows, part: Part) -> None:

@@ -37,11 +37,20 @@ def _whole_run(inputs: Inputs) -> dict[str, Prediction]:
     top = max(segment.to_rad_s for segment in segments)
     widest = max(segment.highest_rad_s for segment in segments)
     brake = Rows("brake_speed", _ID)
-    if shutdown.brake:
-        applied = shutdown.brake_from_rad_s
+    abort: AbortActions = inputs["abort"]
+    brakes = [
+        applied
+        for is_used, applied in (
+            (shutdown.brake, shutdown.brake_from_rad_s),
+            (abort.brake, abort.brake_from_rad_s),
+        )
+        if is_used
+    ]
+    if brakes:
+        applied = max(brakes)
         brake.add(Labels(), applied, low=applied - error, high=applied + error)
     else:
-        brake.flag(Labels(), Status.NOT_APPLICABLE, "the shutdown uses no brake")
+        brake.flag(Labels(), Status.NOT_APPLICABLE, "neither shutdown nor abort uses a brake")
     return {
         "card_speed": single("card_speed", _ID, top, low=top - error, high=widest + error),
         "brake_speed": brake.prediction(),

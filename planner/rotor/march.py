@@ -71,6 +71,8 @@ def march(
     blades = model.units * model.unit.n_blades
     extremes, contacts = Extremes.none(*units, blades), Contacts.none(units)
     converged = np.zeros(cases.count, dtype=bool)
+    if not model.resolves_stops:
+        return MarchResult(extremes, contacts, converged)
     at_once = max(1, BLADES_AT_ONCE // blades)
     order = np.argsort(histories.end_s[cases.history], kind="stable")
     for edge in range(0, cases.count, at_once):
@@ -78,7 +80,7 @@ def march(
         block = Block(model, histories, rough, cases.take(where))
         _run(block, where, (extremes, contacts, converged))
         progress(min(1.0, (edge + at_once) / cases.count))
-    return MarchResult(extremes, contacts, converged & model.resolves_stops)
+    return MarchResult(extremes, contacts, converged)
 
 
 def _run(
