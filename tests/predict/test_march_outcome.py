@@ -28,7 +28,7 @@ from planner.rotor.march import MarchResult
 from planner.rotor.march_track import Contacts, Extremes
 
 AIR = AirState(1.2, 340.0, 1.0)
-INERTIA = 300.0
+STIFFNESS = 2e5
 
 
 def lane(track: int, gust_m_s: float = 0.0) -> Lane:
@@ -56,23 +56,27 @@ def result(cases: int) -> MarchResult:
 def numbers(**columns: list[float]) -> dict[str, np.ndarray]:
     """Columns as given, zeros for all other quantities."""
     length = len(next(iter(columns.values())))
-    names = (*worst_of_cases(INERTIA, result(1)),)
+    names = (*worst_of_cases(STIFFNESS, result(1)),)
     zeros = {name: np.zeros(length) for name in names} | {"converged": np.ones(length)}
     return zeros | {name: np.array(values, dtype=np.float64) for name, values in columns.items()}
 
 
 def test_the_worst_blade_speaks_for_its_case():
-    found = worst_of_cases(INERTIA, result(2))
+    found = worst_of_cases(STIFFNESS, result(2))
     assert found["highest_flap_marched"].tolist() == [2.0, 5.0]
     assert found["lowest_flap_marched"].tolist() == [0.0, 3.0]
     assert found["lowest_tip"].tolist() == [-0.5, -1.5]  # of all blades and parts of the turn
     assert found["root_flap_peak_moment"].tolist() == [102.0, 105.0]
     assert found["contacts_after_lift_off"].tolist() == [3.0, 3.0]  # those that count alone
     assert found["contact_closing_speed"].tolist() == [0.4, 0.4]
-    assert found["contact_energy"] == pytest.approx(0.5 * INERTIA * 0.4**2)
+    assert found["contact_energy"] == pytest.approx(np.array([2.0, 5.0]) ** 2 / (2.0 * STIFFNESS))
     assert found["thrust_peak"].tolist() == found["least_thrust"].tolist() == [7.0, 8.0]
     assert set(found) >= {*MOST, *LEAST}
     assert all(values.shape == (2,) for values in found.values())
+
+
+def test_hub_without_stops_takes_up_no_energy():
+    assert not np.any(worst_of_cases(math.inf, result(2))["contact_energy"])
 
 
 def test_every_quantity_has_one_worst_side():
@@ -133,8 +137,9 @@ def test_an_outcome_is_the_worst_of_all_cases_of_its_track():
         least_thrust=[-900.0, -5.0, -4.0],
     )
     middle = numbers(highest_flap_marched=[0.25], lowest_flap_marched=[-0.15])
-    outcome = outcome_of((lanes, found), ([lanes[1]], middle), 1, converged=True)
-    assert outcome.converged
+    outcome = outcome_of((lanes, found), ([lanes[1]], middle), 1, converged=True, is_at_rest=False)
+    assert (outcome.converged, outcome.is_at_rest) == (True, False)
+    assert outcome.shown == (lanes[2], lanes[1])
     assert outcome.worst["highest_flap_marched"] == 0.3
     assert outcome.worst["lowest_flap_marched"] == -0.2
     assert outcome.worst["thrust_peak"] == 30.0

@@ -162,10 +162,11 @@ def test_the_beginning_lasts_until_the_controls_have_settled(shaft, shaft_plan):
     assert first[-1].begins_s + first[-1].history.duration_s == pytest.approx(ends, abs=0.05)
 
 
-def test_only_the_low_part_tells_a_stop_that_does_not_seat(shaft, shaft_plan):
+def test_a_stop_that_does_not_seat_is_marched_where_it_tells(shaft, shaft_plan):
     found = aborts(shaft, shaft_plan, HOLD_2)
-    unseated = [track for track in found["1.2h", NOT_RESEATED].tracks if not track.seats]
-    assert [track.is_low for track in unseated] == [True]
+    first, (*upper, lower) = beginning(found["1.2h", NOT_RESEATED].tracks)
+    assert not any(track.seats for track in (*first, lower))
+    assert all(track.seats for track in upper)
     assert all(track.seats for track in found["1.2h", COMMANDED].tracks)
     braked, bare = (found["1.2h", cause].tracks[-1] for cause in (COMMANDED, BRAKE_LOST))
     assert bare.history.duration_s > 1.5 * braked.history.duration_s

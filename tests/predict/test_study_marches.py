@@ -88,12 +88,18 @@ class Play:
 @pytest.fixture(scope="module", autouse=True)
 def _plain_rotor():
     """Torque that needs no solution, and numbers that need no march."""
-    line = np.arange(1.0, 4.0)
+
+    def course(_model, _histories, _rough, cases, stretches):
+        line = np.ones((cases.count, stretches))
+        return Course(
+            line, line, FLAP * line, np.where(np.arange(stretches), -FLAP, np.nan) * line
+        )
+
     with pytest.MonkeyPatch.context() as patch:
         patch.setattr(Shaft, "torque_n_m", lambda _, at: np.array([p.speed_rad_s**2 for p in at]))
         patch.setattr(Crew, "march", Play().march)
         patch.setattr(march_course, "march_model", lambda *_, **__: None)
-        patch.setattr(march_course, "course", lambda *_: Course(line, line, line, -line))
+        patch.setattr(march_course, "course", course)
         yield
 
 
