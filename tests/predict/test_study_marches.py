@@ -16,14 +16,21 @@ from planner.model.stand import Obstruction
 from planner.predict import march_course
 from planner.predict.fineness import STATIONS
 from planner.predict.march_outcome import LEAST, MOST
-from planner.predict.march_parts import AT_REST
+from planner.predict.march_parts import AT_REST, IN_DOUBT
 from planner.predict.march_pool import Crew
 from planner.predict.march_runs import PRINTED, SCAN, SEARCH
 from planner.predict.rows import Rows, single
 from planner.predict.shaft import Shaft
 from planner.predict.study import Inputs, NotAssessedError
 from planner.predict.study_air import AIR, WIND
-from planner.predict.study_marches import MARCHES, MOMENTS, OF_LAG, OF_STOPS, QUANTITIES
+from planner.predict.study_marches import (
+    MARCHES,
+    MOMENTS,
+    OF_LAG,
+    OF_STOPS,
+    OVERRUN,
+    QUANTITIES,
+)
 from planner.rotor.march import MarchResult
 from planner.rotor.march_model import march_model
 from planner.rotor.march_trace import Course
@@ -32,10 +39,10 @@ from tests.conftest import read_sample
 
 COMMANDED, FROZEN, BRAKE_LOST, NOT_RESEATED = ABORT_CAUSES
 FREE = 9.0
-TIP = -0.2
+TIP, HIGH_TIP = -0.2, 0.3
 FLAP = 0.01
 FINE = 1e-4
-HOLD_FLAP = -0.02
+HOLD_FLAP, HOLD_HIGH = -0.02, 0.1
 
 
 def change(plan, part, **values):
@@ -77,7 +84,7 @@ class Play:
         extremes.highest_flap_rad[:] = flap[:, None]
         extremes.lowest_flap_rad[:] = -flap[:, None]
         extremes.lowest_tip_m[:] = TIP
-        extremes.highest_tip_m[:] = 0.3
+        extremes.highest_tip_m[:] = HIGH_TIP
         extremes.thrust_N[:], extremes.least_thrust_N[:] = 9000.0 + windy, -50.0 - windy
         extremes.worst_s[:] = 0.1
         contacts.first_s[:, 0], contacts.last_s[:, 1] = 1.0, 2.0
@@ -90,10 +97,8 @@ def _plain_rotor():
     """Torque that needs no solution, and numbers that need no march."""
 
     def course(_model, _histories, _rough, cases, stretches):
-        line = np.ones((cases.count, stretches))
-        return Course(
-            line, line, FLAP * line, np.where(np.arange(stretches), -FLAP, np.nan) * line
-        )
+        flap = np.where(np.arange(stretches), FLAP, np.nan) * np.ones((cases.count, 1))
+        return Course(np.ones_like(flap), np.ones_like(flap), flap, -flap)
 
     with pytest.MonkeyPatch.context() as patch:
         patch.setattr(Shaft, "torque_n_m", lambda _, at: np.array([p.speed_rad_s**2 for p in at]))
@@ -135,7 +140,7 @@ def found_in(plan, *, thrifty=False, told=lambda *_: None, **prior):
         **WIND.run(bare),
         "stop_free_speed": single("stop_free_speed", "stops", FREE),
         "flap_lowest": flap_of_holds(plan, "flap_lowest", HOLD_FLAP),
-        "flap_highest": flap_of_holds(plan, "flap_highest", 0.1),
+        "flap_highest": flap_of_holds(plan, "flap_highest", HOLD_HIGH),
         **prior,
     }
     inputs = MARCHES.inputs(plan, segments(plan), wanted, known)
@@ -214,8 +219,9 @@ def test_touches_are_timed_from_the_begin_of_the_ramp(found):
 def test_course_is_told_of_the_start_and_the_stop_alone(found):
     course = found["flap_course_marched"]
     assert {label.segment for label in course.labels} == {"1.1r", "stop"}
-    assert len({label.mode for label in course.labels}) == 2
     assert set(course.status) == {Status.OK}
+    for mode in march_course.CASES:  # a stretch without a number has no row
+        assert len(rows(course, segment="1.1r", mode=mode)) == march_course.STRETCHES - 1
 
 
 def test_nothing_is_broken_off_at_rest(plan):
@@ -269,6 +275,17 @@ def test_clearance_is_that_of_the_lowest_tip(plan, post):
     assert [found.low[ramp], found.low[hold]] == pytest.approx(by_hand, rel=1e-3)
 
 
+def test_clearance_of_an_inverted_rotor_is_that_of_its_highest_tip(plan):
+    found = found_in(change(plan, "stand", mounting="inverted", obstructions=()))[
+        "blade_clearance"
+    ]
+    radius, hinge = plan.rotor.blade.radius_m, plan.rotor.hub.flap_hinge_m
+    lowest = (-HIGH_TIP, -(radius - hinge) * math.sin(HOLD_HIGH))
+    for segment, edge in zip(("1.2r", "1.2h"), lowest, strict=True):
+        (i,) = rows(found, segment=segment, state="")
+        assert found.low[i] == pytest.approx(plan.stand.hub_height_m + edge, abs=0.03)
+
+
 def test_clearance_of_a_level_axis_is_outside_validity(plan):
     calm = change(plan, "site", wind_mean_m_s=0.0, wind_gust_m_s=0.0, anemometer_error_m_s=0.0)
     found = found_in(change(calm, "stand", mounting="axis level"))
@@ -298,6 +315,32 @@ def test_one_case_that_failed_leaves_its_part_not_converged(plan, play):
                 assert found[quantity].status[i] is expected
         (i,) = rows(found[quantity], segment="stop", state="")
         assert found[quantity].status[i] is Status.OK
+
+
+def test_a_blade_that_sinks_below_its_static_stop_is_told_at_rest(plan):
+    stop = dataclasses.replace(plan.rotor.droop_stop, angle_rad=-0.012)
+    found = found_in(change(plan, "rotor", droop_stop=stop))[OVERRUN]
+    sunk = 1.05 * (FLAP + 1e-3 * 5.0) + FINE - 0.012
+    for segment, state in (("1.1r", ""), ("stop", ""), ("1.2h", COMMANDED)):
+        (i,) = rows(found, segment=segment, state=state)
+        assert found.high[i] == pytest.approx(sunk)
+    for labels in ({"segment": "1.2r", "state": ""}, {"state": NOT_RESEATED}):
+        assert {found.status[i] for i in rows(found, **labels)} == {Status.NOT_APPLICABLE}
+
+
+def test_what_begins_where_the_droop_stop_is_in_doubt_is_outside_validity(plan):
+    between = 0.5 * sum(
+        attrgetter("reseat_rad_s", "release_rad_s")(plan.rotor.droop_stop.retraction)
+    )
+    step = dataclasses.replace(plan.blocks[0].steps[0], speed_rad_s=between)
+    block = dataclasses.replace(plan.blocks[0], steps=(step, plan.blocks[0].steps[1]))
+    found = found_in(dataclasses.replace(plan, blocks=(block,)))["thrust_peak"]
+    doubtful = [("1.2r", ""), *(("1.1h", cause) for cause in ABORT_CAUSES)]
+    for i, label in enumerate(found.labels):
+        if (label.segment, label.state) in doubtful:
+            assert (found.status[i], found.reasons[i]) == (Status.OUTSIDE_VALIDITY, IN_DOUBT)
+        else:
+            assert found.status[i] is Status.OK
 
 
 @pytest.mark.parametrize("settings", [PRINTED, SEARCH, SCAN])
