@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 import functools
 import os
 import pathlib
@@ -16,6 +17,7 @@ from planner.judge.requests import requests
 from planner.model.plan import segments
 from planner.predict import run
 from planner.predict.histories import timed
+from planner.predict.kept import NOTHING_KEPT, MemoryStore
 from planner.predict.register import REFERENCES, REGISTER
 from planner.record.layout import versions
 
@@ -24,6 +26,7 @@ if TYPE_CHECKING:
 
     from planner.model.plan import Plan
     from planner.model.results import Prediction
+    from planner.predict.kept import Store
     from planner.predict.study import Study
 
 settings.register_profile("repeatable", derandomize=True, deadline=None, database=None)
@@ -52,18 +55,25 @@ def kept_results() -> FolderStore:
     return FolderStore(pathlib.Path(os.environ["WHIRLCARD_KEPT"]))
 
 
-def predict_plan(plan: Plan, studies: Sequence[Study] = STUDIES) -> Mapping[str, Prediction]:
+def predict_plan(
+    plan: Plan, studies: Sequence[Study] = STUDIES, store: Store | None = None
+) -> Mapping[str, Prediction]:
     """Predict as the commands do: what a test before this one has marched is found again."""
     wanted = requests(plan.rule_book)
     walk = timed(plan, segments(plan), wanted)
     with pytest.MonkeyPatch.context() as patch:
         patch.setattr(run, "STUDIES", tuple(studies))
-        return run.predict(plan, walk, wanted, store=kept_results(), versions=versions())
+        return run.predict(plan, walk, wanted, store=store or kept_results(), versions=versions())
 
 
 def unmarched(studies: Sequence[Study]) -> tuple[Study, ...]:
     """All but the marches."""
     return tuple(study for study in studies if study.id != "marches")
+
+
+def all_kept(studies: Sequence[Study]) -> tuple[Study, ...]:
+    """All studies keep what they find, not the slow ones alone."""
+    return tuple(dataclasses.replace(study, kept=True) for study in studies)
 
 
 @pytest.fixture(scope="session", autouse=True)
@@ -89,10 +99,22 @@ def predicted() -> Callable[[str], Mapping[str, Prediction]]:
     return _predicted
 
 
+@functools.cache
+def _session() -> MemoryStore:
+    """Results of this session: a study that a change does not touch is not run again."""
+    return MemoryStore()
+
+
 @pytest.fixture
 def run_predict() -> Callable[[Plan], Mapping[str, Prediction]]:
     """Predict a changed plan without its marches, which would take a minute each time."""
-    return lambda plan: predict_plan(plan, unmarched(run.STUDIES))
+    return lambda plan: predict_plan(plan, all_kept(unmarched(run.STUDIES)), _session())
+
+
+@pytest.fixture
+def predict_anew() -> Callable[[Plan], Mapping[str, Prediction]]:
+    """The same with nothing kept: for tests that change the methods themselves."""
+    return lambda plan: predict_plan(plan, unmarched(run.STUDIES), NOTHING_KEPT)
 
 
 @pytest.fixture

@@ -257,4 +257,5 @@ HOLDS = Study(
     ),
     ("air", "wind", "stops"),
     run,
+    kept=True,
 )

@@ -85,4 +85,5 @@ SPEEDS = Study(
     ("segments", "keep_outs", "shutdown", "abort", "stand.modes", *TAKES),
     ("air", "wind"),
     run,
+    kept=True,
 )

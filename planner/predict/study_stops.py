@@ -173,4 +173,5 @@ STOPS = Study(
     ),
     ("air", "wind"),
     run,
+    kept=True,
 )

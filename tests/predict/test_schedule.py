@@ -78,10 +78,10 @@ def test_hold_in_a_band_has_a_negative_distance(articulated, run_predict):
     assert found.value[row(found, segment="1.3h", band="X")] < 0.0
 
 
-def test_unpowered_passage_is_not_assessed_by_rate(predicted):
+def test_unpowered_passage_is_not_judged_by_rate(predicted):
     found = predicted("articulated-run-up")["band_rate"]
     i = row(found, segment="stop", band="S1")
-    assert found.status[i] is Status.NOT_COMPUTED
+    assert found.status[i] is Status.NOT_APPLICABLE
     assert "amplitude and cycles" in found.reasons[i]
 
 
