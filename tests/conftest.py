@@ -76,6 +76,14 @@ def all_kept(studies: Sequence[Study]) -> tuple[Study, ...]:
     return tuple(dataclasses.replace(study, kept=True) for study in studies)
 
 
+def needed_for(studies: Sequence[Study], names: Sequence[str]) -> tuple[Study, ...]:
+    """Studies of these names, with all that they need."""
+    wanted = set(names)
+    for study in reversed(studies):
+        wanted |= set(study.needs) if study.id in wanted else set()
+    return tuple(study for study in studies if study.id in wanted)
+
+
 @pytest.fixture(scope="session", autouse=True)
 def _own_kept_folder(tmp_path_factory: pytest.TempPathFactory) -> Iterator[None]:
     """Results are kept in a folder of the tests' own, each sample's marches for all tests."""
@@ -106,15 +114,23 @@ def _session() -> MemoryStore:
 
 
 @pytest.fixture
-def run_predict() -> Callable[[Plan], Mapping[str, Prediction]]:
-    """Predict a changed plan without its marches, which would take a minute each time."""
-    return lambda plan: predict_plan(plan, all_kept(unmarched(run.STUDIES)), _session())
+def run_predict() -> Callable[..., Mapping[str, Prediction]]:
+    """Predict a changed plan: the named studies and what they need, else all but the marches.
+
+    The marches of a changed plan would take a minute each time.
+    """
+
+    def predict(plan: Plan, *names: str) -> Mapping[str, Prediction]:
+        studies = needed_for(run.STUDIES, names) if names else unmarched(run.STUDIES)
+        return predict_plan(plan, all_kept(studies), _session())
+
+    return predict
 
 
 @pytest.fixture
-def predict_anew() -> Callable[[Plan], Mapping[str, Prediction]]:
-    """The same with nothing kept: for tests that change the methods themselves."""
-    return lambda plan: predict_plan(plan, unmarched(run.STUDIES), NOTHING_KEPT)
+def predict_anew() -> Callable[..., Mapping[str, Prediction]]:
+    """Predict named studies with nothing kept: for tests that change the methods themselves."""
+    return lambda plan, *names: predict_plan(plan, needed_for(run.STUDIES, names), NOTHING_KEPT)
 
 
 @pytest.fixture

@@ -31,6 +31,8 @@ PASSED_SHARES = (0.02, 0.12, 0.35, 0.7, 1.1)
 EARLY_S = 2.0
 """Another gust peaks this long after the beginning, of a start from rest too."""
 GUST_LENGTHS = 2
+SERIES_ABOVE = 2
+"""Series of turbulence that a piece above the region of the stops rides."""
 ENTRY_SHARES = (0.0, 0.5)
 """Azimuth of the first blade when a history begins, in blade spacings, taken in turns."""
 SERIES_S = 600.0
@@ -103,7 +105,9 @@ class Winds:
             steady = Ride(sector.mean_m_s, 0.0, 0.0, 1.0, sector.upflow_slope, -1, 0.0, like)
             rides += [steady, *self._gusts(steady, sector, gust_peaks_s(track, free_rad_s))]
             if sector.mean_m_s >= LEAST_TURBULENT_M_S:
-                rides += self._rough_rides(steady, place, gust_peaks_s(track, free_rad_s))
+                count = self.n_series if track.is_low else min(SERIES_ABOVE, self.n_series)
+                peaks = gust_peaks_s(track, free_rad_s)
+                rides += self._rough_rides(steady, place, peaks)[:count]
         return list(dict.fromkeys(rides))
 
     def _gusts(self, steady: Ride, sector: SectorWind, peaks_s: FloatArray) -> list[Ride]:

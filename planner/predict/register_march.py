@@ -33,8 +33,8 @@ _STOP_HAND = (
     "at closing rate ω₀ peaks at g S + √((g S)² + k I ω₀²) (tested)"
 )
 _FLAP_HAND = (
-    "the periodic solution in steady wind where the ramp stays above the speed at which the "
-    "stops are left behind; gusts pass on top of it, hence the wide band"
+    "the periodic solution in steady wind where cyclic is fixed and the ramp stays above the "
+    "speed at which the stops are left behind; gusts pass on top of it, hence the wide band"
 )
 _LEFT_BEHIND = "the speed from which the stops are left behind (stop_free_speed)"
 

@@ -112,8 +112,13 @@ def predictions_of(parts: Sequence[Part], inputs: Inputs) -> dict[str, Predictio
 
 
 def _periodic(inputs: Inputs) -> _Hands:
-    """Extremes of periodic flap along ramps that stay above the region of the stops."""
+    """Extremes of periodic flap along ramps above the region of the stops, cyclic fixed.
+
+    Where cyclic is trimmed the periodic states take the trim of each instant, the crew cannot.
+    """
     hands: dict[tuple[str, Labels], float] = {}
+    walk = inputs["segments"]
+    fixed = {s.id for s in walk if not (s.from_cyclic.trimmed or s.cyclic.trimmed)}
     for marched, periodic, end in (
         ("highest_flap_marched", "flap_highest", "high"),
         ("lowest_flap_marched", "flap_lowest", "low"),
@@ -121,7 +126,7 @@ def _periodic(inputs: Inputs) -> _Hands:
         found = inputs.prior[periodic]
         values = getattr(found, end)
         for labels, status, value in zip(found.labels, found.status, values, strict=True):
-            if status is Status.OK and labels.segment:
+            if status is Status.OK and labels.segment in fixed:
                 hands[marched, labels] = float(value)
     return hands
 

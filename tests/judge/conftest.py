@@ -87,6 +87,8 @@ SAFE = {
     "up_stop_peak_moment": 0.0,
     "contacts_after_lift_off": 0.0,
     "contact_closing_speed": 10.0 * DEG,
+    "contact_highest_speed": 5.0,
+    "droop_stop_overrun": 0.5 * DEG,
     "root_flap_peak_moment": 600.0,
     "lag_peak": 4.0 * DEG,
     "lag_stop_peak_moment": 0.0,

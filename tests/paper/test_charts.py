@@ -121,12 +121,14 @@ def test_flap_chart_hatches_and_names_what_is_open() -> None:
     assert {"droop stop", "up stop", "flap [°]"} <= set(words(whole))
 
 
-def test_flap_chart_without_numbers_is_hatched_from_end_to_end() -> None:
+def test_flap_chart_without_numbers_is_hatched_at_every_hold() -> None:
+    """Ramps and the stop are marched: they are hatched where their findings are open."""
     record = sample_record(3)
     flap = record["series"]["flap"]
     flap["lowest_rad"] = [None] * len(flap["time_s"])
     drawing = flap_drawing(Reading(record), 736.0, 400.0)
-    assert sum(isinstance(shape, Path) for shape in drawing.contents) == 1
+    holds = [s for s in record["segments"] if s["kind"] == "hold"]
+    assert sum(isinstance(shape, Path) for shape in drawing.contents) == len(holds) == 3
     assert "NOT ASSESSED" in words(drawing)
 
 

@@ -25,8 +25,8 @@ def with_ramp_time(plan, seconds):
 
 
 def test_fast_ramp_needs_the_torque_that_accelerates_the_rotor(articulated, run_predict):
-    slow = run_predict(with_ramp_time(articulated, 100.0))["torque"]
-    fast = run_predict(with_ramp_time(articulated, 0.01))["torque"]
+    slow = run_predict(with_ramp_time(articulated, 100.0), "holds")["torque"]
+    fast = run_predict(with_ramp_time(articulated, 0.01), "holds")["torque"]
     i = row(slow, "1.2r")
     # by hand: each blade about the shaft, I + 2 e S + e² m = 407.5 + 2 0.22 111.0 + 0.22² 43.2
     inertia = 120.0 + 4.0 * 458.4  # hub and drive, four blades
@@ -36,13 +36,13 @@ def test_fast_ramp_needs_the_torque_that_accelerates_the_rotor(articulated, run_
 
 def test_powered_stop_brakes_with_negative_torque(articulated, run_predict):
     shutdown = dataclasses.replace(articulated.shutdown, powered=True, time_s=2.0)
-    found = run_predict(dataclasses.replace(articulated, shutdown=shutdown))["torque"]
+    found = run_predict(dataclasses.replace(articulated, shutdown=shutdown), "holds")["torque"]
     assert found.low[row(found, "stop")] < -20_000.0
 
 
 def test_unpowered_stop_takes_no_torque_from_the_drive(articulated, run_predict):
     shutdown = dataclasses.replace(articulated.shutdown, powered=False, time_s=2.0)
-    found = run_predict(dataclasses.replace(articulated, shutdown=shutdown))["torque"]
+    found = run_predict(dataclasses.replace(articulated, shutdown=shutdown), "holds")["torque"]
     assert found.low[row(found, "stop")] > 0.0
 
 
@@ -55,7 +55,7 @@ def test_trip_stands_between_card_and_proven_speed(predicted):
 def test_missing_trip_is_not_stated(articulated, run_predict):
     drive = dataclasses.replace(articulated.stand.drive, overspeed_trip_rad_s=None)
     stand = dataclasses.replace(articulated.stand, drive=drive)
-    found = run_predict(dataclasses.replace(articulated, stand=stand))
+    found = run_predict(dataclasses.replace(articulated, stand=stand), "schedule")
     assert found["trip_above_card"].status == (Status.NOT_STATED,)
     assert found["trip_below_proven"].status == (Status.NOT_STATED,)
 

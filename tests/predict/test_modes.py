@@ -35,7 +35,9 @@ def test_window_over_a_harmonic_has_no_distance_left(articulated, run_predict):
         articulated.blocks[0].steps[1], speed_rad_s=140.0 * RPM, window=Window(25.0 * RPM, 0.0)
     )
     block = dataclasses.replace(articulated.blocks[0], steps=(step,))
-    found = run_predict(dataclasses.replace(articulated, blocks=(block,)))["harmonic_spacing"]
+    found = run_predict(dataclasses.replace(articulated, blocks=(block,)), "modes")[
+        "harmonic_spacing"
+    ]
     assert found.low[row(found, segment="1.1h", mode="stand lateral", harmonic="1")] == 0.0
 
 
@@ -44,7 +46,9 @@ def test_window_that_reaches_rest_is_still_held_against_harmonics(articulated, r
         articulated.blocks[0].steps[1], speed_rad_s=140.0 * RPM, window=Window(200.0 * RPM, 0.0)
     )
     block = dataclasses.replace(articulated.blocks[0], steps=(step,))
-    found = run_predict(dataclasses.replace(articulated, blocks=(block,)))["harmonic_spacing"]
+    found = run_predict(dataclasses.replace(articulated, blocks=(block,)), "modes")[
+        "harmonic_spacing"
+    ]
     i = row(found, segment="1.1h", mode="stand lateral", harmonic="1")
     assert found.status[i] is Status.OK
     assert found.low[i] == 0.0
@@ -67,7 +71,7 @@ def test_flap_is_damped_by_the_air_and_lag_needs_its_damper(articulated, run_pre
     """Common practice: a blade flapping at once per revolution needs no mechanical damper."""
     hub = dataclasses.replace(articulated.rotor.hub, lag_damper_N_m_s_rad=0.0)
     rotor = dataclasses.replace(articulated.rotor, hub=hub)
-    found = run_predict(dataclasses.replace(articulated, rotor=rotor))["mode_damping"]
+    found = run_predict(dataclasses.replace(articulated, rotor=rotor), "modes")["mode_damping"]
     assert articulated.rotor.hub.flap_damper_N_m_s_rad == 0.0
     assert found.low[row(found, segment="1.6h", mode="flap 1")] > 0.1
     assert found.value[row(found, segment="1.6h", mode="lag 1")] == 0.0

@@ -37,7 +37,7 @@ def test_covered_passage_has_the_distance_to_the_nearer_edge(predicted):
 
 @pytest.mark.parametrize("bands", [(), ((40.0, 41.0),), ((117.0, 142.0),)])
 def test_uncovered_passage_is_not_computed(articulated, run_predict, bands):
-    found = run_predict(with_bands(articulated, *bands))["crossing_cover"]
+    found = run_predict(with_bands(articulated, *bands), "passages")["crossing_cover"]
     i = row(found, "1.2r", "stand lateral", "1")
     assert found.status[i] is Status.NOT_COMPUTED
     assert "outside every declared keep-out band" in found.reasons[i]
@@ -52,7 +52,7 @@ def test_resonance_that_is_not_passed_does_not_apply(predicted):
 def test_mode_of_unstated_mass_is_not_stated(articulated, run_predict):
     modes = tuple(dataclasses.replace(mode, rotor_fitted=None) for mode in articulated.stand.modes)
     stand = dataclasses.replace(articulated.stand, modes=modes)
-    found = run_predict(dataclasses.replace(articulated, stand=stand))
+    found = run_predict(dataclasses.replace(articulated, stand=stand), "modes", "passages")
     for quantity in ("crossing_cover", "harmonic_spacing"):
         given = [
             found[quantity].status[i]

@@ -64,7 +64,7 @@ def test_hold_window_and_gauge_error_narrow_the_band_distance(articulated, run_p
     plan = dataclasses.replace(
         articulated, keep_outs=(KeepOut("X", 280.0 * RPM, 300.0 * RPM, "test"),)
     )
-    found = run_predict(plan)["band_distance"]
+    found = run_predict(plan, "schedule")["band_distance"]
     i = row(found, segment="1.3h", band="X")
     assert found.value[i] / RPM == pytest.approx(10.0)
     assert found.low[i] / RPM == pytest.approx(10.0 - 2.0 - 1.0)
@@ -74,7 +74,7 @@ def test_hold_in_a_band_has_a_negative_distance(articulated, run_predict):
     plan = dataclasses.replace(
         articulated, keep_outs=(KeepOut("X", 260.0 * RPM, 300.0 * RPM, "test"),)
     )
-    found = run_predict(plan)["band_distance"]
+    found = run_predict(plan, "schedule")["band_distance"]
     assert found.value[row(found, segment="1.3h", band="X")] < 0.0
 
 
@@ -82,11 +82,11 @@ def test_unpowered_passage_is_not_judged_by_rate(predicted):
     found = predicted("articulated-run-up")["band_rate"]
     i = row(found, segment="stop", band="S1")
     assert found.status[i] is Status.NOT_APPLICABLE
-    assert "amplitude and cycles" in found.reasons[i]
+    assert "its turns and its amplitude" in found.reasons[i]
 
 
 def test_without_bands_band_rules_do_not_apply(articulated, run_predict):
-    found = run_predict(dataclasses.replace(articulated, keep_outs=()))
+    found = run_predict(dataclasses.replace(articulated, keep_outs=()), "schedule")
     for quantity in ("band_distance", "band_rate", "band_time"):
         assert found[quantity].status == (Status.NOT_APPLICABLE,)
 
@@ -97,8 +97,27 @@ def test_card_speed_holds_window_and_gauge_error(predicted):
     assert found.high[0] / RPM == pytest.approx(0.99 * 360.0 + 1.0 + 1.0)
 
 
-def test_brake_speed_does_not_apply_without_a_brake(predicted):
-    assert predicted("hingeless-model")["brake_speed"].status == (Status.NOT_APPLICABLE,)
+@pytest.mark.parametrize(
+    ("in_stop", "in_aborts", "expected"),
+    [(True, True, 100.0), (True, False, 90.0), (False, True, 100.0), (False, False, None)],
+)
+def test_brake_speed_is_the_faster_of_stop_and_aborts(
+    articulated, run_predict, in_stop, in_aborts, expected
+):
+    plan = dataclasses.replace(
+        articulated,
+        shutdown=dataclasses.replace(
+            articulated.shutdown, brake=in_stop, brake_from_rad_s=90.0 * RPM
+        ),
+        abort=dataclasses.replace(
+            articulated.abort, brake=in_aborts, brake_from_rad_s=100.0 * RPM
+        ),
+    )
+    found = run_predict(plan, "schedule")["brake_speed"]
+    if expected is None:
+        assert found.status == (Status.NOT_APPLICABLE,)
+    else:
+        assert found.value[0] / RPM == pytest.approx(expected)
 
 
 def test_wider_window_never_shrinks_a_band_of_predictions(articulated, run_predict):
@@ -107,9 +126,9 @@ def test_wider_window_never_shrinks_a_band_of_predictions(articulated, run_predi
         for step in articulated.blocks[0].steps
     )
     block = dataclasses.replace(articulated.blocks[0], steps=steps)
-    wide = run_predict(dataclasses.replace(articulated, blocks=(block,)))
+    wide = run_predict(dataclasses.replace(articulated, blocks=(block,)), "tip", "modes")
     block = dataclasses.replace(articulated.blocks[0])
-    narrow = run_predict(dataclasses.replace(articulated, blocks=(block,)))
+    narrow = run_predict(dataclasses.replace(articulated, blocks=(block,)), "tip", "modes")
     for quantity in ("tip_mach", "root_centrifugal_force", "harmonic_spacing", "thrust"):
         assert (wide[quantity].high >= narrow[quantity].high - 1e-12).all()
         assert (wide[quantity].low <= narrow[quantity].low + 1e-12).all()

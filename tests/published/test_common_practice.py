@@ -12,12 +12,9 @@ import dataclasses
 import numpy as np
 import pytest
 
-from planner.judge.requests import requests
 from planner.methods.beam import BladeBeam, Root, flap_matrices, lag_matrices
 from planner.methods.beam_modes import frequencies
 from planner.methods.hand_checks_flap import FlapBlade, flap_damping_ratio
-from planner.model.plan import segments
-from planner.predict.run import predict
 
 pytestmark = pytest.mark.published
 SPEED = np.array([20.0, 40.0])
@@ -47,12 +44,12 @@ def test_air_alone_damps_flap():
         assert ratio == pytest.approx(lock_number / 16.0)
 
 
-def test_without_mechanical_dampers_flap_is_damped_and_lag_is_not(articulated):
+def test_without_mechanical_dampers_flap_is_damped_and_lag_is_not(articulated, run_predict):
     hub = dataclasses.replace(
         articulated.rotor.hub, flap_damper_N_m_s_rad=0.0, lag_damper_N_m_s_rad=0.0
     )
     plan = dataclasses.replace(articulated, rotor=dataclasses.replace(articulated.rotor, hub=hub))
-    found = predict(plan, segments(plan), requests(plan.rule_book))["mode_damping"]
+    found = run_predict(plan)["mode_damping"]
     damping = {
         label.mode: found.low[i] for i, label in enumerate(found.labels) if label.segment == "1.6h"
     }
