@@ -50,12 +50,12 @@ def damaged(node: Any, chance: random.Random) -> None:
         node[place] = copy.deepcopy(chance.choice(ODD_VALUES))
 
 
-@pytest.mark.parametrize("seed", range(12))
+@pytest.mark.parametrize("seed", range(6))
 def test_random_damage_gives_faults_or_a_plan(folder, seed):
     chance = random.Random(seed)  # noqa: S311 (test data)
     texts = {name: (folder.path / name).read_text("utf-8") for name in NAMES}
     broken = 0
-    for _ in range(40):
+    for _ in range(30):
         for name, text in texts.items():
             data = tomllib.loads(text)
             for _ in range(chance.choice([0, 1, 3])):
@@ -66,7 +66,7 @@ def test_random_damage_gives_faults_or_a_plan(folder, seed):
         broken += bool(faults)
         assert all(fault.line >= 1 and fault.column >= 1 for fault in faults)
         assert all(f"{fault}".isprintable() for fault in faults)
-    assert broken > 20
+    assert broken > 15
 
 
 @pytest.mark.parametrize("name", NAMES)
