@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 
 from planner.model.results import Labels, Status
 from planner.predict.fineness import STATIONS
-from planner.predict.march_runs import PRINTED, cases_of
+from planner.predict.march_runs import SEARCH, cases_of
 from planner.predict.rows import Rows
 from planner.rotor.march_model import march_model
 from planner.rotor.march_trace import course
@@ -66,7 +66,7 @@ def _courses(rows: Rows, bench: Bench, wanted: Sequence[tuple[Labels, Track, Lan
     """Rows of the cases, marched side by side in double precision."""
     tracks = [track for _, track, _ in wanted]
     lanes = [replace(lane, track=i) for i, (_, _, lane) in enumerate(wanted)]
-    job = bench.job(tracks, PRINTED)
+    job = bench.job(tracks, replace(SEARCH, single=False))
     model = march_model(
         bench.rotor, job.top_rad_s, job.settings, STATIONS, mounting=bench.mounting
     )

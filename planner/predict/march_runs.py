@@ -43,7 +43,7 @@ if TYPE_CHECKING:
 
     FloatArray = NDArray[np.float64]
 
-SEARCH = MarchSettings(steps_per_turn=24, longest_step_s=0.015, substeps=6, single=True)
+SEARCH = MarchSettings(steps_per_turn=24, longest_step_s=0.02, substeps=6, single=True)
 """For the search; within 0.05 deg of flap and 1 % of a stop moment of the settings below."""
 PRINTED = MarchSettings(steps_per_turn=48, longest_step_s=0.01, substeps=8)
 """For what is printed. DEVELOPERS.md tells the convergence study."""

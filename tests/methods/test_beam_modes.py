@@ -100,11 +100,11 @@ def test_southwell_from_the_shapes_at_rest_is_an_upper_bound() -> None:
 @pytest.mark.parametrize("build", [flap_matrices, lag_matrices, torsion_matrices])
 def test_batch_equals_single_speeds_bit_for_bit(build: Callable[..., BeamMatrices]) -> None:
     matrices = build(a_blade(), Root(0.45, 4e3))
-    speed = np.linspace(0.0, 45.0, 25)
+    speed = np.linspace(0.0, 45.0, 9)
     batch = frequencies(matrices, speed)
-    shaped = frequencies(matrices, speed.reshape(5, 5))
-    assert batch.shape == (25, 4)
-    assert np.array_equal(shaped.reshape(25, 4), batch)
+    shaped = frequencies(matrices, speed.reshape(3, 3))
+    assert batch.shape == (9, 4)
+    assert np.array_equal(shaped.reshape(9, 4), batch)
     together = modes(matrices, speed)
     for index, value in enumerate(speed):
         assert np.array_equal(frequencies(matrices, value), batch[index])

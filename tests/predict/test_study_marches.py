@@ -13,7 +13,7 @@ from planner.judge.requests import requests
 from planner.model.plan import ABORT_CAUSES, Cyclic, segments
 from planner.model.results import Labels, Status
 from planner.model.stand import Obstruction
-from planner.predict import march_course
+from planner.predict import histories, march_course
 from planner.predict.fineness import STATIONS
 from planner.predict.march_outcome import LEAST, MOST
 from planner.predict.march_parts import AT_REST, IN_DOUBT
@@ -63,8 +63,14 @@ def short(name):
 
 
 @pytest.fixture(scope="module")
-def plan():
+def windy():
     return short("articulated-run-up")
+
+
+@pytest.fixture(scope="module")
+def plan(windy):
+    """The same in still air, where there is less to march."""
+    return change(windy, "site", wind_mean_m_s=0.0, wind_gust_m_s=0.0, anemometer_error_m_s=0.0)
 
 
 class Play:
@@ -101,6 +107,7 @@ def _plain_rotor():
         return Course(np.ones_like(flap), np.ones_like(flap), flap, -flap)
 
     with pytest.MonkeyPatch.context() as patch:
+        patch.setattr(histories, "PARTS", 4)
         patch.setattr(Shaft, "torque_n_m", lambda _, at: np.array([p.speed_rad_s**2 for p in at]))
         patch.setattr(Crew, "march", Play().march)
         patch.setattr(march_course, "march_model", lambda *_, **__: None)
@@ -170,8 +177,8 @@ def test_every_place_has_its_row(plan, found):
     assert found["root_flap_peak_moment"].reasons[0].startswith("the hub has a flap hinge")
 
 
-def test_the_worst_of_all_winds_is_told_beside_nominal_air(plan, found):
-    windy = found_in(change(plan, "site", wind_gust_m_s=12.0))
+def test_the_worst_of_all_winds_is_told_beside_nominal_air(windy):
+    found, stronger = found_in(windy), found_in(change(windy, "site", wind_gust_m_s=12.0))
     for quantity, end, sign in (
         ("highest_flap_marched", "high", 1.0),
         ("lowest_flap_marched", "low", -1.0),
@@ -181,14 +188,14 @@ def test_the_worst_of_all_winds_is_told_beside_nominal_air(plan, found):
         nominal, most = (lift * (FLAP + 1e-3 * gust) for lift in (1.0, 1.05))
         assert worst == pytest.approx(most + FINE, rel=1e-6)
         assert sign * found[quantity].value == pytest.approx(nominal, rel=1e-6)
-        assert np.all(sign * getattr(windy[quantity], end) > worst)
+        assert np.all(sign * getattr(stronger[quantity], end) > worst)
     thrust = found["thrust_peak"]
     assert np.all((thrust.low < -50.0) & (thrust.high > 9000.0))
 
 
-def test_worst_cases_are_marched_again_in_double_precision(plan, play):
+def test_worst_cases_are_marched_again_in_double_precision(windy, play):
     told = []
-    found_in(plan, told=lambda *words: told.append(words))
+    found_in(windy, told=lambda *words: told.append(words))
     assert [job.settings for job in play.jobs] == [SEARCH, SEARCH, SEARCH, PRINTED]
     assert play.lanes[-1].count < 0.2 * (play.lanes[0].count + play.lanes[1].count)
     texts = [text for text, _ in told]
@@ -287,8 +294,7 @@ def test_clearance_of_an_inverted_rotor_is_that_of_its_highest_tip(plan):
 
 
 def test_clearance_of_a_level_axis_is_outside_validity(plan):
-    calm = change(plan, "site", wind_mean_m_s=0.0, wind_gust_m_s=0.0, anemometer_error_m_s=0.0)
-    found = found_in(change(calm, "stand", mounting="axis level"))
+    found = found_in(change(plan, "stand", mounting="axis level"))
     assert set(found["blade_clearance"].status) == {Status.OUTSIDE_VALIDITY}
     assert Status.OK in found["highest_flap_marched"].status
 
@@ -318,9 +324,9 @@ def test_one_case_that_failed_leaves_its_part_not_converged(plan, play):
 
 
 def test_a_blade_that_sinks_below_its_static_stop_is_told_at_rest(plan):
-    stop = dataclasses.replace(plan.rotor.droop_stop, angle_rad=-0.012)
+    stop = dataclasses.replace(plan.rotor.droop_stop, angle_rad=-0.008)
     found = found_in(change(plan, "rotor", droop_stop=stop))[OVERRUN]
-    sunk = 1.05 * (FLAP + 1e-3 * 5.0) + FINE - 0.012
+    sunk = 1.05 * FLAP + FINE - 0.008
     for segment, state in (("1.1r", ""), ("stop", ""), ("1.2h", COMMANDED)):
         (i,) = rows(found, segment=segment, state=state)
         assert found.high[i] == pytest.approx(sunk)
@@ -361,12 +367,12 @@ def test_stop_too_stiff_for_the_steps_is_not_resolved(plan, settings):
         ("rule_book", {"allowances": ()}, Status.NOT_STATED, r"states no allowance 'air_load'"),
     ],
 )
-def test_what_is_not_known_refuses_the_whole_study(plan, play, part, values, status, words):
+def test_what_is_not_known_refuses_the_whole_study(windy, play, part, values, status, words):
     if part == "drive":
-        drive = dataclasses.replace(plan.stand.drive, **values)
+        drive = dataclasses.replace(windy.stand.drive, **values)
         part, values = "stand", {"drive": drive}
     with pytest.raises(NotAssessedError, match=words) as refusal:
-        found_in(change(plan, part, **values))
+        found_in(change(windy, part, **values))
     assert refusal.value.status is status
     assert play.jobs == []
 

@@ -150,7 +150,7 @@ def test_level_axis_shakes_a_coned_blade_once_a_turn(make_arrays):
     assert found.flap_cosine_rad[0] == pytest.approx(0.0, abs=1e-6)
 
 
-@pytest.mark.parametrize("collective_deg", [4.0, 8.0, 12.0])
+@pytest.mark.parametrize("collective_deg", [4.0, 12.0])
 def test_hover_thrust_and_power_agree_with_hover_theory(collective_deg, make_arrays):
     rotor = make_arrays(mass_kg_m=8000.0)
     Omega = 33.0

@@ -57,7 +57,7 @@ def test_no_case_of_the_envelope_raises_or_passes_without_a_number(kind, make_ar
 
 @pytest.mark.parametrize("kind", KINDS)
 def test_numbers_of_a_case_do_not_depend_on_its_companions(kind, make_arrays):
-    rotor, cases = make_arrays(kind), sweep(kind, 150, 3)
+    rotor, cases = make_arrays(kind), sweep(kind, 90, 3)
     together = numbers(trim(rotor, cases))
     order = np.random.default_rng(1).permutation(cases.count)
     permuted = numbers(trim(rotor, cases.take(order)))
