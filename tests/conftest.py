@@ -109,7 +109,7 @@ def predicted() -> Callable[[str], Mapping[str, Prediction]]:
 
 @functools.cache
 def _session() -> MemoryStore:
-    """Results of this session: a study that a change does not touch is not run again."""
+    """Results of these tests: a study that a change does not touch is not run again."""
     return MemoryStore()
 
 

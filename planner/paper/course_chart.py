@@ -27,7 +27,7 @@ _SAID = (
 
 
 def course_boxes(reading: Reading, frame: Frame) -> list[Box]:
-    """The page of the courses; none where nothing was marched from or to rest."""
+    """The page of these charts; none where nothing was marched from or to rest."""
     courses = _courses(reading)
     if not courses:
         return []

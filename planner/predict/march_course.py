@@ -1,4 +1,4 @@
-"""The course of flap along starts and the stop, for the chart on paper."""
+"""Flap over rotor speed along starts and the stop, for the chart on paper."""
 
 from __future__ import annotations
 

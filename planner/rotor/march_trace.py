@@ -1,4 +1,4 @@
-"""The course of marched cases over time, for charts: what running extremes do not keep."""
+"""Marched cases over time, for charts: what running extremes do not keep."""
 
 from __future__ import annotations
 
@@ -52,7 +52,7 @@ def course(
         stretches: Into how many stretches of equal time each history is cut.
 
     Returns:
-        The courses; a stretch shorter than a step holds no number.
+        Flap stretch by stretch; one shorter than a step holds no number.
     """
     block = Block(model, histories, rough, cases)
     end = block.end_s
