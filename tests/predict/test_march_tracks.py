@@ -163,11 +163,14 @@ def test_the_beginning_lasts_until_the_controls_have_settled(shaft, shaft_plan):
 
 
 def test_a_stop_that_does_not_seat_is_marched_where_it_tells(shaft, shaft_plan):
-    found = aborts(shaft, shaft_plan, HOLD_2)
-    first, (*upper, lower) = beginning(found["1.2h", NOT_RESEATED].tracks)
-    assert not any(track.seats for track in (*first, lower))
-    assert all(track.seats for track in upper)
-    assert all(track.seats for track in found["1.2h", COMMANDED].tracks)
+    slow = dataclasses.replace(HOLD_1, speed_rad_s=0.9 * LOW)
+    found = aborts(shaft, shaft_plan, slow, HOLD_2)
+    for segment in ("1.1h", "1.2h"):
+        tracks = found[segment, NOT_RESEATED].tracks
+        assert not any(track.seats for track in tracks if track.is_low)
+        assert tracks[-1].is_low
+        assert all(track.seats for track in found[segment, COMMANDED].tracks)
+    assert found["1.1h", NOT_RESEATED].tracks[0].is_low  # from its very beginning
     braked, bare = (found["1.2h", cause].tracks[-1] for cause in (COMMANDED, BRAKE_LOST))
     assert bare.history.duration_s > 1.5 * braked.history.duration_s
 
