@@ -78,7 +78,8 @@ DIMENSIONS: dict[str, dict[str, Unit]] = {
     "energy": {"J": Unit(1.0), "kJ": Unit(1e3)},
     "power": {"W": Unit(1.0), "kW": Unit(1e3), "hp": Unit(550.0 * _POUND_FORCE * _FOOT)},
     "inertia": {"kg m2": Unit(1.0)},
-    "first moment": {"kg m": Unit(1.0)},
+    "first moment": {"kg m": Unit(1.0), "kg mm": Unit(1e-3), "g m": Unit(1e-3)},
+    "balance grade": {"mm/s": Unit(1e-3)},
     "density": {"kg/m3": Unit(1.0)},
     "per angle": {"/rad": Unit(1.0), "/deg": Unit(1.0 / _DEGREE)},
     "per angle squared": {"/rad2": Unit(1.0), "/deg2": Unit(1.0 / _DEGREE**2)},
@@ -172,8 +173,8 @@ def dimension_of(unit: str) -> str:
 
 
 def unit_names(*dimensions: str) -> list[str]:
-    """List the unit names that the dimensions allow."""
-    return [name for dimension in dimensions for name in DIMENSIONS[dimension]]
+    """List the unit names that the dimensions allow, each once."""
+    return list(dict.fromkeys(name for each in dimensions for name in DIMENSIONS[each]))
 
 
 def example(*dimensions: str) -> str:

@@ -160,6 +160,30 @@ def fan(
 
 
 @app.command()
+def speeds(
+    plan: Annotated[Path, typer.Argument(help="Plan folder or its plan.toml.", metavar="PLAN")],
+    out: Annotated[
+        Path | None, typer.Option("--out", "-o", help="Table to write as well, ending in .csv.")
+    ] = None,
+) -> None:
+    """Find better speeds for each hold that is too near a resonance."""
+    from planner.cli.screen import check_target
+    from planner.cli.sources import write
+    from planner.cli.speeds import advice_csv, advice_of, told
+    from planner.judge.status import exit_status
+    from planner.model.results import Verdict
+
+    if out is not None:
+        check_target(out, (".csv",))
+    advice = advice_of(plan)
+    if out is not None:
+        write(out, advice_csv(advice).encode())
+    say(told(advice) + (f"\n\nWrote {out}" if out is not None else ""))
+    worst = Verdict.worst([Verdict.GO, *(one.verdict for one in advice)])
+    raise typer.Exit(int(exit_status(worst)))
+
+
+@app.command()
 def wind(
     plan: PlanArgument,
     out: Annotated[

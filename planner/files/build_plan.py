@@ -222,6 +222,7 @@ def _abort(abort: AbortTable, full_speed: float) -> AbortActions:
         reaction_time_s=abort.reaction_time,
         brake=abort.brake,
         brake_from_rad_s=_or_zero(abort.brake_from, full_speed),
+        reentries=abort.reentries,
     )
 
 

@@ -8,6 +8,12 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
+from planner.files.build_balance import (
+    balance_of,
+    blade_frequency_of,
+    check_balance,
+    check_blade_frequencies,
+)
 from planner.files.build_sections import build_section
 from planner.files.csv_tables import STATION_COLUMNS, CsvTable
 from planner.files.faults import Fault
@@ -100,6 +106,8 @@ def check_rotor(document: Document, file: RotorFile) -> None:
     _check_lag_stop(document, file)
     _check_sections(document, file)
     _check_blade_set(document, file)
+    check_balance(document, file)
+    check_blade_frequencies(document, file)
 
 
 def check_stations(rows: StationRows, file: RotorFile) -> list[Fault]:
@@ -272,6 +280,8 @@ def build_rotor(file: RotorFile, rows: StationRows, polars: dict[str, CsvTable])
         proven_rad_s=file.proven_speed,
         root_force_rating_N=file.root_force_rating,
         lag_stop=_lag_stop(file.lag_stop),
+        balance=balance_of(file.balance),
+        measured_modes=tuple(blade_frequency_of(entry) for entry in file.measured_mode),
     )
 
 
@@ -293,7 +303,10 @@ def _blade(file: RotorFile, rows: StationRows, polars: dict[str, CsvTable]) -> B
             cg_offset_m=values["c.g. offset"],
             ac_offset_m=values["a.c. offset"],
         ),
-        point_masses=tuple(PointMass(m.name, m.radius, m.mass) for m in file.blade.point_mass),
+        point_masses=tuple(
+            PointMass(m.name, m.radius, m.mass, 0.0 if m.offset is None else m.offset)
+            for m in file.blade.point_mass
+        ),
         sections=tuple(
             SectionSpan(
                 section=build_section(span, polars),

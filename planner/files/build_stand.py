@@ -8,6 +8,15 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from planner.files.build_rotor import hinge_radius
+from planner.files.build_train import (
+    check_labels,
+    check_masses,
+    check_stand_frequencies,
+    check_train,
+    column_of,
+    stand_frequency_of,
+    train_of,
+)
 from planner.files.faults import shown
 from planner.files.schema_rotor import HingelessTable
 from planner.model.stand import Drive, GivenMode, Obstruction, Ratings, Stand
@@ -46,6 +55,10 @@ def check_stand(document: Document, file: StandFile) -> None:
         expected = "a trip at or below the drive's maximum_speed"
         document.fault(("drive", "overspeed_trip"), expected, "correct one of the two")
     _check_torque(document, file)
+    check_masses(document, file)
+    check_train(document, file)
+    check_labels(document, file)
+    check_stand_frequencies(document, file)
     allowed = _LARGEST_GAUGE_ERROR * file.full_speed * (1.0 + _ROUNDING)
     if file.speed_gauge_error.resolved(file.full_speed) > allowed:
         expected = f"at most {_LARGEST_GAUGE_ERROR:.0%} of full_speed"
@@ -132,15 +145,22 @@ def build_stand(file: StandFile) -> Stand:
                 direction=mode.direction,
                 rotor_fitted=mode.rotor_fitted,
                 source=mode.source,
+                modal_mass_kg=mode.modal_mass,
+                missing_mass_kg=mode.missing_mass,
             )
             for mode in file.mode
         ),
         drive=_drive(file.drive, file.full_speed),
         brake_below_rad_s=_optional(file.brake.below if file.brake else None, file.full_speed),
-        ratings=Ratings(file.ratings.thrust, file.ratings.hub_moment),
+        ratings=Ratings(file.ratings.thrust, file.ratings.hub_moment, file.ratings.hub_amplitude),
         obstructions=_places(file.obstruction),
         positions=_places(file.position),
         brake_torque_N_m=file.brake.torque if file.brake else None,
+        column=column_of(file.column),
+        drive_train=train_of(file.drive_train),
+        measured_modes=tuple(
+            stand_frequency_of(entry, file.full_speed) for entry in file.measured_mode
+        ),
     )
 
 

@@ -6,6 +6,7 @@ import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, TypeVar
 
+from planner.files.build_balance import check_balanced_mass, check_point_offsets
 from planner.files.build_plan import build_plan, check_plan
 from planner.files.build_rotor import (
     StationRows,
@@ -161,7 +162,11 @@ class _Reading:
         if stations is None and file.blade.stations is None and file.blade.station:
             stations = inline_stations(document, file)
         if stations is not None:
-            self.faults.extend(check_stations(stations, file))
+            faults = check_stations(stations, file)
+            self.faults.extend(faults)
+            if not faults and stations.values["radius"].size:
+                check_balanced_mass(document, file, stations.values)
+                check_point_offsets(document, file, stations.values)
         return _RotorParts(file, stations, self._polars(document, file))
 
     def _stand(self, plan: Document, rotor: _RotorParts | None) -> StandFile | None:

@@ -160,6 +160,11 @@ class AbortTable(Table):
     brake_from: Speed | None = Field(
         default=None, description="Speed where the brake is applied; only with brake = true."
     )
+    reentries: Annotated[int, Whole(0, 20)] | None = Field(
+        default=None,
+        description="How many aborts, each with a way back to where it began, this card allows"
+        " for; they count towards time and turns in keep-out bands.",
+    )
     actions: list[Prose] = Field(description="Actions in order.", min_length=1)
 
 

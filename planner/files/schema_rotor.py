@@ -30,6 +30,8 @@ Damper = Annotated[
 MomentRating = Annotated[float, Quantity("moment", positive=True, example="6 kN m")]
 Stiffness = Annotated[float, Quantity("bending stiffness", positive=True, example="30 kN m2")]
 Label = Annotated[str, Text(longest=120)]
+Frequency = Annotated[float, Quantity("frequency", positive=True, example="2.3 Hz")]
+Accuracy = Annotated[float, Quantity("share", positive=True, maximum="10 %", example="1 %")]
 Bare = Annotated[float, Number(positive=True)]
 
 
@@ -49,8 +51,7 @@ class Station(Table):
         float, Quantity("pitch inertia per length", positive=True, example="0.04 kg m")
     ] = Field(description="Pitch inertia per length about the pitch axis.")
     cg_offset: Offset = Field(
-        description="Centre of gravity, positive aft of the pitch axis;"
-        " kept for the record, not used yet."
+        description="Centre of gravity, positive aft of the pitch axis; it couples blade modes."
     )
     ac_offset: Offset = Field(
         description="Aerodynamic centre, positive aft of the pitch axis;"
@@ -65,6 +66,11 @@ class PointMassTable(Table):
     radius: PositiveLength = Field(description="Radius of the mass from the shaft axis.")
     mass: Annotated[float, Quantity("mass", positive=True, example="2.5 kg")] = Field(
         description="Mass on one blade."
+    )
+    offset: Offset | None = Field(
+        default=None,
+        description="Chordwise place, positive aft of the pitch axis; left out, the mass lies on"
+        " that axis.",
     )
 
 
@@ -212,6 +218,57 @@ class LagStopTable(Table):
     moment_rating: MomentRating = Field(description="Moment that each of the two stops carries.")
 
 
+class BalanceTable(Table):
+    """What drives the stand once per revolution: a grade, or a measured unbalance."""
+
+    grade: (
+        Annotated[float, Quantity("balance grade", positive=True, example="6.3 mm/s")] | None
+    ) = Field(
+        default=None,
+        description="Balance grade, with mass and reference_speed; or give measured.",
+    )
+    mass: Annotated[float, Quantity("mass", positive=True, example="320 kg")] | None = Field(
+        default=None, description="Mass that the grade refers to: blades and hub; with grade."
+    )
+    reference_speed: AbsoluteSpeed | None = Field(
+        default=None,
+        description="Highest rotor speed in service, to which the grade refers; with grade.",
+    )
+    measured: (
+        Annotated[float, Quantity("first moment", positive=True, example="0.2 kg m")] | None
+    ) = Field(
+        default=None,
+        description="Measured residual unbalance of hub and rotor, without the two spreads; or"
+        " give grade.",
+    )
+    static_moment_spread: Annotated[
+        float, Quantity("first moment", minimum="0 kg m", example="0.03 kg m")
+    ] = Field(description="Greatest difference of first mass moment between two blades.")
+    lag_angle_spread: Annotated[
+        float, Quantity("angle", minimum="0 deg", maximum="5 deg", example="0.2 deg")
+    ] = Field(description="Greatest difference of lag angle between two blades, from even places.")
+    source: Label = Field(description="Where the numbers come from.")
+
+
+class BladeFrequencyTable(Table):
+    """A natural frequency of a blade, found by a rap test or in an earlier run."""
+
+    mode: Label = Field(
+        description='Mode, such as "flap 2"; of a teetering hub such as "flap 2 cyclic".'
+    )
+    frequency: Frequency = Field(
+        description="Natural frequency as seen on the turning blade; it corrects the model."
+    )
+    speed: Annotated[float, Quantity("rotor speed", minimum="0 rpm", example="0 rpm")] = Field(
+        description='Rotor speed where it was found; "0 rpm" for a rap test.'
+    )
+    collective: FlapAngle = Field(description="Collective pitch where it was found.")
+    accuracy: Accuracy = Field(
+        description="Error of the measured frequency, either way, above 0 and up to 10 %."
+    )
+    source: Label = Field(description="Where the numbers come from.")
+
+
 class RotorFile(Table):
     """The article under test."""
 
@@ -249,4 +306,12 @@ class RotorFile(Table):
     )
     lag_stop: LagStopTable | None = Field(
         default=None, description="Lag stops; only an articulated hub has them."
+    )
+    balance: BalanceTable | None = Field(
+        default=None,
+        description="Unbalance of rotor and hub; without it no passage of a stand resonance is"
+        " assessed.",
+    )
+    measured_mode: list[BladeFrequencyTable] = Field(
+        default=[], description="Measured frequencies of the blades; they correct the model."
     )

@@ -99,13 +99,25 @@ def abort_words(segment: str, state: str) -> str:
     return f"abort from {segment or 'anywhere'}, {state}"
 
 
+def harmonic_words(harmonic: str) -> str:
+    """A harmonic, or the stand mode that a blade mode is held against, in words.
+
+    Example:
+        >>> harmonic_words("4"), harmonic_words("stand lateral, Ω - ω")
+        ('4 per rev', 'against stand lateral, Ω - ω')
+    """
+    if not harmonic:
+        return ""
+    return f"{harmonic} per rev" if harmonic.isdigit() else f"against {harmonic}"
+
+
 def place_words(labels: Labels) -> str:
     """Labels in words; the whole run where all are empty."""
     where = abort_words(labels.segment, labels.state) if labels.state else labels.segment
     parts = [
         where,
         labels.mode,
-        f"{labels.harmonic} per rev" if labels.harmonic else "",
+        harmonic_words(labels.harmonic),
         f"band {labels.band}" if labels.band else "",
     ]
     return ", ".join(part for part in parts if part) or "whole run"
@@ -155,9 +167,5 @@ class Case:
 
     @cached_property
     def unfitted_modes(self) -> frozenset[str]:
-        """Labels of given modes that are not stated to be found with the rotor's mass fitted."""
-        return frozenset(
-            f"{mode.family} {mode.name}"
-            for mode in self.plan.stand.modes
-            if mode.rotor_fitted is not True
-        )
+        """Labels of given modes that are not stated to count the rotor's mass."""
+        return frozenset(m.label for m in self.plan.stand.modes if not m.counts_rotor)

@@ -120,13 +120,16 @@ def _aborts(place: Place, case: Case) -> tuple[Evidence, ...]:
 
 
 def _unpowered(place: Place, case: Case) -> tuple[Evidence, ...]:
-    """A passage that cannot choose its rate: by cycles, and by what each stand mode answers."""
-    if not any(place.enters(band) for band in case.plan.keep_outs):
-        return ()
-    answers = (
-        Evidence("band_amplification", "stand", mode=mode) for mode in _given("stand", case)
+    """A passage that cannot choose its rate: by cycles, and by how far the stand sways."""
+    enters = any(place.enters(band) for band in case.plan.keep_outs)
+    return (*_sway(case), *(_all("band_cycles") if enters else ()))
+
+
+def _sway(case: Case) -> tuple[Evidence, ...]:
+    """What each mode of the stand answers to unbalance while it is passed."""
+    return tuple(
+        Evidence("passage_amplitude", "stand", "1", mode=mode) for mode in _given("stand", case)
     )
-    return (*_all("band_cycles"), *answers)
 
 
 def _resonance(place: Place, case: Case) -> tuple[Evidence, ...]:
@@ -138,7 +141,7 @@ def _resonance(place: Place, case: Case) -> tuple[Evidence, ...]:
     if place.kind == "stop" and not case.plan.shutdown.powered:
         return (*covers, *_unpowered(place, case))
     enters = any(place.enters(band) for band in case.plan.keep_outs)
-    return (*covers, *_all("band_rate")) if enters else covers
+    return (*covers, *_sway(case), *(_all("band_rate") if enters else ()))
 
 
 def _blade_modes(place: Place, case: Case) -> tuple[Evidence, ...]:
@@ -166,9 +169,8 @@ def _given_modes(case: Case) -> tuple[Evidence, ...]:
 
 
 def _given(family: str, case: Case) -> tuple[str, ...]:
-    """Labels of a family's modes in the stand file."""
-    modes = case.plan.stand.modes
-    return tuple(f"{family} {mode.name}" for mode in modes if mode.family == family)
+    """Labels of a family's modes that the stand file gives or that follow from it."""
+    return case.plan.stand.mode_labels(family)
 
 
 def _bands(case: Case) -> tuple[Evidence, ...]:

@@ -110,6 +110,13 @@ def _lag_stop(read: Callable[[LagStop], float]) -> _Resolver:
     return found
 
 
+def _hub_amplitude(case: Case, _: Span) -> Found:
+    rated = case.plan.stand.ratings.hub_amplitude_m
+    if rated is None:
+        return Missing("the stand file states no hub_amplitude in [ratings]")
+    return Range(rated, rated)
+
+
 def _root_moment_rating(case: Case, _: Span) -> Found:
     hub = case.plan.rotor.hub
     if not isinstance(hub, HingelessHub):
@@ -180,6 +187,7 @@ RESOLVERS: Mapping[str, _Resolver] = MappingProxyType(
         "drive_power_rating": _fixed(lambda p: p.stand.drive.power_rating_W),
         "stand_thrust_rating": _fixed(lambda p: p.stand.ratings.thrust_N),
         "stand_hub_moment_rating": _fixed(lambda p: p.stand.ratings.hub_moment_N_m),
+        "stand_hub_amplitude_rating": _hub_amplitude,
         "root_force_rating": _fixed(lambda p: p.rotor.root_force_rating_N),
         "root_moment_rating": _root_moment_rating,
         "droop_stop_moment_rating": _stop_rating("droop", lambda p: p.rotor.droop_stop),

@@ -122,14 +122,18 @@ def _wanted(
         if "mode" not in quantity.axes:
             yield _Wanted(band=band)
             continue
-        given = {
-            f"{m.family} {m.name}"
-            for m in case.plan.stand.modes
-            if rule.mode_family in {"", m.family} and not rule.mode_orders
-        }
+        given = _given(rule, case)
         yield from (_Wanted(mode=mode, band=band) for mode in sorted(seen | given))
         if rule.mode_family not in GIVEN_FAMILIES:
             yield from (_Wanted(order=order, band=band) for order in rule.mode_orders)
+
+
+def _given(rule: Rule, case: Case) -> set[str]:
+    """Labels of the modes of stand and shaft that a rule covers by family."""
+    if rule.mode_orders:
+        return set()
+    families = [f for f in GIVEN_FAMILIES if rule.mode_family in {"", f}]
+    return {label for f in families for label in case.plan.stand.mode_labels(f)}
 
 
 def _answers(labels: Labels, wanted: _Wanted) -> bool:

@@ -166,8 +166,20 @@ def _jumps(beam: BladeBeam, length_m: float) -> FloatArray:
     return middle
 
 
-def _mesh(beam: BladeBeam, root: Root, n_elements: int) -> tuple[Mesh, Quadrature]:
-    """Elements from root to tip, and the points at which properties are integrated."""
+def element_mesh(beam: BladeBeam, root: Root, n_elements: int) -> Mesh:
+    """Elements from a root to the tip, with nodes where properties jump and at point masses.
+
+    Args:
+        beam: Blade properties along the radius.
+        root: Where the flexible length begins, and how it is held.
+        n_elements: Elements to aim for [-].
+
+    Returns:
+        Element ends and the freedom of the root.
+
+    Raises:
+        ValueError: The root lies outside the station table, or fewer than two elements.
+    """
     start, tip = root.radius_m, float(beam.radius_m[-1])
     if not beam.radius_m[0] <= start < tip:
         msg = (
@@ -183,8 +195,31 @@ def _mesh(beam: BladeBeam, root: Root, n_elements: int) -> tuple[Mesh, Quadratur
         raise ValueError(msg)
     fixed = np.concatenate([_jumps(beam, (tip - start) / n_elements), beam.point_radius_m])
     nodes = node_radii((start, tip), fixed, beam.radius_m, n_elements)
+    return Mesh(nodes, root.is_free)
+
+
+def require_control_stiffness(root: Root) -> None:
+    """Refuse a pitch bearing that nothing holds.
+
+    Args:
+        root: Pitch bearing with its control stiffness.
+
+    Raises:
+        ValueError: The control stiffness is zero.
+    """
+    if root.spring_N_m_rad == 0.0:
+        msg = (
+            "control stiffness: expected more than 0 N m/rad, found 0; enter the stiffness of "
+            "the pitch control, or infinity for a locked pitch bearing"
+        )
+        raise ValueError(msg)
+
+
+def _mesh(beam: BladeBeam, root: Root, n_elements: int) -> tuple[Mesh, Quadrature]:
+    """Elements from root to tip, and the points at which properties are integrated."""
+    mesh = element_mesh(beam, root, n_elements)
     breaks = np.concatenate([beam.radius_m, beam.point_radius_m])
-    return Mesh(nodes, root.is_free), quadrature(nodes, breaks)
+    return mesh, quadrature(mesh.node_radius_m, breaks)
 
 
 def _with_spring(stiffness: FloatArray, root: Root) -> FloatArray:
@@ -305,12 +340,7 @@ def torsion_matrices(
         Rod in torsion with propeller moment; R. L. Bielawa, Rotary Wing Structural Dynamics and
         Aeroelasticity, 1992, torsion of rotating blades; from memory.
     """
-    if root.spring_N_m_rad == 0.0:
-        msg = (
-            "control stiffness: expected more than 0 N m/rad, found 0; enter the stiffness of "
-            "the pitch control, or infinity for a locked pitch bearing"
-        )
-        raise ValueError(msg)
+    require_control_stiffness(root)
     mesh, points = _mesh(beam, root, n_elements)
     r, weight = points.radius_m, points.weight_m
     shape = shapes(mesh, r)

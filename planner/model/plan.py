@@ -183,6 +183,8 @@ class AbortActions:
     """From the cause to the crew's first action."""
     brake: bool = False
     brake_from_rad_s: float = 0.0
+    reentries: int | None = None
+    """How many aborts, each with a way back to where it began, the card allows for."""
 
 
 @dataclass(frozen=True)

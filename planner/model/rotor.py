@@ -38,6 +38,8 @@ class PointMass:
     name: str
     radius_m: float
     mass_kg: float
+    cg_offset_m: float = 0.0
+    """Chordwise, positive aft of the pitch axis."""
 
 
 @dataclass(frozen=True)
@@ -187,6 +189,41 @@ class LagStop:
 
 
 @dataclass(frozen=True)
+class Balance:
+    """What drives the stand once per revolution.
+
+    Either a balance grade with the mass and speed that it refers to, or a measured unbalance.
+    """
+
+    static_moment_spread_kg_m: float
+    """Greatest difference of first mass moment between two blades of the set."""
+    lag_angle_spread_rad: float
+    """Greatest difference of lag angle between two blades, from even places."""
+    source: str
+    grade_m_s: float | None = None
+    mass_kg: float | None = None
+    """Of rotor and hub together."""
+    reference_rad_s: float | None = None
+    measured_kg_m: float | None = None
+    """Residual unbalance of hub and rotor, without the two spreads."""
+
+
+@dataclass(frozen=True)
+class MeasuredMode:
+    """A natural frequency found by a rap test or in an earlier run."""
+
+    mode: str
+    """Label of the mode, such as ``flap 2``."""
+    frequency_rad_s: float
+    speed_rad_s: float
+    """Rotor speed at which it was found; 0: a rap test."""
+    collective_rad: float
+    accuracy: float
+    """Share of the frequency, either way."""
+    source: str
+
+
+@dataclass(frozen=True)
 class Rotor:
     """Blades and hub with the speeds that were designed for and proven."""
 
@@ -205,3 +242,6 @@ class Rotor:
     root_force_rating_N: float
     lag_stop: LagStop | None = None
     """Articulated hubs only."""
+    balance: Balance | None = None
+    measured_modes: tuple[MeasuredMode, ...] = ()
+    """Frequencies of this blade set, seen on the turning blade."""

@@ -16,6 +16,7 @@ from planner.paper.abort_causes import (
     top_rad_s,
 )
 from planner.paper.boxes import Box, gap, heading, paragraph
+from planner.paper.fan_panels import counts_rotor
 from planner.paper.ink import ABORT
 from planner.paper.step_readings import count_text
 from planner.paper.steps import band_text, speed_text
@@ -30,13 +31,14 @@ TIMES = (("50 %", "time_to_half"), ("30 %", "time_to_30"), ("10 %", "time_to_10"
 REST = "time_to_rest"
 """Shares of the speed at which an abort begins, and the time to reach them."""
 _ONCE = "1"
+_COLUMN = "stand column"
 
 
 def cause_boxes(aborts: Aborts, frame: Frame) -> list[Box]:
     """Times, contacts and resonances of each cause, with the verdict."""
     hold = aborts.highest_hold
-    head = ("Cause, verdict", "Time", "Contacts to expect", "Keep-out bands")
-    table = Table(frame.shares(22, 25, 29, 24), head, ABORT, tail_face=ABORT)
+    head = ("Cause, verdict", "Time", "Contacts to expect", "Bands, sway")
+    table = Table(frame.shares(18, 28, 24, 30), head, ABORT, tail_face=ABORT)
     rows = [_cause_row(aborts, verdict, hold) for verdict in aborts.verdicts]
     return [
         heading("Abort: what to expect, by cause", frame.width, level=1),
@@ -55,7 +57,7 @@ def _key(reading: Reading, hold: Json | None) -> str:
     start = f"{hold['id']}, {speed_text(reading, top_rad_s(hold))}"
     return (
         f"Time: from {start}, to 50, 30, 10 % of it, to rest (longest of all rows). Contacts, "
-        "bands: worst of all rows; ×: sway of the stand over its unbalance."
+        "bands: worst of all rows. Sway: of the hub to one side, as a stand mode is passed."
     )
 
 
@@ -131,18 +133,25 @@ def _peak_text(aborts: Aborts, cause: str) -> str:
 
 
 def bands_text(aborts: Aborts, cause: str) -> str:
-    """Turns inside each keep-out band, and the largest response of a stand mode."""
+    """Turns inside each keep-out band, and the largest sway while a stand mode is passed."""
     lines: list[str] = []
     for band in aborts.reading.plan["keep_outs"]:
         turns = aborts.worst("band_cycles", cause, band).shown
-        answer = aborts.worst("band_amplification", cause, band)
         if turns.text == texts.DOES_NOT_APPLY:
             continue
         shown = f"{turns.text}{' turns' if turns.is_number else ''}"
-        mode = answer.mode.removeprefix("stand ") or "stand"
-        times = f"{answer.shown.text}{' ×' if answer.shown.is_number else ''}"
-        lines.append(f"{band['id']} {band_text(band)}: {shown}, {mode} {times}")
-    return "\n".join(lines) or "none is passed"
+        lines.append(f"{band['id']} {band_text(band)}: {shown}")
+    return "\n".join((*(lines or ["no band is passed"]), *_sway_texts(aborts, cause)))
+
+
+def _sway_texts(aborts: Aborts, cause: str) -> tuple[str, ...]:
+    """The mode that sways most; nothing where none is passed."""
+    sway = aborts.worst("passage_amplitude", cause)
+    if sway.shown.text == texts.DOES_NOT_APPLY:
+        return ()
+    why = "" if sway.shown.is_number else f" ({sway.shown.why})"
+    mode = f", {sway.mode.removeprefix('stand ')}" if sway.mode else ""
+    return (f"sway {sway.shown.text}{why}{mode}",)
 
 
 def _said(aborts: Aborts) -> list[str]:
@@ -171,23 +180,35 @@ def causes_text(aborts: Aborts, causes: list[str]) -> str:
 
 def crossings_text(aborts: Aborts) -> str:
     """Stand modes that an abort from the top passes once per revolution."""
-    modes = [m for m in aborts.reading.plan["stand"]["modes"] if m["family"] == "stand"]
+    modes = _stand_modes(aborts.reading)
     if not modes:
         return "Stand modes once per revolution: NOT ASSESSED, the stand file gives none."
     top = max((top_rad_s(s) for s in aborts.origins), default=0.0)
-    found = [_crossing(aborts.reading, mode, top) for mode in modes]
+    found = [_crossing(aborts.reading, label, top) for label in modes]
     listed = ", ".join(text for text in found if text)
     return f"Passed once per revolution on the way down: {listed or 'no stand mode'}."
 
 
-def _crossing(reading: Reading, mode: Json, top_speed_rad_s: float) -> str:
+def _stand_modes(reading: Reading) -> list[str]:
+    """Labels of the modes that the stand file gives, and of those that follow from its column."""
+    stand = reading.plan["stand"]
+    found = [f"stand {mode['name']}" for mode in stand["modes"] if mode["family"] == "stand"]
+    if stand.get("column") is not None:
+        told = (*reading.rows_of("mode_frequency"), *reading.rows_of("crossing_speed"))
+        named = dict.fromkeys(r["mode"] for r in told if r["mode"].startswith(_COLUMN))
+        found += named or [_COLUMN]
+    return found
+
+
+def _crossing(reading: Reading, label: str, top_speed_rad_s: float) -> str:
     """Speeds where a mode meets once per revolution; empty where that is above the run's."""
-    name, rows = str(mode["name"]), reading.rows_of("crossing_speed")
-    if mode["rotor_fitted"] is not True:
+    name, rows = label.removeprefix("stand "), reading.rows_of("crossing_speed")
+    given = [m for m in reading.plan["stand"]["modes"] if f"stand {m['name']}" == label]
+    if any(m["family"] == "stand" and not counts_rotor(m) for m in given):
         return f"{name} {texts.NOT_ASSESSED} (rotor's mass not fitted)"
-    own = [r for r in rows if r["mode"] == f"stand {name}" and r["harmonic"] == _ONCE]
+    own = [r for r in rows if r["mode"] == label and r["harmonic"] in {"", _ONCE}]
     standing: list[Json | None] = [row for row in rows if not row["mode"]]
-    standing += [None] * (not rows)
+    standing += [None] * (not rows or label == _COLUMN)
     spans: list[str] = []
     for row in (*own, *standing):
         shown = reading.shown_row("crossing_speed", row)

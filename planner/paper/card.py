@@ -23,6 +23,7 @@ from planner.paper.limits import finding_boxes, limit_boxes
 from planner.paper.numbers import number_boxes
 from planner.paper.pages import frame_for, paginate, render
 from planner.paper.reading import Json, Reading
+from planner.paper.resonance_page import resonance_boxes
 from planner.paper.steps import step_boxes
 
 if TYPE_CHECKING:
@@ -71,6 +72,7 @@ def _body(reading: Reading, frame: Frame) -> list[Box]:
         reentry_boxes(frame),
         as_run_boxes(frame),
         fan_boxes(reading, frame, "13  Fan chart"),
+        resonance_boxes(reading, frame),
         _flap_boxes(reading, frame),
         course_boxes(reading, frame),
         signature_boxes(reading, frame),

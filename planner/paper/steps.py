@@ -25,7 +25,7 @@ _OF_CROSSING = (
     "band_time",
     "crossing_cover",
     "band_cycles",
-    "band_amplification",
+    "passage_amplitude",
 )
 MOST_TALLIES = 60
 _MOST_REASONS = 3

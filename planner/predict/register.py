@@ -10,9 +10,10 @@ from types import MappingProxyType
 from typing import TYPE_CHECKING
 
 from planner.predict.register_general import GENERAL
-from planner.predict.register_march import COURSE, MARCHED, SPEEDS
+from planner.predict.register_march import COURSE, MARCHED
 from planner.predict.register_resonance import RESONANCE
 from planner.predict.register_rotor import ROTOR
+from planner.predict.register_speeds import SPEEDS
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -39,6 +40,7 @@ REFERENCES: Mapping[str, str] = MappingProxyType(
         "drive_power_rating": "kW",
         "stand_thrust_rating": "N",
         "stand_hub_moment_rating": "N m",
+        "stand_hub_amplitude_rating": "mm",
         "root_force_rating": "kN",
         "root_moment_rating": "N m",
         "droop_stop_moment_rating": "N m",

@@ -277,41 +277,6 @@ MARCHED = (
     ),
 )
 
-_COAST = (
-    "Balance of rotor speed: torque of the air load from periodic states at the speed and pitch "
-    "of the moment with its allowance, friction, and the brake from the speed where it is "
-    "applied, over the inertia of drive and blades. A powered stop has its stated time. "
-)
-_COAST_VALIDITY = (
-    "torque of periodic states; friction and brake torque as stated; a rotor that the wind keeps "
-    "turning has no time to rest and is not computed"
-)
-_COAST_HAND = (
-    "closed form for torque k Ω² plus friction and brake, t = I/√(k Q₀) (atan(Ω₁ √(k/Q₀)) - "
-    "atan(Ω₂ √(k/Q₀))), k fitted at the highest speed"
-)
-_DERIVED = "balance of moments, derived"
-
-
-def _time(quantity_id: str, name: str, detail: str) -> Quantity:
-    return Quantity(
-        id=quantity_id,
-        name=name,
-        unit="s",
-        symbol="t",
-        axes=("segment", "state"),
-        danger="high",
-        study="speeds",
-        method=_COAST + detail,
-        validity=_COAST_VALIDITY,
-        source=_DERIVED,
-        hand_check=_COAST_HAND,
-        hand_band=0.25,
-        hand_floor=1.0,
-        allowance="torque",
-    )
-
-
 COURSE = Quantity(
     id="flap_course_marched",
     name="Flap along the start and the stop, marched",
@@ -327,67 +292,4 @@ COURSE = Quantity(
     source=_SOURCE,
     hand_check="none: a picture of the cases behind highest_flap_marched and lowest_flap_marched",
     allowance="air_load",
-)
-
-SPEEDS = (
-    Quantity(
-        id="drive_torque_reserve",
-        name="Torque that the drive has left in a ramp",
-        unit="N m",
-        symbol="ΔQ",
-        axes=("segment",),
-        danger="low",
-        study="speeds",
-        method="Torque that the drive can give at the speed of the moment, by its table or else "
-        "its torque and power ratings, less what air load (with its allowance), friction and "
-        "acceleration need; least of the ramp.",
-        validity="speed follows the schedule; does not apply to holds and unpowered stops",
-        source=_DERIVED,
-        hand_check="none of its own: one subtraction, torque has its own",
-        allowance="torque",
-    ),
-    _time("time_to_half", "Time to half of the first speed", "Time to 50 % of the first speed."),
-    _time("time_to_30", "Time to 30 % of the first speed", "Time to 30 % of the first speed."),
-    _time("time_to_10", "Time to 10 % of the first speed", "Time to 10 % of the first speed."),
-    _time("time_to_rest", "Time to rest", "Time to zero speed."),
-    Quantity(
-        id="band_cycles",
-        name="Turns inside a keep-out band without power",
-        unit="",
-        symbol="n",
-        axes=("segment", "band", "state"),
-        danger="high",
-        study="speeds",
-        method=_COAST + "Turns of the rotor between the band's edges; an abort from a ramp counts "
-        "from its highest speed. Does not apply to powered passages, whose rate is judged.",
-        validity=_COAST_VALIDITY,
-        source=_DERIVED,
-        hand_check="I/(4 π k) ln((k Ω₂² + Q₀) / (k Ω₁² + Q₀)) for torque k Ω² plus friction and "
-        "brake Q₀",
-        hand_band=0.25,
-        hand_floor=1.0,
-        allowance="torque",
-    ),
-    Quantity(
-        id="band_amplification",
-        name="Response of a stand mode over its unbalance offset in a passage",
-        unit="",
-        symbol="A",
-        axes=("segment", "mode", "band", "state"),
-        danger="high",
-        study="speeds",
-        method=_COAST + "Peak amplitude of each stand mode, driven once per revolution by an "
-        "unbalance, over the offset of the rotor's mass that it stands for, while the band is "
-        "passed without power; the frequency allowance moves the mode. An abort from a ramp "
-        "counts from its highest speed. Does not apply to powered passages, whose rate is judged.",
-        validity="modes as given, with the rotor fitted; one mode at a time, all mass of the mode "
-        "at the hub",
-        source="oscillator under a sweep, derived; fit of the peak: Cronin, Shock and Vibration "
-        "Bulletin 38, 1968 (from memory)",
-        hand_check="steady peak 1/(2 ζ) times 1 - exp(-2.86 η^-0.445), η the rate over the "
-        "bandwidth squared",
-        hand_band=0.2,
-        hand_floor=0.5,
-        allowance="torque",
-    ),
 )

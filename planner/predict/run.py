@@ -24,9 +24,10 @@ from planner.predict.study_schedule import SCHEDULE
 from planner.predict.study_speeds import SPEEDS
 from planner.predict.study_stops import STOPS
 from planner.predict.study_tip import TIP
+from planner.predict.study_unbalance import UNBALANCE
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Container, Mapping, Sequence
 
     from planner.model.plan import Plan, Segment
     from planner.model.results import Prediction, Requests
@@ -43,6 +44,7 @@ STUDIES: tuple[Study, ...] = (
     STOPS,
     HOLDS,
     MODES,
+    UNBALANCE,
     PASSAGES,
     SPEEDS,
     MARCHES,
@@ -72,11 +74,37 @@ def predict(
         store: where slow studies keep what they found. A refusal is never kept.
         versions: of the program and its libraries; part of the key of what is kept.
     """
+    return _whole(_found(STUDIES, (plan, segments, requests), progress, (store, versions)))
+
+
+def predict_only(
+    studies: Container[str], plan: Plan, segments: tuple[Segment, ...], requests: Requests
+) -> Mapping[str, Prediction]:
+    """Predict what some studies tell; the quantities of all others are NOT COMPUTED.
+
+    Args:
+        studies: ids of those that are wanted, with all that they need.
+        plan: the model.
+        segments: its schedule walked once, or stretches of one.
+        requests: what the rules need computed.
+    """
+    wanted = [study for study in STUDIES if study.id in studies]
+    return _whole(_found(wanted, (plan, segments, requests), silent, (NOTHING_KEPT, {})))
+
+
+def _found(
+    studies: Sequence[Study],
+    asked: tuple[Plan, tuple[Segment, ...], Requests],
+    progress: Progress,
+    keeping: tuple[Store, Mapping[str, str]],
+) -> dict[str, Prediction]:
+    """Run studies in their order, each with what it needs of those before."""
     found: dict[str, Prediction] = {}
     keys: dict[str, str] = {}
-    for study in STUDIES:
+    store, versions = keeping
+    for study in studies:
         progress(study.id)
-        inputs = replace(study.inputs(plan, segments, requests, found), progress=progress)
+        inputs = replace(study.inputs(*asked, found), progress=progress)
         if store is not NOTHING_KEPT:
             keys[study.id] = study.key(inputs, versions, keys)
         try:
@@ -87,6 +115,11 @@ def predict(
             found |= _refused(study, Status.NOT_CONVERGED, str(refusal))
         except ValueError as refusal:
             found |= _refused(study, Status.OUTSIDE_VALIDITY, str(refusal))
+    return found
+
+
+def _whole(found: dict[str, Prediction]) -> Mapping[str, Prediction]:
+    """The whole register in its order; what no study told is NOT COMPUTED."""
     for quantity in REGISTER.values():
         if quantity.id not in found:
             found[quantity.id] = _flagged(

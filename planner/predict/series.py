@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from planner.model.results import Labels, Status
-from planner.predict.study_modes import GREATEST_HARMONIC, MODES, fan_speeds, tracks
+from planner.predict.fan_series import fan_series
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -41,7 +41,7 @@ def series(
         segments = (*segments[:-1], last)
     return {
         "run": _run(segments, way),
-        "fan": _fan(plan, segments, predictions, requests),
+        "fan": fan_series(plan, segments, predictions, requests),
         "flap": _flap(plan, segments, predictions),
     }
 
@@ -83,33 +83,6 @@ def _run(segments: tuple[Segment, ...], way: list[tuple[float, float]]) -> dict[
         "time_s": [c[0] for c in corners],
         "speed_rad_s": [c[1] for c in corners],
         "segment": [c[2] for c in corners],
-    }
-
-
-def _fan(
-    plan: Plan,
-    segments: tuple[Segment, ...],
-    predictions: Mapping[str, Prediction],
-    requests: Requests,
-) -> dict[str, Any]:
-    inputs = MODES.inputs(plan, segments, requests, predictions)
-    speed = fan_speeds(inputs)
-    try:
-        found = tracks(inputs, speed)
-    except ValueError:
-        found = []  # the study itself is flagged OUTSIDE VALIDITY
-    return {
-        "speed_rad_s": speed,
-        "modes": [
-            {
-                "name": t.name,
-                "family": t.family,
-                "frequency_rad_s": t.frequency_rad_s,
-                "damping": t.damping,
-            }
-            for t in found
-        ],
-        "harmonics": list(range(1, GREATEST_HARMONIC + 1)),
     }
 
 

@@ -118,7 +118,7 @@ def rate_rad_s2(segment: Segment) -> float:
 
 def _bands(inputs: Inputs) -> dict[str, Prediction]:
     bands: Sequence[KeepOut] = inputs["keep_outs"]
-    rows = {q: Rows(q, _ID) for q in ("band_distance", "band_rate", "band_time")}
+    rows = {q: Rows(q, _ID) for q in ("band_distance", "band_rate")}
     if not bands:
         for filled in rows.values():
             filled.flag(Labels(), Status.NOT_APPLICABLE, "the plan declares no keep-out band")
@@ -130,10 +130,8 @@ def _bands(inputs: Inputs) -> dict[str, Prediction]:
 def _band(rows: Mapping[str, Rows], band: KeepOut, inputs: Inputs) -> None:
     segments: Sequence[Segment] = inputs["segments"]
     error = inputs["stand.speed_gauge_error_rad_s"]
-    seconds = 0.0
     for segment in segments:
         label = Labels(segment=segment.id, band=band.id)
-        seconds += segment.times * seconds_inside(segment, band)
         if segment.kind == "hold":
             nominal = _gap(segment.to_rad_s, segment.to_rad_s, band)
             worst = _gap(*segment.ends_rad_s(error), band)
@@ -144,7 +142,6 @@ def _band(rows: Mapping[str, Rows], band: KeepOut, inputs: Inputs) -> None:
         rows["band_rate"].flag(
             Labels(band=band.id), Status.NOT_APPLICABLE, "no ramp of the card enters this band"
         )
-    rows["band_time"].add(Labels(band=band.id), seconds)
 
 
 def _passage(rows: Rows, segment: Segment, label: Labels, inputs: Inputs) -> None:

@@ -1,18 +1,29 @@
-"""Rotor speed over time: what the drive has left in a ramp, and how long run-downs take."""
+"""Rotor speed over time: reserve of the drive, run-downs, and what passing resonances costs."""
 
 from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
 from planner.model.results import Labels, Status
+from planner.predict.band_rows import CYCLES, TOTALS, cycle_rows, total_rows
 from planner.predict.cases import air_of
 from planner.predict.drive_reserve import reserves
-from planner.predict.passage_rows import PASSAGES, passage_rows
+from planner.predict.histories import own_run_up_of, ramp_history
+from planner.predict.passage_amplitudes import (
+    AMPLITUDE,
+    NO_MODE,
+    PEAK_SPEED,
+    passages_of,
+    ramp_rows,
+    run_down_rows,
+)
 from planner.predict.rows import Rows
 from planner.predict.run_down_events import Event, aborts, add_ends, solved_events, stops
 from planner.predict.run_down_hand import hand_of
 from planner.predict.shaft import TAKES, ends_of, shaft_of
-from planner.predict.study import Inputs, Study
+from planner.predict.stand_modes import TAKES as STAND_TAKES
+from planner.predict.stand_modes import stand_modes
+from planner.predict.study import Inputs, NotAssessedError, Study
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -22,6 +33,7 @@ if TYPE_CHECKING:
     from planner.predict.histories import FoundRunDown, Order
     from planner.predict.run_down_hand import Hand
     from planner.predict.shaft import Shaft, Way
+    from planner.rotor.speed_history import History
 
 _ID = "speeds"
 TIMES = {"time_to_half": 0.5, "time_to_30": 0.3, "time_to_10": 0.1, "time_to_rest": 0.0}
@@ -31,7 +43,7 @@ _NO_POWER = "the stop runs down without power"
 
 
 def run(inputs: Inputs) -> Mapping[str, Prediction]:
-    """Reserve of every ramp; times and band passages of the stop and of every abort."""
+    """Reserve of every ramp; times and passages of ramps, of the stop and of every abort."""
     shaft = shaft_of(inputs)
     _ = shaft.friction_n_m  # without it nothing here is known
     walk: Sequence[Segment] = inputs["segments"]
@@ -39,13 +51,15 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     ways = [(segment, ends_of(segment, cyclics)) for segment in walk]
     events = [*stops(ways, inputs, shaft), *aborts(ways, inputs, shaft)]
     solved = solved_events(shaft, events, inputs.allowance("torque"))
-    rows = {q: Rows(q, _ID) for q in (*TIMES, *PASSAGES)}
+    rows = {q: Rows(q, _ID) for q in (*TIMES, CYCLES, *TOTALS, AMPLITUDE, PEAK_SPEED)}
     hands = {found.order: hand_of(shaft, found) for _, found in solved if found is not None}
     for event, found in solved:
         _time_rows(rows, event, found, hands)
-    passage_rows(rows, solved, inputs, hands)
-    times = {quantity: filled.prediction() for quantity, filled in rows.items()}
-    return {"drive_torque_reserve": _reserves(ways, inputs, shaft), **times}
+    cycle_rows(rows[CYCLES], solved, inputs["keep_outs"], hands)
+    total_rows(rows, solved, (walk, inputs["keep_outs"]), inputs["abort"].reentries)
+    _passage_rows(rows, (ways, shaft), (solved, hands), inputs)
+    found_rows = {quantity: filled.prediction() for quantity, filled in rows.items()}
+    return {"drive_torque_reserve": _reserves(ways, inputs, shaft), **found_rows}
 
 
 def _reserves(ways: Sequence[Way], inputs: Inputs, shaft: Shaft) -> Prediction:
@@ -79,11 +93,57 @@ def _time_rows(
             rows[quantity].flag(event.label, event.status, event.reason, speed_rad_s=top)
 
 
+def _passage_rows(
+    rows: Mapping[str, Rows],
+    ramps: tuple[Sequence[Way], Shaft],
+    run_downs: tuple[Sequence[tuple[Event, FoundRunDown | None]], Mapping[Order, Hand]],
+    inputs: Inputs,
+) -> None:
+    """Sway of the stand in every passage; a refusal of its modes leaves the times alone."""
+    try:
+        modes = stand_modes(inputs)
+    except NotAssessedError as refusal:
+        _flag_all(rows, refusal.status, str(refusal))
+        return
+    except ValueError as refusal:
+        _flag_all(rows, Status.OUTSIDE_VALIDITY, str(refusal))
+        return
+    if not modes:
+        _flag_all(rows, Status.NOT_APPLICABLE, NO_MODE)
+        return
+    unbalance = inputs.prior["unbalance"]
+    known = (float(unbalance.value[0]), unbalance.status[0], unbalance.reasons[0])
+    passages = passages_of(modes, inputs, known)
+    ways, shaft = ramps
+    coasts = not inputs["shutdown"].powered
+    driven = {"ramp"} if coasts else {"ramp", "stop"}
+    powered = [(way[0], _history(way, shaft)) for way in ways if way[0].kind in driven]
+    ramp_rows(rows, powered, passages)
+    solved, hands = run_downs
+    run_down_rows(rows, solved, passages, hands)
+
+
+def _flag_all(rows: Mapping[str, Rows], status: Status, reason: str) -> None:
+    for quantity in (AMPLITUDE, PEAK_SPEED):
+        rows[quantity].flag(Labels(), status, reason)
+
+
+def _history(way: Way, shaft: Shaft) -> History | NotAssessedError:
+    """Speed of a powered ramp over time, or why there is none."""
+    segment, controls = way
+    try:
+        run_up = own_run_up_of(shaft, segment, controls) if segment.own_run_up else None
+        return ramp_history(segment, controls, run_up)
+    except NotAssessedError as refusal:
+        return refusal
+
+
 SPEEDS = Study(
     _ID,
-    1,
-    ("segments", "keep_outs", "shutdown", "abort", "stand.modes", *TAKES),
-    ("air", "wind"),
+    2,
+    ("segments", "keep_outs", "shutdown", "abort", "stand.speed_gauge_error_rad_s",
+     *dict.fromkeys((*TAKES, *STAND_TAKES))),
+    ("air", "wind", "unbalance"),
     run,
     kept=True,
-)
+)  # fmt: skip

@@ -1,10 +1,11 @@
 """Building the record of a plan, and reading one back.
 
-The layout is an integer. Layout 2 is a JSON object with the keys below; numbers are SI, angles
-radians, NaN is null. A reader refuses a layout that it does not know. Layout 1, which had no
-aborts, is read as layout 2: its rows have no ``state``, which is then empty.
+The layout is an integer. Layout 3 is a JSON object with the keys below; numbers are SI, angles
+radians, NaN is null. A reader refuses a layout that it does not know. Older layouts are read as
+today's: rows of layout 1, which had no aborts, get an empty ``state``; the fan chart of layouts 1
+and 2 had one set of harmonics and no time at speed. The plan stays as it was written.
 
-    layout            2
+    layout            3
     made_by           versions of whirlcard, Python, numpy and scipy
     files             [{name, sha256}] of every file that was read; files_digest over them all
     meaning_digest    digest of the plan in SI: unchanged by a comment or another unit
@@ -51,7 +52,7 @@ if TYPE_CHECKING:
     from planner.predict.kept import Store
     from planner.predict.progress import Progress
 
-LAYOUT = 2
+LAYOUT = 3
 REQUIRED = (
     "layout",
     "made_by",
@@ -209,11 +210,37 @@ def _from_layout_1(record: dict[str, Any]) -> dict[str, Any]:
         for quantity, found in record["predictions"].items()
     }
     kept = {key: value for key, value in record.items() if key != "content_digest"}
-    forward = {**kept, "layout": 2, "predictions": predictions}
+    return _from_layout_2({**kept, "layout": 2, "predictions": predictions})
+
+
+_PANELS = {"stand": "stand", "shaft": "shaft"}
+
+
+def _from_layout_2(record: dict[str, Any]) -> dict[str, Any]:
+    """Give the fan chart its panels; shifted modes and time at speed were not computed."""
+    fan = record["series"]["fan"]
+    modes = [
+        {"doubt": "", **mode, "panel": _PANELS.get(mode["family"], "blade")}
+        for mode in fan["modes"]
+    ]
+    harmonics = {"blade": fan["harmonics"], "stand": [], "shaft": []}
+    told = {
+        "modes": modes,
+        "harmonics": harmonics,
+        "collective_rad": None,
+        "shifted": [],
+        "time_at_speed": None,
+    }
+    series = {**record["series"], "fan": {**fan, **told}}
+    kept = {key: value for key, value in record.items() if key != "content_digest"}
+    forward = {**kept, "layout": LAYOUT, "series": series}
     return {**forward, "content_digest": digest_of_plain(forward)}
 
 
-_FORWARD: Mapping[int, Callable[[dict[str, Any]], dict[str, Any]]] = {1: _from_layout_1}
+_FORWARD: Mapping[int, Callable[[dict[str, Any]], dict[str, Any]]] = {
+    1: _from_layout_1,
+    2: _from_layout_2,
+}
 """How a record of an older layout becomes one of today's."""
 
 

@@ -8,6 +8,7 @@ import numpy as np
 
 from planner.methods.beam import BladeBeam
 from planner.methods.blade_inertia import HingedInertia, MassDistribution, blade_inertia
+from planner.methods.coupled_beam import CoupledBlade
 from planner.model.rotor import SymmetricSection
 
 if TYPE_CHECKING:
@@ -43,6 +44,25 @@ def beam(blade: Blade) -> BladeBeam:
 def flap_inertia(blade: Blade, hinge_m: float) -> HingedInertia:
     """Mass moments of the blade about a hinge radius."""
     return blade_inertia(mass_distribution(blade), hinge_m)
+
+
+def blade_mass_kg(blade: Blade) -> float:
+    """Mass of one blade by its table, point masses included."""
+    start = float(blade.stations.radius_m[0])
+    return float(flap_inertia(blade, start).mass_kg)
+
+
+def coupled_blade(blade: Blade) -> CoupledBlade:
+    """The blade with its twist over the collective and its offsets, for coupled modes."""
+    table = blade.stations
+    reference = np.interp(blade.collective_radius_m, table.radius_m, table.twist_rad)
+    points = sorted(blade.point_masses, key=lambda point: point.radius_m)
+    return CoupledBlade(
+        beam(blade),
+        table.twist_rad - reference,
+        table.cg_offset_m,
+        np.array([point.cg_offset_m for point in points], dtype=np.float64),
+    )
 
 
 def section_at(blade: Blade, radius_m: float) -> Section:

@@ -143,9 +143,7 @@ def test_file_names_have_examples_of_their_own(kind, table, key, example):
 @pytest.mark.parametrize(
     ("kind", "table", "key"),
     [
-        ("rotor", "Station", "cg_offset"),
         ("rotor", "Station", "ac_offset"),
-        ("stand", "DriveTable", "gear_ratio"),
         ("stand", "", "position"),
     ],
 )

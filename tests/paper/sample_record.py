@@ -55,7 +55,7 @@ def sample_record(n_steps: int = 12, verdict: str = "CAUTION") -> Json:
     rules = plan.rule_book.rules
     findings = _findings(rules, walk, verdict)
     record: Json = {
-        "layout": 2,
+        "layout": 3,
         "made_by": {"whirlcard": "0.1.0", "python": "3.11", "numpy": "2.4.6", "scipy": "1.17.1"},
         "files": [
             {"name": name, "sha256": digit * 64}
@@ -68,7 +68,7 @@ def sample_record(n_steps: int = 12, verdict: str = "CAUTION") -> Json:
         "vocabulary": list(REGISTER.values()),
         "predictions": _predictions(plan, walk),
         "references": {"full_speed": FULL_SPEED},
-        "series": {"run": _run(walk), "fan": _fan(), "flap": _flap(plan, walk)},
+        "series": {"run": _run(walk), "fan": _fan(walk), "flap": _flap(plan, walk)},
         "findings": findings,
         "coverage": _coverage(),
         "verdict": verdict,
@@ -326,7 +326,7 @@ def _predictions(plan: Plan, walk: tuple[Segment, ...]) -> Json:
                 put("band_rate", s.id, rate, 0.0, band.id)
     found: Json = {name: {"study": "sample", "rows": [_row(*row) for row in rows]}
                    for name, rows in numbers.items()}  # fmt: skip
-    found |= _marched(plan, walk)
+    found |= _marched(plan, walk) | _resonances(plan, walk)
     for name, low in (("flap 1", 1.02), ("lag 1", 0.3), ("stand rocking", 0.5236)):
         rows = found.setdefault("crossing_speed", {"study": "sample", "rows": []})["rows"]
         row = _row("", "", 30.0 * low, 29.0 * low, 31.0 * low)
@@ -338,6 +338,7 @@ MARCHED = {
     "lowest_flap_marched": -0.08, "highest_flap_marched": 0.12, "droop_stop_peak_moment": 1000.0,
     "up_stop_peak_moment": 0.0, "contacts_after_lift_off": 0.0,
 }  # fmt: skip
+ALONG_RAMPS = {"contact_highest_speed", "passage_amplitude", "passage_peak_speed"}
 TIMES = {"time_to_half": 20.0, "time_to_30": 34.0, "time_to_10": 50.0, "time_to_rest": 60.0}
 
 
@@ -349,12 +350,23 @@ def _marched(plan: Plan, walk: tuple[Segment, ...]) -> Json:
         for state in [""] if s.kind == "stop" else ["", *ABORT_CAUSES]:
             numbers = _of_place(plan, share * (1.5 if state == "brake lost" else 1.0))
             for name, place, value in numbers:
-                own = name in MARCHED or name == "contact_highest_speed"
+                own = name in MARCHED or name in ALONG_RAMPS
                 if state or s.kind == "stop" or (own and s.kind == "ramp"):
                     row = _row(s.id, "", value, *sorted((0.9 * value, 1.1 * value)))
                     rows = found.setdefault(name, {"study": "sample", "rows": []})["rows"]
-                    rows.append({**row, "state": state, **place})
+                    hand = 1.04 * value if name == "passage_amplitude" else None
+                    rows.append({**row, "state": state, "hand": hand, **place})
+        for name in ("passage_amplitude", "passage_peak_speed"):
+            for row in found.get(name, {"rows": []})["rows"]:
+                if row["segment"] == s.id and not _passes_rocking(s, row["state"]):
+                    row |= {"value": None, "low": None, "high": None, "status": "does not apply"}
     return found
+
+
+def _passes_rocking(segment: Segment, state: str) -> bool:
+    low = 0.0 if state else min(segment.from_rad_s, segment.to_rad_s)
+    top = max(segment.from_rad_s, segment.to_rad_s)
+    return low < to_si(156.0, "rpm") and top > to_si(145.0, "rpm")
 
 
 def _of_place(plan: Plan, longer: float) -> list[tuple[str, Json, float]]:
@@ -364,8 +376,43 @@ def _of_place(plan: Plan, longer: float) -> list[tuple[str, Json, float]]:
         ("contact_highest_speed", {}, to_si(100.0, "rpm")),
         *((name, {}, longer * value) for name, value in TIMES.items()),
         *(("band_cycles", band, longer * 12.0) for band in bands),
-        *(("band_amplification", {**band, "mode": "stand rocking"}, 6.0) for band in bands),
+        ("passage_amplitude", {"mode": "stand rocking", "harmonic": "1"}, 6e-3),
+        ("passage_peak_speed", {"mode": "stand rocking", "harmonic": "1"}, to_si(146.0, "rpm")),
     ]
+
+
+def _resonances(plan: Plan, walk: tuple[Segment, ...]) -> Json:
+    """Numbers of modes and bands; the twist mode of the stand cannot be judged."""
+    stands = [
+        (hold, side, near)
+        for hold in walk
+        if hold.kind == "hold"
+        for side, near in (("Ω - ω", 0.21), ("Ω + ω", 0.4))
+    ]
+    numbers: list[tuple[str, str, Json, float]] = [
+        ("unbalance", "", {}, 0.85),
+        ("passage_rate_needed", "", {"mode": "stand rocking"}, to_si(1.6, "rpm/s")),
+        ("frequency_correction", "", {"mode": "flap 2"}, -0.021),
+        ("frequency_residual", "", {"mode": "flap 2"}, 0.013),
+        *(("band_time_total", "", {"band": band.id}, 240.0) for band in plan.keep_outs),
+        *(("band_cycles_total", "", {"band": band.id}, 610.0) for band in plan.keep_outs),
+        *(
+            ("fixed_frame_spacing", s.id, {"mode": "lag 1", "harmonic": f"stand rocking, {side}"},
+             near * (1.0 + 0.1 * _state(s)[0]))
+            for s, side, near in stands
+        ),
+    ]  # fmt: skip
+    found: Json = {}
+    for name, segment, place, value in numbers:
+        row = _row(segment, "", value, *sorted((0.95 * value, 1.05 * value)))
+        found.setdefault(name, {"study": "sample", "rows": []})["rows"].append(row | place)
+    unknown = {**_row("", "", 0.0, 0.0, 0.0), "mode": "stand twist", "status": "not stated",
+               "value": None, "low": None, "high": None, "reason": UNKNOWN}  # fmt: skip
+    found["passage_rate_needed"]["rows"].append(unknown)
+    return found
+
+
+UNKNOWN = "the stand file does not say whether the rotor's mass was fitted"
 
 
 def _row(segment: str, band: str, value: float, low: float, high: float) -> Json:
@@ -437,7 +484,7 @@ def _run(walk: tuple[Segment, ...]) -> Json:
     return {key: [c[i] for c in corners] for i, key in enumerate(keys)}
 
 
-def _fan() -> Json:
+def _fan(walk: tuple[Segment, ...]) -> Json:
     speed = np.linspace(0.0, 1.2 * FULL_SPEED, 41)
 
     def risen(still_hz: float, factor: float) -> list[float]:
@@ -452,10 +499,52 @@ def _fan() -> Json:
     ]  # fmt: skip
     return {
         "speed_rad_s": [float(v) for v in speed],
-        "modes": [{"name": n, "family": f, "frequency_rad_s": w, "damping": None}
+        "collective_rad": to_si(8.0, "deg"),
+        "modes": [{"name": n, "family": f, "panel": f if f in {"stand", "shaft"} else "blade",
+                   "frequency_rad_s": w, "damping": None, "doubt": "", "note": ""}
                   for n, f, w in modes],
-        "harmonics": list(range(1, 9)),
+        "shifted": [
+            {"name": f"lag 1, {words}",
+             "frequency_rad_s": [float(v) for v in (1.0 + side * 0.3) * speed]}
+            for words, side in (("Ω - ω", -1.0), ("Ω + ω", 1.0))
+        ],
+        "harmonics": {"blade": list(range(1, 9)), "stand": [1, 4, 8, 12], "shaft": [4, 8, 12]},
+        "time_at_speed": _time_at_speed(walk),
     }  # fmt: skip
+
+
+def _time_at_speed(walk: tuple[Segment, ...]) -> Json:
+    """The time of each segment, repeats counted, in the bin of its last speed."""
+    edges = 0.02 * FULL_SPEED * np.arange(51)
+    seconds = np.zeros(50)
+    for s in walk:
+        seconds[min(49, int(s.to_rad_s / (0.02 * FULL_SPEED)))] += s.times * s.duration_s
+    return {"edges_rad_s": edges.tolist(), "seconds": seconds.tolist()}
+
+
+def without_panels(record: Json) -> Json:
+    """Leave of a record what those of before the fan chart had panels had, brought forward."""
+    fan = record["series"]["fan"]
+    for mode in fan["modes"]:
+        del mode["note"]
+    fan |= {"collective_rad": None, "shifted": [], "time_at_speed": None,
+            "harmonics": {"blade": list(range(1, 9)), "stand": [], "shaft": []}}  # fmt: skip
+    for quantity in NEWER:
+        record["predictions"].pop(quantity, None)
+    record["vocabulary"] = [e for e in record["vocabulary"] if e["id"] not in NEWER]
+    for key in ("balance", "measured_modes"):
+        del record["plan"]["rotor"][key]
+    for key in ("column", "drive_train", "measured_modes"):
+        del record["plan"]["stand"][key]
+    del record["plan"]["stand"]["ratings"]["hub_amplitude_m"], record["plan"]["abort"]["reentries"]
+    return record
+
+
+NEWER = (
+    "passage_amplitude", "passage_peak_speed", "passage_rate_needed", "unbalance", "mode_share",
+    "frequency_correction", "frequency_residual", "fixed_frame_spacing", "band_time_total",
+    "band_cycles_total",
+)  # fmt: skip
 
 
 def _flap(plan: Plan, walk: tuple[Segment, ...]) -> Json:

@@ -155,14 +155,32 @@ def test_contacts_tell_count_speed_and_the_worse_stop() -> None:
 
 def test_bands_tell_turns_and_sway_and_leave_out_what_is_not_passed() -> None:
     record = sample_record(3)
-    assert bands_text(aborts_of(record), COMMANDED).splitlines()[0] == (
-        "K1 141–156\xa0rpm: 12.6 turns, rocking 6.60 ×"
-    )
+    assert bands_text(aborts_of(record), COMMANDED).splitlines() == [
+        "K1 141–156\xa0rpm: 12.6 turns",
+        "K2 250–262\xa0rpm: 12.6 turns",
+        "sway 6.60\xa0mm, rocking",
+    ]
     for row in rows(record, "band_cycles", COMMANDED):
         row.update(status="does not apply", value=None, low=None, high=None)
-    assert bands_text(aborts_of(record), COMMANDED) == "none is passed"
-    del record["predictions"]["band_amplification"]
-    assert "stand NOT ASSESSED" in bands_text(aborts_of(record), FROZEN)
+    assert bands_text(aborts_of(record), COMMANDED).splitlines()[0] == "no band is passed"
+    for row in rows(record, "passage_amplitude", COMMANDED):
+        row.update(status="does not apply", value=None, low=None, high=None)
+    assert bands_text(aborts_of(record), COMMANDED) == "no band is passed"
+    del record["predictions"]["passage_amplitude"]
+    assert "sway NOT ASSESSED (not computed)" in bands_text(aborts_of(record), FROZEN)
+
+
+def test_sway_of_the_worst_stand_mode_is_told_and_a_missing_one_outweighs() -> None:
+    record = sample_record(3)
+    other = [
+        {**row, "mode": "stand column 1"} for row in rows(record, "passage_amplitude", FROZEN)
+    ]
+    other[-1]["high"] = 9e-3
+    record["predictions"]["passage_amplitude"]["rows"] += other
+    assert bands_text(aborts_of(record), FROZEN).endswith("sway 9.00\xa0mm, column 1")
+    other[0].update(status="not stated", value=None, low=None, high=None)
+    text = bands_text(aborts_of(record), FROZEN)
+    assert text.endswith("sway NOT ASSESSED (not stated), column 1")
 
 
 def test_stand_modes_once_per_revolution_are_told_or_not_assessed() -> None:
@@ -174,6 +192,22 @@ def test_stand_modes_once_per_revolution_are_told_or_not_assessed() -> None:
     assert "rocking NOT ASSESSED (not computed)" in crossings_text(aborts_of(record))
     record["plan"]["stand"]["modes"] = []
     assert "the stand file gives none" in crossings_text(aborts_of(record))
+
+
+def test_stand_modes_of_a_column_are_told_too() -> None:
+    record = sample_record(3)
+    record["plan"]["stand"] |= {"modes": [], "column": {"height_m": 8.0}}
+    assert "column NOT ASSESSED (not computed)" in crossings_text(aborts_of(record))
+    found = record["predictions"]["crossing_speed"]["rows"]
+    found += [{**found[-1], "mode": f"stand column {i}"} for i in (1, 2)]
+    found[-1].update(harmonic="", status="not computed", value=None, low=None, high=None)
+    text = crossings_text(aborts_of(record))
+    assert "column 1 145 to 156\xa0rpm, column 2 NOT ASSESSED (not computed)" in text
+    record["plan"]["stand"]["modes"] = [
+        {"name": "rocking", "family": "stand", "rotor_fitted": False, "modal_mass_kg": 900.0,
+         "missing_mass_kg": 200.0}
+    ]  # fmt: skip
+    assert "rocking 145 to 156\xa0rpm" in crossings_text(aborts_of(record))
 
 
 def test_cause_that_cannot_be_is_left_out_with_its_reason() -> None:

@@ -9,7 +9,8 @@ import pytest
 
 from planner.methods.stop_contact import stop_moment_n_m
 from planner.predict.register import REGISTER
-from planner.predict.register_march import COURSE, MARCHED, SPEEDS
+from planner.predict.register_march import COURSE, MARCHED
+from planner.predict.register_speeds import SPEEDS
 
 
 def test_marched_numbers_are_of_segments_and_aborts_only():

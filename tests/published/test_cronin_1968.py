@@ -47,3 +47,25 @@ def test_slowest_rows_of_the_table_by_the_fit():
     rate = 2.0 * np.array([0.1, 0.2, 0.5]) * (ZETA * W) ** 2 / np.pi
     assert swept_share(W, ZETA, rate) == pytest.approx([0.99965, 0.99713, 0.97962], abs=1e-5)
     assert swept_share(W, ZETA, rate) == pytest.approx([0.99801, 0.99338, 0.97348], rel=7e-3)
+
+
+@pytest.mark.parametrize(
+    ("eta", "share", "late"),
+    [(0.1, 0.99801, 0.4776), (0.2, 0.99338, 0.6606), (0.5, 0.97348, 0.9336)],
+)
+def test_march_meets_the_slowest_rows(eta, share, late):
+    """With damping 0.01, ten half-power widths to either side: slow sweeps take long."""
+    zeta = 10.0 * ZETA
+    rate = 2.0 * eta * (zeta * W) ** 2 / np.pi
+    speed = W + 10.0 * zeta * W * np.linspace(-1.0, 1.0, 51)[None, :]
+    table = SpeedTable(speed, 20.0 * zeta * W / rate / 50)
+    found = passage_peak(table, [W], zeta, "constant force")
+    assert found.amplitude[0, 0] * 2.0 * zeta == pytest.approx(share, rel=2e-3)
+    assert found.speed_rad_s[0, 0] == pytest.approx(W + late * np.sqrt(rate), rel=5e-4)
+
+
+def test_fit_holds_the_computed_peaks_within_its_validity():
+    eta, share = TABLE[:7, :2].T
+    fit = swept_share(W, ZETA, 2.0 * eta * (ZETA * W) ** 2 / np.pi)
+    assert eta[-1] == 100.0
+    assert fit == pytest.approx(share, rel=0.04)

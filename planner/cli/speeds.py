@@ -1,0 +1,86 @@
+"""The command ``speeds``: where holds that are too near a resonance could be instead."""
+
+from __future__ import annotations
+
+import csv
+import io
+import shutil
+import textwrap
+from typing import TYPE_CHECKING
+
+from planner.cli.screen import fail
+from planner.cli.sources import stop_on_fault
+from planner.cli.summary import NARROW, WIDE
+from planner.explore.speed_advice import FINE, REACH, advise
+from planner.files.read import read_plan
+from planner.paper.texts import unprintable
+from planner.predict.register import REFERENCES, REGISTER
+from planner.units import from_si
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+    from pathlib import Path
+
+    from planner.explore.speed_advice import Advice
+
+_IN = " " * 4
+_NONE = "none within reach"
+_ALL_WELL = "Every hold satisfies every rule of frequency."
+
+
+def advice_of(source: Path) -> tuple[Advice, ...]:
+    """Read a plan folder and look for better speeds.
+
+    Args:
+        source: plan folder or its plan.toml; a record holds too little, then status 2.
+    """
+    if source.suffix.lower() == ".json" and not source.is_dir():
+        fail(f"{source}: expected a plan folder, found a record; name the folder it came from")
+    vocabulary = {entry.id: (entry.unit, entry.axes) for entry in REGISTER.values()}
+    with stop_on_fault():
+        plan = read_plan(source, vocabulary, REFERENCES, unprintable).plan
+    try:
+        return advise(plan)
+    except ValueError as fault:
+        fail(f"{source}: {fault}")
+
+
+def told(advice: Sequence[Advice]) -> str:
+    """The advice for a terminal, a hold a paragraph."""
+    width = max(NARROW, min(WIDE, shutil.get_terminal_size((NARROW, 24)).columns))
+    if not advice:
+        return _ALL_WELL
+    lines = [
+        "Holds that a rule of frequency does not let pass, and the nearest speeds that satisfy "
+        f"every one of them, on steps of {FINE:.1%} of full speed, up to {REACH:.0%} away. Window, "
+        "pitch and air stay as planned. Other rules are not looked at here: check the plan again "
+        "after a change."
+    ]
+    lines = [*textwrap.wrap(lines[0], width), ""]
+    heads = f"{'nearest below':<20}{'nearest above':<20}"
+    lines.append(f"  {'hold':<8}{'speed':<14}{heads}verdict")
+    for one in advice:
+        below, above = (_rpm(speed) for speed in (one.below_rad_s, one.above_rad_s))
+        speed = _rpm(one.speed_rad_s)
+        lines.append(f"  {one.segment:<8}{speed:<14}{below:<20}{above:<20}{one.verdict.value}")
+        words = f"not satisfied: {', '.join(one.reasons)}"
+        lines += textwrap.wrap(words, width, initial_indent=_IN, subsequent_indent=_IN)
+    return "\n".join(lines)
+
+
+def advice_csv(advice: Sequence[Advice]) -> str:
+    """The advice as a table."""
+    out = io.StringIO()
+    writer = csv.writer(out, lineterminator="\n")
+    writer.writerow(
+        ["hold", "speed [rpm]", "nearest below [rpm]", "nearest above [rpm]", "verdict", "rules"]
+    )
+    for one in advice:
+        speeds = (one.speed_rad_s, one.below_rad_s, one.above_rad_s)
+        row = ["" if v is None else f"{from_si(v, 'rpm'):.6g}" for v in speeds]
+        writer.writerow([one.segment, *row, one.verdict.value, " ".join(one.reasons)])
+    return out.getvalue()
+
+
+def _rpm(speed_rad_s: float | None) -> str:
+    return _NONE if speed_rad_s is None else f"{from_si(speed_rad_s, 'rpm'):.1f} rpm"

@@ -1,0 +1,151 @@
+"""Schedule help: for each hold too near a resonance, the nearest speeds that are not.
+
+Candidates are judged as the plan itself is: the same studies, the same rules of frequency, the
+same window, so that a speed that is told satisfies all of them.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from typing import TYPE_CHECKING
+
+from planner.judge.judge import judge
+from planner.judge.requests import requests
+from planner.model.plan import segments
+from planner.model.results import Verdict
+from planner.predict.histories import timed
+from planner.predict.register import REGISTER
+from planner.predict.run import predict_only
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator, Sequence
+
+    from planner.model.plan import Plan, Segment
+    from planner.model.results import Finding, Judgement, Prediction, Requests
+
+    Predictions = dict[str, Prediction]
+
+STUDIES = ("air", "wind", "inertia", "schedule", "tip", "stops", "holds", "modes")
+"""What rules of frequency rest on."""
+QUANTITIES = ("harmonic_spacing", "fixed_frame_spacing", "band_distance")
+"""A rule of frequency limits one of these."""
+REACH = 0.3
+"""Of the hold's speed: how far to either side speeds are tried."""
+COARSE, FINE = 0.005, 0.001
+"""Of full speed: steps of the search, and of what is told. A gap narrower than the first may be
+missed."""
+
+
+@dataclass(frozen=True)
+class Advice:
+    """What a hold comes too near to, and where else it could be."""
+
+    segment: str
+    speed_rad_s: float
+    verdict: Verdict
+    reasons: tuple[str, ...]
+    """Titles of the rules that it does not satisfy, each with its place."""
+    below_rad_s: float | None = None
+    above_rad_s: float | None = None
+    """Nearest speeds that satisfy every rule of frequency; None: none within reach."""
+
+
+def advise(plan: Plan) -> tuple[Advice, ...]:
+    """Look for better speeds for every hold that a rule of frequency does not let pass.
+
+    Args:
+        plan: the plan with its merged rule book.
+
+    Returns:
+        One entry for each such hold, in the order of the run; empty where there is none.
+    """
+    book = replace(plan.rule_book, rules=tuple(r for r in plan.rule_book.rules if _is_asked(r)))
+    desk = _Desk(replace(plan, rule_book=book), requests(plan.rule_book))
+    walk = timed(plan, segments(plan), desk.wanted)
+    real = desk.predicted(walk)
+    judgement = desk.judged(walk, real)
+    found = []
+    for hold in walk:
+        verdict, reasons = _held(hold.id, judgement)
+        if hold.kind == "hold" and verdict is not Verdict.GO:
+            told = Advice(hold.id, hold.to_rad_s, verdict, reasons)
+            found.append(_searched(desk, told, hold, real))
+    return tuple(found)
+
+
+def _is_asked(rule: object) -> bool:
+    return getattr(rule, "quantity", "") in QUANTITIES
+
+
+@dataclass(frozen=True)
+class _Desk:
+    """The plan with its rules of frequency alone."""
+
+    plan: Plan
+    wanted: Requests
+
+    def predicted(self, walk: tuple[Segment, ...]) -> Predictions:
+        return dict(predict_only(STUDIES, self.plan, walk, self.wanted))
+
+    def judged(self, walk: tuple[Segment, ...], predictions: Predictions) -> Judgement:
+        return judge(self.plan, walk, REGISTER, predictions)
+
+    def fine(self, hold: Segment, speeds: Sequence[float], real: Predictions) -> list[bool]:
+        """Whether the hold would satisfy every rule at each speed.
+
+        References of the run, such as the card's speed, stay those of the plan.
+        """
+        walk = tuple(
+            replace(hold, id=f"{hold.id} at {k}", from_rad_s=v, to_rad_s=v)
+            for k, v in enumerate(speeds)
+        )
+        if not walk:
+            return []
+        whole_run = {
+            quantity: found for quantity, found in real.items() if not REGISTER[quantity].axes
+        }
+        judgement = self.judged(walk, {**self.predicted(walk), **whole_run})
+        return [_held(segment.id, judgement)[0] is Verdict.GO for segment in walk]
+
+
+def _held(segment_id: str, judgement: Judgement) -> tuple[Verdict, tuple[str, ...]]:
+    """Worst verdict of the rules of frequency at a hold, and which rules are not GO."""
+    said = [
+        (finding, Verdict(finding.segment_verdicts[segment_id]))
+        for finding in judgement.findings
+        if _of_rules(finding) and segment_id in finding.segment_verdicts
+    ]
+    worst = Verdict.worst([verdict for _, verdict in said] or [Verdict.GO])
+    return worst, tuple(f.rule for f, verdict in said if verdict is not Verdict.GO)
+
+
+def _of_rules(finding: Finding) -> bool:
+    return bool(finding.segment_verdicts)
+
+
+def _searched(desk: _Desk, told: Advice, hold: Segment, real: Predictions) -> Advice:
+    """Coarse steps to both sides, then fine ones towards the hold."""
+    plan = desk.plan
+    unit = plan.stand.full_speed_rad_s
+    top = min(
+        plan.rotor.design_maximum_rad_s, plan.rotor.proven_rad_s, plan.stand.drive.maximum_rad_s
+    )
+    coarse = COARSE * unit
+    count = int(REACH * hold.to_rad_s / coarse)
+    found: list[float | None] = []
+    for side in (-1.0, 1.0):
+        speeds = [hold.to_rad_s + side * coarse * (k + 1) for k in range(count)]
+        speeds = [v for v in speeds if 0.0 < v <= top]
+        first = next(_fine(desk, hold, speeds, real), None)
+        if first is not None:
+            nearer = [first - side * FINE * unit * k for k in range(int(COARSE / FINE) - 1, 0, -1)]
+            first = next(_fine(desk, hold, nearer, real), first)
+        found.append(first)
+    return replace(told, below_rad_s=found[0], above_rad_s=found[1])
+
+
+def _fine(
+    desk: _Desk, hold: Segment, speeds: Sequence[float], real: Predictions
+) -> Iterator[float]:
+    flags = desk.fine(hold, speeds, real)
+    return (v for v, good in zip(speeds, flags, strict=True) if good)

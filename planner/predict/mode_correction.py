@@ -1,0 +1,80 @@
+"""Frequencies with their allowance: the rule book's, or what a measurement leaves of it."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from planner.methods.frequency_correction import Measured, correct
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from numpy.typing import NDArray
+
+    from planner.model.rotor import MeasuredMode
+
+    FloatArray = NDArray[np.float64]
+
+
+@dataclass(frozen=True, eq=False)
+class Ends:
+    """A frequency with both ends of its allowance, shape (lanes,)."""
+
+    frequency_rad_s: FloatArray
+    low_rad_s: FloatArray
+    high_rad_s: FloatArray
+    correction: float = float("nan")
+    """Of the frequency, where it was measured first; not a number: nothing was measured."""
+    residual: float = float("nan")
+
+
+@dataclass(frozen=True, eq=False)
+class ModelFrequency:
+    """What the model says of one mode: where it is wanted, at rest, and where it was measured."""
+
+    speed_rad_s: FloatArray
+    frequency_rad_s: FloatArray
+    at_rest_rad_s: FloatArray
+    """Of each lane: the model at rest with the same pitch."""
+    where_measured_rad_s: FloatArray
+    at_rest_where_measured_rad_s: FloatArray
+
+
+def with_allowance(frequency_rad_s: FloatArray, allowance: tuple[float, float]) -> Ends:
+    """The rule book's allowance on a frequency that nobody measured."""
+    return Ends(frequency_rad_s, frequency_rad_s * allowance[0], frequency_rad_s * allowance[1])
+
+
+def measured_ends(
+    model: ModelFrequency, measured: Sequence[MeasuredMode], allowance: tuple[float, float]
+) -> Ends:
+    """The model corrected by measurements, whose residual is the allowance.
+
+    Raises:
+        ValueError: model and measurement are too far apart to be the same mode.
+    """
+    if not measured:
+        return with_allowance(model.frequency_rad_s, allowance)
+    found = correct(
+        Measured(
+            speed_rad_s=np.array([m.speed_rad_s for m in measured]),
+            frequency_rad_s=np.array([m.frequency_rad_s for m in measured]),
+            accuracy=np.array([m.accuracy for m in measured]),
+            model_rad_s=model.where_measured_rad_s,
+            model_at_rest_rad_s=model.at_rest_where_measured_rad_s,
+        ),
+        model.speed_rad_s,
+        model.frequency_rad_s,
+        model.at_rest_rad_s,
+        allowance,
+    )
+    return Ends(
+        found.frequency_rad_s,
+        found.low_rad_s,
+        found.high_rad_s,
+        found.correction,
+        found.residual,
+    )

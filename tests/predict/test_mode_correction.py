@@ -1,0 +1,57 @@
+"""Measured frequencies correct the model and leave their residual as allowance."""
+
+from __future__ import annotations
+
+import dataclasses
+import math
+
+import pytest
+
+from planner.model.results import Status
+from planner.model.rotor import MeasuredMode
+from tests.predict.rows import row
+
+HZ = 2.0 * math.pi
+
+
+def measured(plan, *modes):
+    rotor = dataclasses.replace(plan.rotor, measured_modes=modes)
+    return dataclasses.replace(plan, rotor=rotor)
+
+
+def test_rap_test_corrects_the_structural_part_alone(articulated, run_predict):
+    """By hand: ω² at speed gains what ω² at rest gained."""
+    plain = run_predict(measured(articulated), "modes")["mode_frequency"]
+    i = row(plain, segment="1.6h", mode="torsion 1")
+    tap = MeasuredMode("torsion 1", 18.4 * HZ, 0.0, math.radians(3.0), 0.015, "x")
+    found = run_predict(measured(articulated, tap), "modes")
+    frequency, correction = found["mode_frequency"], found["frequency_correction"]
+    share = correction.value[row(correction, mode="torsion 1")]
+    rest = 18.4 * HZ / (1.0 + share)
+    assert rest / HZ == pytest.approx(18.78, abs=0.01)
+    wanted = math.sqrt(plain.value[i] ** 2 + (18.4 * HZ) ** 2 - rest**2)
+    assert frequency.value[i] == pytest.approx(wanted, rel=1e-4)
+    residual = found["frequency_residual"]
+    assert residual.value[row(residual, mode="torsion 1")] == pytest.approx(0.015, abs=1e-9)
+
+
+def test_allowance_of_a_measured_mode_is_narrower_where_it_was_measured(articulated, run_predict):
+    speed = articulated.blocks[0].steps[-1].speed_rad_s
+    run = MeasuredMode("flap 2", 15.3 * HZ, 1.02 * speed, math.radians(3.0), 0.01, "x")
+    found = run_predict(measured(articulated, run), "modes")["mode_frequency"]
+    i = row(found, segment="1.6h", mode="flap 2")
+    j = row(found, segment="1.6h", mode="flap 3")
+    widths = [(found.high[k] - found.low[k]) / found.value[k] for k in (i, j)]
+    assert widths[0] < widths[1]
+
+
+def test_measurement_of_another_mode_is_refused_in_words(articulated, run_predict):
+    tap = MeasuredMode("torsion 1", 55.9 * HZ, 0.0, 0.0, 0.01, "x")
+    found = run_predict(measured(articulated, tap), "modes")
+    assert set(found["harmonic_spacing"].status) == {Status.OUTSIDE_VALIDITY}
+    assert "check which mode it is" in found["harmonic_spacing"].reasons[0]
+
+
+def test_plan_without_measurements_says_so(sample, run_predict):
+    found = run_predict(measured(sample("hingeless-model")), "modes")["frequency_correction"]
+    assert found.status == (Status.NOT_APPLICABLE,)
