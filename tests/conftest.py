@@ -2,9 +2,13 @@
 
 from __future__ import annotations
 
+import os
+
+for _name in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS", "OMP_NUM_THREADS"):
+    os.environ.setdefault(_name, "1")  # before numpy is imported, as the command does
+
 import dataclasses
 import functools
-import os
 import pathlib
 from typing import TYPE_CHECKING
 

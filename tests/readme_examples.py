@@ -19,10 +19,12 @@ BREAKS = (
     ("plan.toml", 'rpm = "50 % rpm"', "rpm = 180"),
     ("rotor.toml", 'angle = "16 deg"', 'angle = "16 kg"'),
 )
+MOVED = ('rpm = "90 % rpm"', 'rpm = "70 % rpm"')
+"""A hold that is moved too near a resonance."""
 
 
 def prepare(folder: pathlib.Path) -> None:
-    """Lay out a folder like the repository's, with a broken plan beside the samples."""
+    """Lay out a folder like the repository's, with a broken and a moved plan beside the samples."""
     shutil.copytree(ROOT / "rules", folder / "rules")
     shutil.copytree(ROOT / "sample_plans", folder / "sample_plans")
     broken = folder / "sample_plans" / "broken"
@@ -30,6 +32,10 @@ def prepare(folder: pathlib.Path) -> None:
     for name, old, new in BREAKS:
         path = broken / name
         path.write_text(path.read_text("utf-8").replace(old, new, 1), "utf-8")
+    moved = folder / "sample_plans" / "moved"
+    shutil.copytree(folder / "sample_plans" / "articulated-run-up", moved)
+    path = moved / "plan.toml"
+    path.write_text(path.read_text("utf-8").replace(*MOVED, 1), "utf-8")
 
 
 def run(words: str, folder: pathlib.Path) -> str:

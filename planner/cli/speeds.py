@@ -13,6 +13,7 @@ from planner.cli.sources import stop_on_fault
 from planner.cli.summary import NARROW, WIDE
 from planner.explore.speed_advice import FINE, REACH, advise
 from planner.files.read import read_plan
+from planner.model.results import Verdict
 from planner.paper.texts import unprintable
 from planner.predict.register import REFERENCES, REGISTER
 from planner.units import from_si
@@ -21,11 +22,17 @@ if TYPE_CHECKING:
     from collections.abc import Sequence
     from pathlib import Path
 
-    from planner.explore.speed_advice import Advice
+    from planner.explore.speed_advice import Advice, Better
 
 _IN = " " * 4
 _NONE = "none within reach"
 _ALL_WELL = "Every hold satisfies every rule of frequency."
+_FOREWORD = (
+    "Holds that a rule of frequency does not let pass, and the nearest speeds that keep every "
+    f"limit of frequency, on steps of {FINE:.1%} of full speed, up to {REACH:.0%} away. Window, "
+    "pitch and air stay as planned. Other rules are not looked at here: check the plan again "
+    "after a change."
+)
 
 
 def advice_of(source: Path) -> tuple[Advice, ...]:
@@ -50,17 +57,11 @@ def told(advice: Sequence[Advice]) -> str:
     width = max(NARROW, min(WIDE, shutil.get_terminal_size((NARROW, 24)).columns))
     if not advice:
         return _ALL_WELL
-    lines = [
-        "Holds that a rule of frequency does not let pass, and the nearest speeds that satisfy "
-        f"every one of them, on steps of {FINE:.1%} of full speed, up to {REACH:.0%} away. Window, "
-        "pitch and air stay as planned. Other rules are not looked at here: check the plan again "
-        "after a change."
-    ]
-    lines = [*textwrap.wrap(lines[0], width), ""]
+    lines = [*textwrap.wrap(_FOREWORD, width), ""]
     heads = f"{'nearest below':<20}{'nearest above':<20}"
     lines.append(f"  {'hold':<8}{'speed':<14}{heads}verdict")
     for one in advice:
-        below, above = (_rpm(speed) for speed in (one.below_rad_s, one.above_rad_s))
+        below, above = (_words(better) for better in (one.below, one.above))
         speed = _rpm(one.speed_rad_s)
         lines.append(f"  {one.segment:<8}{speed:<14}{below:<20}{above:<20}{one.verdict.value}")
         words = f"not satisfied: {', '.join(one.reasons)}"
@@ -73,14 +74,34 @@ def advice_csv(advice: Sequence[Advice]) -> str:
     out = io.StringIO()
     writer = csv.writer(out, lineterminator="\n")
     writer.writerow(
-        ["hold", "speed [rpm]", "nearest below [rpm]", "nearest above [rpm]", "verdict", "rules"]
+        [
+            "hold",
+            "speed [rpm]",
+            "verdict",
+            "nearest below [rpm]",
+            "verdict there",
+            "nearest above [rpm]",
+            "verdict there",
+            "rules not satisfied",
+        ]
     )
     for one in advice:
-        speeds = (one.speed_rad_s, one.below_rad_s, one.above_rad_s)
-        row = ["" if v is None else f"{from_si(v, 'rpm'):.6g}" for v in speeds]
-        writer.writerow([one.segment, *row, one.verdict.value, " ".join(one.reasons)])
+        row = [one.segment, f"{from_si(one.speed_rad_s, 'rpm'):.6g}", one.verdict.value]
+        for better in (one.below, one.above):
+            if better is None:
+                row += ["", ""]
+            else:
+                row += [f"{from_si(better.speed_rad_s, 'rpm'):.6g}", better.verdict.value]
+        writer.writerow([*row, " ".join(one.reasons)])
     return out.getvalue()
 
 
-def _rpm(speed_rad_s: float | None) -> str:
-    return _NONE if speed_rad_s is None else f"{from_si(speed_rad_s, 'rpm'):.1f} rpm"
+def _words(better: Better | None) -> str:
+    if better is None:
+        return _NONE
+    doubt = "" if better.verdict is Verdict.GO else f" ({better.verdict.value})"
+    return f"{_rpm(better.speed_rad_s)}{doubt}"
+
+
+def _rpm(speed_rad_s: float) -> str:
+    return f"{from_si(speed_rad_s, 'rpm'):.1f} rpm"

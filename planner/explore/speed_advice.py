@@ -1,7 +1,9 @@
 """Schedule help: for each hold too near a resonance, the nearest speeds that are not.
 
 Candidates are judged as the plan itself is: the same studies, the same rules of frequency, the
-same window, so that a speed that is told satisfies all of them.
+same window, so that a speed that is told satisfies all of them. A rule that covers the hold where
+it is planned is asked at every candidate, so that no speed is told only because a rule ends above
+it.
 """
 
 from __future__ import annotations
@@ -13,6 +15,7 @@ from planner.judge.judge import judge
 from planner.judge.requests import requests
 from planner.model.plan import segments
 from planner.model.results import Verdict
+from planner.model.rules import SpeedRange
 from planner.predict.histories import timed
 from planner.predict.register import REGISTER
 from planner.predict.run import predict_only
@@ -22,11 +25,14 @@ if TYPE_CHECKING:
 
     from planner.model.plan import Plan, Segment
     from planner.model.results import Finding, Judgement, Prediction, Requests
+    from planner.model.rules import Rule
 
     Predictions = dict[str, Prediction]
 
-STUDIES = ("air", "wind", "inertia", "schedule", "tip", "stops", "holds", "modes")
+STUDIES = ("air", "wind", "stops", "schedule", "holds", "modes")
 """What rules of frequency rest on."""
+AGAIN = ("schedule", "holds", "modes")
+"""Those of them that a hold's speed changes."""
 QUANTITIES = ("harmonic_spacing", "fixed_frame_spacing", "band_distance")
 """A rule of frequency limits one of these."""
 REACH = 0.3
@@ -34,6 +40,15 @@ REACH = 0.3
 COARSE, FINE = 0.005, 0.001
 """Of full speed: steps of the search, and of what is told. A gap narrower than the first may be
 missed."""
+
+
+@dataclass(frozen=True)
+class Better:
+    """A speed that keeps every limit of frequency, and what the rules would say of it."""
+
+    speed_rad_s: float
+    verdict: Verdict
+    """GO, or for a hold that is worse than that CAUTION."""
 
 
 @dataclass(frozen=True)
@@ -45,9 +60,9 @@ class Advice:
     verdict: Verdict
     reasons: tuple[str, ...]
     """Titles of the rules that it does not satisfy, each with its place."""
-    below_rad_s: float | None = None
-    above_rad_s: float | None = None
-    """Nearest speeds that satisfy every rule of frequency; None: none within reach."""
+    below: Better | None = None
+    above: Better | None = None
+    """Nearest better speeds; None: none within reach."""
 
 
 def advise(plan: Plan) -> tuple[Advice, ...]:
@@ -69,12 +84,12 @@ def advise(plan: Plan) -> tuple[Advice, ...]:
         verdict, reasons = _held(hold.id, judgement)
         if hold.kind == "hold" and verdict is not Verdict.GO:
             told = Advice(hold.id, hold.to_rad_s, verdict, reasons)
-            found.append(_searched(desk, told, hold, real))
+            found.append(_searched(desk.held_to(hold, judgement), told, hold, real))
     return tuple(found)
 
 
-def _is_asked(rule: object) -> bool:
-    return getattr(rule, "quantity", "") in QUANTITIES
+def _is_asked(rule: Rule) -> bool:
+    return rule.quantity in QUANTITIES
 
 
 @dataclass(frozen=True)
@@ -87,11 +102,26 @@ class _Desk:
     def predicted(self, walk: tuple[Segment, ...]) -> Predictions:
         return dict(predict_only(STUDIES, self.plan, walk, self.wanted))
 
+    def tried(self, walk: tuple[Segment, ...], real: Predictions) -> Predictions:
+        """Candidates predicted; what is of the whole run stays the plan's own."""
+        told = predict_only(AGAIN, self.plan, walk, self.wanted, real)
+        return {q: real[q] if not REGISTER[q].axes else found for q, found in told.items()}
+
     def judged(self, walk: tuple[Segment, ...], predictions: Predictions) -> Judgement:
         return judge(self.plan, walk, REGISTER, predictions)
 
-    def fine(self, hold: Segment, speeds: Sequence[float], real: Predictions) -> list[bool]:
-        """Whether the hold would satisfy every rule at each speed.
+    def held_to(self, hold: Segment, judgement: Judgement) -> _Desk:
+        """The desk whose rules that cover a hold apply at every speed."""
+        covering = {f.rule for f in judgement.findings if hold.id in f.segment_verdicts}
+        rules = tuple(
+            replace(rule, speed_range=SpeedRange()) if rule.id in covering else rule
+            for rule in self.plan.rule_book.rules
+        )
+        book = replace(self.plan.rule_book, rules=rules)
+        return replace(self, plan=replace(self.plan, rule_book=book))
+
+    def verdicts(self, hold: Segment, speeds: Sequence[float], real: Predictions) -> list[Verdict]:
+        """What the rules would say of the hold at each speed.
 
         References of the run, such as the card's speed, stay those of the plan.
         """
@@ -101,11 +131,8 @@ class _Desk:
         )
         if not walk:
             return []
-        whole_run = {
-            quantity: found for quantity, found in real.items() if not REGISTER[quantity].axes
-        }
-        judgement = self.judged(walk, {**self.predicted(walk), **whole_run})
-        return [_held(segment.id, judgement)[0] is Verdict.GO for segment in walk]
+        judgement = self.judged(walk, self.tried(walk, real))
+        return [_held(segment.id, judgement)[0] for segment in walk]
 
 
 def _held(segment_id: str, judgement: Judgement) -> tuple[Verdict, tuple[str, ...]]:
@@ -132,20 +159,25 @@ def _searched(desk: _Desk, told: Advice, hold: Segment, real: Predictions) -> Ad
     )
     coarse = COARSE * unit
     count = int(REACH * hold.to_rad_s / coarse)
-    found: list[float | None] = []
+    found: list[Better | None] = []
     for side in (-1.0, 1.0):
         speeds = [hold.to_rad_s + side * coarse * (k + 1) for k in range(count)]
         speeds = [v for v in speeds if 0.0 < v <= top]
-        first = next(_fine(desk, hold, speeds, real), None)
+        first = next(_better(desk, (told, hold), speeds, real), None)
         if first is not None:
-            nearer = [first - side * FINE * unit * k for k in range(int(COARSE / FINE) - 1, 0, -1)]
-            first = next(_fine(desk, hold, nearer, real), first)
+            steps = range(int(COARSE / FINE) - 1, 0, -1)
+            nearer = [first.speed_rad_s - side * FINE * unit * k for k in steps]
+            first = next(_better(desk, (told, hold), nearer, real), first)
         found.append(first)
-    return replace(told, below_rad_s=found[0], above_rad_s=found[1])
+    return replace(told, below=found[0], above=found[1])
 
 
-def _fine(
-    desk: _Desk, hold: Segment, speeds: Sequence[float], real: Predictions
-) -> Iterator[float]:
-    flags = desk.fine(hold, speeds, real)
-    return (v for v, good in zip(speeds, flags, strict=True) if good)
+def _better(
+    desk: _Desk, asked: tuple[Advice, Segment], speeds: Sequence[float], real: Predictions
+) -> Iterator[Better]:
+    """Speeds with a better verdict than the hold has, none worse than CAUTION."""
+    told, hold = asked
+    most = min(told.verdict.rank - 1, Verdict.CAUTION.rank)
+    for speed, verdict in zip(speeds, desk.verdicts(hold, speeds, real), strict=True):
+        if verdict.rank <= most:
+            yield Better(speed, verdict)

@@ -78,18 +78,25 @@ def predict(
 
 
 def predict_only(
-    studies: Container[str], plan: Plan, segments: tuple[Segment, ...], requests: Requests
+    studies: Container[str],
+    plan: Plan,
+    segments: tuple[Segment, ...],
+    requests: Requests,
+    known: Mapping[str, Prediction] = MappingProxyType({}),
 ) -> Mapping[str, Prediction]:
-    """Predict what some studies tell; the quantities of all others are NOT COMPUTED.
+    """Predict what some studies tell; what they and ``known`` leave open is NOT COMPUTED.
 
     Args:
-        studies: ids of those that are wanted, with all that they need.
+        studies: ids of those that are wanted.
         plan: the model.
         segments: its schedule walked once, or stretches of one.
         requests: what the rules need computed.
+        known: predictions that the studies may build on.
     """
     wanted = [study for study in STUDIES if study.id in studies]
-    return _whole(_found(wanted, (plan, segments, requests), silent, (NOTHING_KEPT, {})))
+    asked = (plan, segments, requests)
+    told = _found(wanted, asked, silent, (NOTHING_KEPT, {}), known)
+    return _whole({**known, **told})
 
 
 def _found(
@@ -97,6 +104,7 @@ def _found(
     asked: tuple[Plan, tuple[Segment, ...], Requests],
     progress: Progress,
     keeping: tuple[Store, Mapping[str, str]],
+    known: Mapping[str, Prediction] = MappingProxyType({}),
 ) -> dict[str, Prediction]:
     """Run studies in their order, each with what it needs of those before."""
     found: dict[str, Prediction] = {}
@@ -104,7 +112,7 @@ def _found(
     store, versions = keeping
     for study in studies:
         progress(study.id)
-        inputs = replace(study.inputs(*asked, found), progress=progress)
+        inputs = replace(study.inputs(*asked, {**known, **found}), progress=progress)
         if store is not NOTHING_KEPT:
             keys[study.id] = study.key(inputs, versions, keys)
         try:
