@@ -30,8 +30,8 @@ _ALL_WELL = "Every hold satisfies every rule of frequency."
 _FOREWORD = (
     "Holds that a rule of frequency does not let pass, and the nearest speeds that keep every "
     f"limit of frequency, on steps of {FINE:.1%} of full speed, up to {REACH:.0%} away. Window, "
-    "pitch and air stay as planned. Other rules are not looked at here: check the plan again "
-    "after a change."
+    "pitch and air stay as planned. Other rules, those of the ramps between among them, are not "
+    "looked at here: check the plan again after a change."
 )
 
 

@@ -8,6 +8,7 @@ from functools import cached_property
 from typing import TYPE_CHECKING
 
 from planner.model.plan import ABORT_CAUSES
+from planner.model.results import Status
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -88,6 +89,12 @@ class Place:
             return band.from_rad_s < self.segment.top_rad_s
         return self.segment.enters(band)
 
+    @property
+    def targets_rad_s(self) -> tuple[float, float]:
+        """Lowest and highest target speed; an abort runs down to rest."""
+        low, high = sorted((self.segment.from_rad_s, self.segment.to_rad_s))
+        return (0.0 if self.state else low), high
+
 
 def abort_words(segment: str, state: str) -> str:
     """Where an abort begins and what caused it, in words.
@@ -164,6 +171,36 @@ class Case:
     def whole_run(self) -> Span:
         """From rest to the highest speed of any segment."""
         return Span(0.0, max((s.highest_rad_s for s in self.spans.values()), default=0.0))
+
+    @cached_property
+    def frequencies(self) -> Mapping[str, Span]:
+        """Range of the natural frequency of each mode of which every row is sound [rad/s]."""
+        found = self.predictions.get("mode_frequency")
+        if found is None:
+            return {}
+        numbers: dict[str, list[float]] = {}
+        columns = (found.value.tolist(), found.low.tolist(), found.high.tolist())
+        for labels, status, *row in zip(found.labels, found.status, *columns, strict=True):
+            sound = row if status is Status.OK else [math.nan]
+            numbers.setdefault(labels.mode, []).extend(sound)
+        return {
+            mode: Span(min(ends), max(ends))
+            for mode, ends in numbers.items()
+            if all(math.isfinite(end) for end in ends)
+        }
+
+    def passes(self, place: Place, mode: str) -> bool:
+        """Tell whether a place's speeds reach the frequency of a mode of the stand.
+
+        The frequency's allowance and the gauge's error are counted in. A mode whose frequency is
+        not known is passed by every rotor that turns.
+        """
+        low, high = place.targets_rad_s
+        frequency = self.frequencies.get(mode)
+        if frequency is None:
+            return high > 0.0
+        error = abs(self.plan.stand.speed_gauge_error_rad_s)
+        return low < frequency.highest_rad_s + error and high > frequency.lowest_rad_s - error
 
     @cached_property
     def unfitted_modes(self) -> frozenset[str]:

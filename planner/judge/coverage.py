@@ -128,6 +128,7 @@ def _is_evidence(evidence: Evidence, rule: Rule, outcome: Outcome) -> bool:
         and evidence.order in {0, order}
         and evidence.mode in {"", labels.mode or evidence.mode}
         and evidence.harmonic in {"", labels.harmonic or evidence.harmonic}
+        and evidence.band in {"", labels.band or evidence.band}
     )
 
 

@@ -15,6 +15,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from planner.model.rules import HAZARD_CLASSES
+from planner.predict.blade_modes import COLLECTIVE, CYCLIC
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -41,6 +42,8 @@ class Evidence:
     """Order of the mode in its family; zero: any."""
     mode: str = ""
     """Label of one mode; empty: any."""
+    band: str = ""
+    """Keep-out band; empty: any."""
     must_apply: bool = False
     """Nothing can make it not apply: a row that says so is no evidence."""
 
@@ -52,6 +55,8 @@ class Evidence:
         elif self.family:
             order = f" {self.order}" if self.order else ""
             words += f" of {self.family}{order} modes"
+        if self.band:
+            words += f" of band {self.band}"
         return f"{words} at {self.harmonic} per revolution" if self.harmonic else words
 
 
@@ -121,36 +126,64 @@ def _aborts(place: Place, case: Case) -> tuple[Evidence, ...]:
 
 def _unpowered(place: Place, case: Case) -> tuple[Evidence, ...]:
     """A passage that cannot choose its rate: by cycles, and by how far the stand sways."""
-    enters = any(place.enters(band) for band in case.plan.keep_outs)
-    return (*_sway(case), *(_all("band_cycles") if enters else ()))
+    must_apply = place.must_occur if place.state else True
+    return (*_sway(place, case), *_entered("band_cycles", place, case, must_apply=must_apply))
 
 
-def _sway(case: Case) -> tuple[Evidence, ...]:
+def _sway(place: Place, case: Case) -> tuple[Evidence, ...]:
     """What each mode of the stand answers to unbalance while it is passed."""
+    return _passages("passage_amplitude", place, case)
+
+
+def _passages(quantity: str, place: Place, case: Case) -> tuple[Evidence, ...]:
+    """A number of each mode of the stand at once per revolution.
+
+    That the mode is not passed is taken only where the plan's speeds keep off its frequency. A
+    stand file that gives no mode leaves open what is passed.
+    """
+    can_occur = place.must_occur if place.state else True
     return tuple(
-        Evidence("passage_amplitude", "stand", "1", mode=mode) for mode in _given("stand", case)
+        Evidence(
+            quantity, "stand", "1", mode=mode, must_apply=can_occur and case.passes(place, mode)
+        )
+        for mode in _given("stand", case) or ("",)
+    )
+
+
+def _entered(quantity: str, place: Place, case: Case, *, must_apply: bool) -> tuple[Evidence, ...]:
+    """A number of each keep-out band that a place enters."""
+    return tuple(
+        Evidence(quantity, band=band.id, must_apply=must_apply)
+        for band in case.plan.keep_outs
+        if place.enters(band)
     )
 
 
 def _resonance(place: Place, case: Case) -> tuple[Evidence, ...]:
     if place.kind == "hold":
         return (*_blade_modes(place, case), *_given_modes(case), *_bands(case))
-    covers = tuple(
-        Evidence("crossing_cover", "stand", "1", mode=mode) for mode in _given("stand", case)
-    )
+    covers = _passages("crossing_cover", place, case)
     if place.kind == "stop" and not case.plan.shutdown.powered:
         return (*covers, *_unpowered(place, case))
-    enters = any(place.enters(band) for band in case.plan.keep_outs)
-    return (*covers, *_sway(case), *(_all("band_rate") if enters else ()))
+    rates = _entered("band_rate", place, case, must_apply=True)
+    return (*covers, *_sway(place, case), *rates)
 
 
 def _blade_modes(place: Place, case: Case) -> tuple[Evidence, ...]:
-    """The lowest modes of each family, at the fastest holds."""
+    """The lowest modes of each family, at the fastest holds; of a teetering pair both motions."""
     top = TOP_SHARE * case.whole_run.highest_rad_s
     if place.span.highest_rad_s < top:
         return ()
     lowest = (("flap", 1), ("flap", 2), ("lag", 1), ("torsion", 1))
-    return tuple(Evidence("harmonic_spacing", family, order=n) for family, n in lowest)
+    is_pair = case.plan.rotor.hub.kind == "teetering"
+    motions = (CYCLIC, COLLECTIVE) if is_pair else ("",)
+    return tuple(
+        Evidence(
+            "harmonic_spacing", family, order=n, mode=f"{family} {n}{motion}" if motion else ""
+        )
+        for family, n in lowest
+        for motion in motions
+    )
 
 
 def _given_modes(case: Case) -> tuple[Evidence, ...]:
@@ -174,7 +207,9 @@ def _given(family: str, case: Case) -> tuple[str, ...]:
 
 
 def _bands(case: Case) -> tuple[Evidence, ...]:
-    return _all("band_distance") if case.plan.keep_outs else ()
+    return tuple(
+        Evidence("band_distance", band=band.id, must_apply=True) for band in case.plan.keep_outs
+    )
 
 
 def _loads(place: Place, __: Case) -> tuple[Evidence, ...]:

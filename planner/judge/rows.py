@@ -100,13 +100,23 @@ def order_of(mode: str) -> int | None:
     return None
 
 
+def stand_mode_of(harmonic: str) -> str:
+    """Mode of the stand that a blade mode is held against; empty for a rotor harmonic.
+
+    Example:
+        >>> stand_mode_of("stand sway, Ω - ω"), stand_mode_of("4")
+        ('stand sway', '')
+    """
+    return harmonic.rpartition(", ")[0]
+
+
 def _doubted(row: Row, doubt: str, case: Case) -> Row:
     """Take the OK from a row whose inputs do not carry it."""
     if row.status is not Status.OK:
         return row
     if doubt:
         return replace(row, status=Status.NOT_STATED, reason=doubt)
-    if row.labels.mode in case.unfitted_modes:
+    if {row.labels.mode, stand_mode_of(row.labels.harmonic)} & case.unfitted_modes:
         reason = "the mode is not stated to be found with the rotor's mass fitted"
         return replace(row, status=Status.NOT_STATED, reason=reason)
     return row

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from itertools import pairwise
 from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
@@ -232,6 +233,15 @@ class Segment:
     """How often the run passes this segment, repeats counted."""
     own_run_up: bool = False
     """The drive's own run-up; ``duration_s`` is NaN until it is predicted."""
+    course: tuple[tuple[float, float], ...] = ()
+    """Time [s] and speed [rad/s] of a change of speed that is not even, once it is predicted."""
+
+    @property
+    def pieces(self) -> tuple[tuple[float, float, float], ...]:
+        """Stretches of even rate: duration, first and last speed."""
+        if not self.course:
+            return ((self.duration_s, self.from_rad_s, self.to_rad_s),)
+        return tuple((b[0] - a[0], a[1], b[1]) for a, b in pairwise(self.course))
 
     @property
     def top_rad_s(self) -> float:

@@ -167,9 +167,19 @@ class Stand:
 
     def mode_labels(self, family: str) -> tuple[str, ...]:
         """Labels of all modes of a family that the stand file gives or that follow from it."""
-        found = [mode.label for mode in self.modes if mode.family == family]
-        if family == "stand" and self.column is not None:
-            found += [f"stand column {order + 1}" for order in range(COLUMN_MODES)]
-        if family == "shaft" and self.drive_train is not None:
-            found += [f"shaft train {k + 1}" for k in range(len(self.drive_train.inertias))]
-        return tuple(found)
+        return mode_labels(family, self.modes, self.column, self.drive_train)
+
+
+def mode_labels(
+    family: str,
+    modes: tuple[GivenMode, ...],
+    column: Column | None,
+    train: DriveTrain | None,
+) -> tuple[str, ...]:
+    """Labels of all modes of a family that are given or follow from a column or drive train."""
+    found = [mode.label for mode in modes if mode.family == family]
+    if family == "stand" and column is not None:
+        found += [f"stand column {order + 1}" for order in range(COLUMN_MODES)]
+    if family == "shaft" and train is not None:
+        found += [f"shaft train {k + 1}" for k in range(len(train.inertias))]
+    return tuple(found)

@@ -10,7 +10,7 @@ import numpy as np
 
 from planner.model.results import Labels, Status
 from planner.predict.run_down_events import add_ends
-from planner.predict.study_schedule import seconds_inside
+from planner.predict.study_schedule import stretches_inside
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -115,24 +115,33 @@ def _stay(
     """Everything that the card spends inside one band."""
     if reentries is None:
         return Stay(_NOTHING, Status.NOT_STATED, _NO_REENTRIES)
-    stop = [(e, f) for e, f in solved if not e.label.state]
+    for event, found in solved:
+        if found is None and event.status not in {Status.OK, Status.NOT_APPLICABLE}:
+            return Stay(_NOTHING, event.status, event.reason)
     total = _NOTHING.copy()
+    worst = _NOTHING.copy()
+    for event, found in solved:
+        if found is None:
+            continue  # a powered stop, which the walk counts, or a cause that cannot be
+        if not event.label.state:
+            total += _passed(found, band)
+        else:
+            back = _way_back(walk, event.label.segment, band)
+            worst = np.maximum(worst, _passed(found, band) + back[:, None])
+    coasts = any(found is not None and not event.label.state for event, found in solved)
+    return _with_schedule(walk, band, Stay(total + reentries * worst), coasts=coasts)
+
+
+def _with_schedule(walk: Sequence[Segment], band: KeepOut, stay: Stay, *, coasts: bool) -> Stay:
+    """Add all that is driven, repeats counted; a stop that coasts is counted already."""
+    total = stay.numbers.copy()
     for segment in walk:
-        if segment.kind == "stop" and any(found is not None for _, found in stop):
+        if segment.kind == "stop" and coasts:
             continue
         if not segment.duration_s > 0.0 and segment.enters(band):
             return Stay(_NOTHING, Status.NOT_STATED, f"{segment.id} has no duration")
         total += segment.times * inside(segment, band)[:, None]
-    total += sum((_passed(found, band) for _, found in stop if found is not None), _NOTHING)
-    worst = _NOTHING.copy()
-    for event, found in solved:
-        if not event.label.state or event.status is Status.NOT_APPLICABLE:
-            continue
-        if found is None:
-            return Stay(_NOTHING, event.status, event.reason)
-        back = _way_back(walk, event.label.segment, band)
-        worst = np.maximum(worst, _passed(found, band) + back[:, None])
-    return Stay(total + reentries * worst)
+    return Stay(total)
 
 
 def _way_back(walk: Sequence[Segment], segment_id: str, band: KeepOut) -> FloatArray:
@@ -147,10 +156,7 @@ def _way_back(walk: Sequence[Segment], segment_id: str, band: KeepOut) -> FloatA
 
 
 def inside(segment: Segment, band: KeepOut) -> FloatArray:
-    """Time [s] and turns that one pass of a segment at its even rate spends inside a band."""
-    seconds = seconds_inside(segment, band)
-    if not seconds > 0.0:
-        return _NOTHING[:, 0]
-    low, high = sorted((segment.from_rad_s, segment.to_rad_s))
-    middle = 0.5 * (max(low, band.from_rad_s) + min(high, band.to_rad_s))
-    return np.array([seconds, seconds * middle / _TURN])
+    """Time [s] and turns that one pass of a segment spends inside a band."""
+    stretches = stretches_inside(segment, band)
+    turns = sum(seconds * speed for seconds, speed in stretches) / _TURN
+    return np.array([sum(seconds for seconds, _ in stretches), turns])

@@ -11,7 +11,7 @@ import numpy as np
 from planner.methods.beam import Root
 from planner.methods.coupled_beam import BladeRoots, coupled_matrices
 from planner.methods.coupled_modes import coupled_modes
-from planner.predict.mode_correction import ModelFrequency, measured_ends
+from planner.predict.mode_correction import ModelFrequency, measured_ends, require_known
 from planner.rotor.blade_views import coupled_blade
 
 if TYPE_CHECKING:
@@ -66,6 +66,7 @@ def blade_modes(
         matrices = coupled_matrices(coupled_blade(rotor.blade), roots)
         modes = coupled_modes(matrices, wide.speed_rad_s, wide.collective_rad, FAMILY_MODES)
         found += _labelled(modes, suffix, (rotor.measured_modes, lanes, extra), allowance)
+    require_known(rotor.measured_modes, [mode.label for mode in found])
     return tuple(found)
 
 

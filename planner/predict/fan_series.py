@@ -84,7 +84,7 @@ def _curve(track: Track) -> dict[str, Any]:
 def time_at_speed(segments: Sequence[Segment], full_speed_rad_s: float) -> dict[str, Any]:
     """Time that the run spends in each bin of speed, repeats counted.
 
-    Ramps and the stop run at an even rate; a segment without a time counts for nothing.
+    A segment without a time counts for nothing.
     """
     width = BIN_SHARE * full_speed_rad_s
     top = max((s.top_rad_s for s in segments), default=0.0)
@@ -92,13 +92,14 @@ def time_at_speed(segments: Sequence[Segment], full_speed_rad_s: float) -> dict[
     seconds = np.zeros(edges.size - 1)
     for segment in segments:
         if segment.duration_s > 0.0:
-            seconds += segment.times * segment.duration_s * _shares(segment, edges)
+            for lasts, first, last in segment.pieces:
+                seconds += segment.times * lasts * _shares(sorted((first, last)), edges)
     return {"edges_rad_s": edges, "seconds": seconds}
 
 
-def _shares(segment: Segment, edges: FloatArray) -> FloatArray:
-    """Share of a segment's time in each bin."""
-    low, high = sorted((segment.from_rad_s, segment.to_rad_s))
+def _shares(ends: Sequence[float], edges: FloatArray) -> FloatArray:
+    """Share of the time of a stretch between two speeds in each bin."""
+    low, high = ends
     if low == high:
         at = np.searchsorted(edges, low, side="right") - 1
         return np.asarray(np.arange(edges.size - 1) == at, dtype=np.float64)

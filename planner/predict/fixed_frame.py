@@ -25,7 +25,7 @@ SIDES = {"Ω - ω": -1.0, "Ω + ω": 1.0}
 SHIFTED = ("flap", "lag")
 """Families that shake the stand."""
 HIGHEST_ORDER = 2
-NO_STAND_MODE = "the stand file gives no mode of the stand that can be judged"
+NO_STAND_MODE = "the stand file gives no mode of the stand"
 _AHEAD = "seen ahead of the rotation, where the two do not feed each other"
 _FAST = "the blades swing faster than the rotor turns, where the two do not feed each other"
 
@@ -50,7 +50,7 @@ def fixed_frame_rows(rows: Rows, tracks: Sequence[Track], at: tuple[Segment, Flo
     for track in shifted(tracks):
         label = Labels(segment=hold.id, mode=track.name)
         if not stands:
-            rows.flag(label, Status.NOT_APPLICABLE, NO_STAND_MODE, speed_rad_s=hold.to_rad_s)
+            rows.flag(label, Status.NOT_STATED, NO_STAND_MODE, speed_rad_s=hold.to_rad_s)
         for stand in stands:
             for words, side in SIDES.items():
                 named = Labels(hold.id, track.name, f"{stand.name}, {words}")

@@ -317,10 +317,13 @@ def timed(plan: Plan, walk: Sequence[Segment], requests: Requests) -> tuple[Segm
 def _timed(shaft: Shaft, way: Way) -> Segment:
     segment, controls = way
     try:
-        found = own_run_up_of(shaft, segment, controls).time_s
+        found = own_run_up_of(shaft, segment, controls)
     except NotAssessedError:
-        found = math.inf
-    return replace(segment, duration_s=found if math.isfinite(found) else math.nan)
+        return replace(segment, duration_s=math.nan)
+    if not math.isfinite(found.time_s):
+        return replace(segment, duration_s=math.nan)
+    times, speeds = found.path.time_s[0].tolist(), found.path.speed_rad_s[0].tolist()
+    return replace(segment, duration_s=found.time_s, course=tuple(zip(times, speeds, strict=True)))
 
 
 def ramp_history(

@@ -78,3 +78,18 @@ def measured_ends(
         found.correction,
         found.residual,
     )
+
+
+def require_known(measured: Sequence[MeasuredMode], labels: Sequence[str]) -> None:
+    """Refuse a measurement of a mode that is not computed.
+
+    Raises:
+        ValueError: it would correct nothing, in silence.
+    """
+    for one in measured:
+        if one.mode not in labels:
+            msg = (
+                f"measured mode: expected one of {', '.join(labels)}, found {one.mode!r}; name "
+                "the mode as it is computed"
+            )
+            raise ValueError(msg)

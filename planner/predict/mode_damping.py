@@ -13,7 +13,9 @@ if TYPE_CHECKING:
     from planner.predict.rows import Rows
     from planner.predict.study import Inputs
 
-FIRST_FLAP = frozenset({"flap 1", "flap 1 cyclic", "flap 1 collective"})
+FIRST_FLAP = frozenset({"flap 1", "flap 1 cyclic"})
+"""Modes that flap_damping_ratio speaks of. A teetering pair that flaps alike bends, and has less
+damping than one that tilts."""
 LEAST_SHARE = 0.5
 """A mode that moves less than this in its own family is not damped as the family is."""
 _NOT_KNOWN = "damping of this mode is not computed"
@@ -37,7 +39,7 @@ def add_damping(rows: Rows, track: Track, hold: Segment, inputs: Inputs) -> None
         rows.flag(label, Status.NOT_COMPUTED, _MIXED, speed_rad_s=hold.to_rad_s)
     elif track.name in FIRST_FLAP:
         _from_air(rows, label, (hold, least), inputs)
-    elif damped and track.ends.frequency_rad_s[0] > 0.0:
+    elif damped and float(track.ends.low_rad_s.min()) > 0.0:
         _from_damper(rows, label, (track, hold, least), inputs)
     else:
         rows.flag(label, Status.NOT_COMPUTED, _NOT_KNOWN, speed_rad_s=hold.to_rad_s)

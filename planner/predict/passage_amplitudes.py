@@ -12,6 +12,7 @@ from planner.methods.hand_checks_passage import unbalance_passage_peak
 from planner.methods.passage import SpeedTable, passage_peak
 from planner.methods.run_down import lanes_of, speed_at
 from planner.model.results import Labels, Status
+from planner.predict.mid_ramp import Worst, worst_of_cuts
 from planner.predict.run_down_events import add_ends
 from planner.predict.stand_modes import without_mass
 from planner.predict.study import NotAssessedError
@@ -21,9 +22,9 @@ if TYPE_CHECKING:
 
     from numpy.typing import NDArray
 
-    from planner.methods.passage import PassagePeak
     from planner.model.plan import Segment
     from planner.predict.histories import FoundRunDown, Order
+    from planner.predict.mid_ramp import Cut
     from planner.predict.rows import Rows
     from planner.predict.run_down_events import Event
     from planner.predict.run_down_hand import Hand
@@ -47,7 +48,6 @@ HAND_DAMPING = 0.06
 """Damping up to which the hand check holds."""
 CLEAR = 0.05
 """Of a mode's frequency: how far inside the passed speeds it lies where the hand check holds."""
-NO_MODE = "the stand file gives no mode of the stand"
 NOT_PASSED = "this resonance is not passed"
 
 
@@ -64,6 +64,15 @@ class Passage:
     def offset_m(self) -> float:
         """The unbalance over the modal mass: what amplifications multiply."""
         return self.unbalance_kg_m / self.mode.modal_mass_kg
+
+    def frequencies_rad_s(self, ends_rad_s: Sequence[float]) -> FloatArray:
+        """Nominal, lowest and highest frequency, then those that lie where a passage ends.
+
+        A mode that lies at an end, gauge error included, answers more than at its own ends.
+        """
+        _, low, high = self.mode.frequencies_rad_s
+        near = [v + e for v in ends_rad_s for e in (-self.error_rad_s, 0.0, self.error_rad_s)]
+        return np.array([*self.mode.frequencies_rad_s, *np.clip(near, low, high)])
 
     def is_passed(self, low_rad_s: float, high_rad_s: float) -> bool:
         """Whether speeds reach the mode's frequency, allowance and gauge error included."""
@@ -89,9 +98,21 @@ def ramp_rows(
 
 
 def run_down_rows(
-    rows: Mapping[str, Rows], solved: Sequence[Case], passages: Sequence[Passage], hands: Hands
+    rows: Mapping[str, Rows],
+    solved: Sequence[Case],
+    passages: Sequence[Passage],
+    hands: Hands,
+    cut: Sequence[tuple[Cut, Event, FoundRunDown | None]],
 ) -> None:
-    """Rows of the unpowered stop and of every abort."""
+    """Rows of the unpowered stop and of every abort, those out of the middle of a ramp among them.
+
+    Args:
+        rows: to be filled.
+        solved: run-downs from the hold or the end of the ramp where each begins.
+        passages: modes and what drives them.
+        hands: hand checks of the run-downs.
+        cut: run-downs out of the middle of ramps.
+    """
     for passage in passages:
         for event, found in solved:
             if found is None and event.status is Status.OK:
@@ -102,7 +123,7 @@ def run_down_rows(
                 fault = (event.status, event.reason)
             if fault is not None:
                 _flag(rows, label, fault, event.from_rad_s)
-        _followed_rows(rows, solved, passage, hands)
+        _followed_rows(rows, solved, passage, (hands, cut))
 
 
 def passages_of(
@@ -144,17 +165,15 @@ def _flag(rows: Mapping[str, Rows], label: Labels, fault: _Fault, top_rad_s: flo
         rows[quantity].flag(label, *fault, speed_rad_s=top_rad_s)
 
 
-def _peak(table: SpeedTable, mode: StandMode) -> PassagePeak:
-    return passage_peak(table, np.array(mode.frequencies_rad_s), mode.damping_ratio)
-
-
 def _ramp_row(
     rows: Mapping[str, Rows], label: Labels, passage: Passage, way: tuple[Segment, History]
 ) -> None:
     segment, history = way
     top = segment.top_rad_s
     try:
-        peak = _peak(SpeedTable(history.speed_rad_s[None, :], history.step_s), passage.mode)
+        table = SpeedTable(history.speed_rad_s[None, :], history.step_s)
+        w = passage.frequencies_rad_s((segment.from_rad_s, segment.to_rad_s))
+        peak = passage_peak(table, w, passage.mode.damping_ratio)
     except ValueError as refusal:
         _flag(rows, label, (Status.OUTSIDE_VALIDITY, str(refusal)), top)
         return
@@ -187,7 +206,10 @@ def _hand(passage: Passage, segment: Segment, rate_rad_s2: float) -> float:
 
 
 def _followed_rows(
-    rows: Mapping[str, Rows], solved: Sequence[Case], passage: Passage, hands: Hands
+    rows: Mapping[str, Rows],
+    solved: Sequence[Case],
+    passage: Passage,
+    beside: tuple[Hands, Sequence[tuple[Cut, Event, FoundRunDown | None]]],
 ) -> None:
     """Each different run-down once, three lanes for the nominal, low and high torque."""
     cases = [
@@ -198,8 +220,10 @@ def _followed_rows(
     different = {found.order: found for _, found in cases}
     if not different:
         return
+    hands, cut = beside
     try:
-        answers = _answers(list(different.values()), passage.mode)
+        answers = _answers(list(different.values()), passage)
+        worst = worst_of_cuts(cut, passage.mode)
     except ValueError as refusal:
         fault = (Status.OUTSIDE_VALIDITY, str(refusal))
         for event, _ in cases:
@@ -208,16 +232,40 @@ def _followed_rows(
         return
     for event, found in cases:
         label = replace(event.label, mode=passage.mode.label, harmonic=ONCE)
-        amplitude, speed = answers[found.order]
+        out_of_ramp = worst.get((event.label.segment, event.label.state), Worst())
+        if out_of_ramp.status is not Status.OK:
+            _flag(rows, label, (out_of_ramp.status, out_of_ramp.reason), event.from_rad_s)
+            continue
         hand = _run_down_hand(passage, hands[found.order])
-        add_ends(rows[AMPLITUDE], label, (amplitude * passage.offset_m, hand), found)
-        add_ends(rows[PEAK_SPEED], label, (speed, math.nan), found)
+        _add_worst(rows, label, (answers[found.order], out_of_ramp, hand), (passage, found))
+
+
+def _add_worst(
+    rows: Mapping[str, Rows],
+    label: Labels,
+    answers: tuple[tuple[FloatArray, FloatArray], Worst, float],
+    what: tuple[Passage, FoundRunDown],
+) -> None:
+    """The worse of a run-down from the ramp's end and of one out of its middle."""
+    (amplitude, speed), out_of_ramp, hand = answers
+    passage, found = what
+    if out_of_ramp.nominal > amplitude[0]:
+        amplitude = np.concatenate([[out_of_ramp.nominal], amplitude])
+        speed, hand = np.concatenate([[out_of_ramp.speed_rad_s], speed]), math.nan
+    if out_of_ramp.most > 0.0:
+        amplitude = np.append(amplitude, out_of_ramp.most)
+    add_ends(rows[AMPLITUDE], label, (amplitude * passage.offset_m, hand), found)
+    add_ends(rows[PEAK_SPEED], label, (speed, math.nan), found)
 
 
 def _answers(
-    found: Sequence[FoundRunDown], mode: StandMode
+    found: Sequence[FoundRunDown], passage: Passage
 ) -> dict[Order, tuple[FloatArray, FloatArray]]:
-    """Peaks over the offset and speeds there of every run-down, nominal first."""
+    """Amplifications and speeds of their peaks of every run-down, nominal first.
+
+    Where the run-down is left the mode may still ring: the bound of that is among the former.
+    """
+    mode = passage.mode
     _, low, high = mode.frequencies_rad_s
     tops = [min(f.order.from_rad_s, (1.0 + BESIDE) * high) for f in found]
     leaves = [min((1.0 - BESIDE) * low, 0.5 * top) for top in tops]
@@ -232,13 +280,18 @@ def _answers(
     table = SpeedTable(
         speed_at(lanes_of(found[0].path, lanes), time), (end - begin) / (POINTS - 1)
     )
-    peak = _peak(table, mode)
+    frequencies = np.repeat(
+        [passage.frequencies_rad_s((f.order.from_rad_s,)) for f in found], 3, axis=0
+    )
+    peak = passage_peak(table, frequencies, mode.damping_ratio)
+    most = np.maximum(peak.amplitude, peak.held_amplitude)
+    numbers = (np.concatenate([peak.amplitude, most], axis=1), peak.speed_rad_s)
     orders = [f.order for f in found]
     amplitude, speed = (
         np.moveaxis(
             np.where(ends[:, None], value, np.nan).reshape(len(orders), 3, -1), 1, 2
         ).reshape(len(orders), -1)
-        for value in (peak.amplitude, peak.speed_rad_s)
+        for value in numbers
     )
     return dict(zip(orders, zip(amplitude, speed, strict=True), strict=True))
 

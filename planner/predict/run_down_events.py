@@ -60,7 +60,7 @@ def stops(ways: Sequence[Way], inputs: Inputs, shaft: Shaft) -> Iterator[Event]:
             yield replace(event, powered_s=segment.duration_s)
         else:
             parts = ((segment, ends), inputs["shutdown"], inputs["abort"])
-            yield _ordered(event, partial(stop_order, shaft, *parts))
+            yield ordered(event, partial(stop_order, shaft, *parts))
 
 
 def aborts(ways: Sequence[Way], inputs: Inputs, shaft: Shaft) -> Iterator[Event]:
@@ -73,10 +73,10 @@ def aborts(ways: Sequence[Way], inputs: Inputs, shaft: Shaft) -> Iterator[Event]
         for cause in ABORT_CAUSES:
             event = Event(Labels(segment=segment.id, state=cause), origin.speed_rad_s)
             parts = (inputs["abort"], origin, cause)
-            yield _ordered(event, partial(abort_order, shaft, *parts))
+            yield ordered(event, partial(abort_order, shaft, *parts))
 
 
-def _ordered(event: Event, order: Callable[[], Order]) -> Event:
+def ordered(event: Event, order: Callable[[], Order]) -> Event:
     """The event with its order, or with why there is none."""
     if event.from_rad_s <= 0.0:
         return replace(event, status=Status.NOT_APPLICABLE, reason=AT_REST)

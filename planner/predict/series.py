@@ -37,7 +37,7 @@ def series(
     """All chart series of a plan; an unpowered stop takes the time that was computed for it."""
     way = _way_to_rest(plan, segments, predictions)
     if way:
-        last = replace(segments[-1], duration_s=way[-1][0])
+        last = replace(segments[-1], duration_s=way[-1][0], course=tuple(way))
         segments = (*segments[:-1], last)
     return {
         "run": _run(segments, way),

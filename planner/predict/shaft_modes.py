@@ -10,7 +10,12 @@ import numpy as np
 from planner.methods.beam import Root, lag_matrices
 from planner.methods.shaft_chain import chain_blades, chain_modes, referred_chain
 from planner.model.results import Status
-from planner.predict.mode_correction import ModelFrequency, measured_ends, with_allowance
+from planner.predict.mode_correction import (
+    ModelFrequency,
+    measured_ends,
+    require_known,
+    with_allowance,
+)
 from planner.predict.stand_modes import mode_fault
 from planner.rotor.blade_views import beam
 
@@ -102,4 +107,6 @@ def _of_train(
         model = ModelFrequency(speed, every[:n], np.full(n, rest), there, np.full(len(own), rest))
         ends = measured_ends(model, [measured[i] for i in own], allowance)
         found.append(ShaftMode(label, ends, train.damping_ratio))
+    of_shaft = [m for m in measured if m.mode.startswith("shaft ")]
+    require_known(of_shaft, [mode.label for mode in found])
     return found

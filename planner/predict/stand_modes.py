@@ -11,7 +11,12 @@ import numpy as np
 from planner.methods.column import column_modes, with_added_mass
 from planner.model.results import Status
 from planner.model.stand import COLUMN_MODES
-from planner.predict.mode_correction import ModelFrequency, measured_ends, with_allowance
+from planner.predict.mode_correction import (
+    ModelFrequency,
+    measured_ends,
+    require_known,
+    with_allowance,
+)
 from planner.rotor.blade_views import blade_mass_kg
 
 if TYPE_CHECKING:
@@ -127,6 +132,8 @@ def _of_column(
         one, each = np.array([frequency]), np.full(len(own), frequency)
         ends = measured_ends(ModelFrequency(np.zeros(1), one, one, each, each), own, allowance)
         modes.append(StandMode(label, ends, column.damping_ratio, float(mass)))
+    of_stand = [m for m in measured if m.mode.startswith("stand ")]
+    require_known(of_stand, [mode.label for mode in modes])
     return modes
 
 

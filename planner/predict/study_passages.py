@@ -10,6 +10,8 @@ import numpy as np
 from planner.methods.hand_checks_dynamics import rate_for_peak_rad_s2
 from planner.methods.passage_rate import rate_needed_rad_s2
 from planner.model.results import Labels, Status
+from planner.model.stand import mode_labels
+from planner.predict.fixed_frame import NO_STAND_MODE
 from planner.predict.mode_tracks import shaft_harmonics, stand_harmonics
 from planner.predict.rows import Rows
 from planner.predict.stand_modes import TAKES, StandMode, stand_modes, without_mass
@@ -39,26 +41,21 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     for ramp in ramps:
         for mode, harmonics in excited:
             _ramp_rows(rows, ramp, (mode, harmonics), inputs)
-    if not ramps or not excited:
-        rows.flag(Labels(), Status.NOT_APPLICABLE, "the stand file gives no mode")
+    if not excited:
+        rows.flag(Labels(), Status.NOT_STATED, "the stand file gives no mode")
+    elif not ramps:
+        rows.flag(Labels(), Status.NOT_APPLICABLE, "the plan has no ramp")
     return {"crossing_cover": rows.prediction(), "passage_rate_needed": _rates(inputs)}
 
 
 def _excited(inputs: Inputs) -> list[tuple[str, tuple[int, ...]]]:
-    """Labels of all modes of stand and shaft with their harmonics."""
+    """Labels of all modes of stand and shaft, as the stand file has them, with their harmonics."""
     n = inputs["rotor"].n_blades
-    given = [mode.label for mode in inputs["stand.modes"]]
-    column, train = inputs["stand.column"], inputs["stand.drive_train"]
-    prior = {label.mode for label in inputs.prior["crossing_speed"].labels}
-    given += sorted(
-        mode
-        for mode in {label.mode for label in inputs.prior["mode_frequency"].labels} | prior
-        if (column is not None and mode.startswith("stand column "))
-        or (train is not None and mode.startswith("shaft train "))
-    )
+    parts = (inputs["stand.modes"], inputs["stand.column"], inputs["stand.drive_train"])
     return [
-        (mode, stand_harmonics(n) if mode.startswith("stand ") else shaft_harmonics(n))
-        for mode in given
+        (label, stand_harmonics(n) if family == "stand" else shaft_harmonics(n))
+        for family in ("stand", "shaft")
+        for label in mode_labels(family, *parts)
     ]
 
 
@@ -122,7 +119,7 @@ def _rates(inputs: Inputs) -> Prediction:
     limit = inputs["stand.ratings"].hub_amplitude_m
     modes = stand_modes(inputs)
     if not modes:
-        rows.flag(Labels(), Status.NOT_APPLICABLE, "the stand file gives no mode of the stand")
+        rows.flag(Labels(), Status.NOT_STATED, NO_STAND_MODE)
     unbalance = inputs.prior["unbalance"]
     for mode in map(without_mass, modes):
         label = Labels(mode=mode.label)
@@ -133,14 +130,23 @@ def _rates(inputs: Inputs) -> Prediction:
         elif unbalance.status[0] is not Status.OK:
             rows.flag(label, unbalance.status[0], unbalance.reasons[0])
         else:
-            _rate_row(rows, label, mode, limit * mode.modal_mass_kg / float(unbalance.value[0]))
+            _rate_row(rows, label, mode, (limit, float(unbalance.value[0])))
     return rows.prediction()
 
 
-def _rate_row(rows: Rows, label: Labels, mode: StandMode, wanted: float) -> None:
+def _rate_row(rows: Rows, label: Labels, mode: StandMode, asked: tuple[float, float]) -> None:
     """The rate for the nominal frequency and for both ends of its allowance."""
+    limit_m, unbalance_kg_m = asked
+    if unbalance_kg_m == 0.0:
+        rows.add(label, 0.0)
+        return
+    wanted = limit_m * mode.modal_mass_kg / unbalance_kg_m
     w = np.array(mode.frequencies_rad_s)
-    found = rate_needed_rad_s2(w, mode.damping_ratio, wanted)
+    try:
+        found = rate_needed_rad_s2(w, mode.damping_ratio, wanted)
+    except ValueError as refusal:
+        rows.flag(label, Status.OUTSIDE_VALIDITY, str(refusal))
+        return
     if not np.all(found.is_found):
         rows.flag(label, Status.OUTSIDE_VALIDITY, _TOO_SLOW)
         return

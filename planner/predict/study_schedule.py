@@ -137,16 +137,16 @@ def _band(rows: Mapping[str, Rows], band: KeepOut, inputs: Inputs) -> None:
             worst = _gap(*segment.ends_rad_s(error), band)
             rows["band_distance"].add(label, nominal, low=worst, speed_rad_s=segment.to_rad_s)
         elif segment.enters(band):
-            _passage(rows["band_rate"], segment, label, inputs)
+            _passage(rows["band_rate"], segment, band, inputs)
     if not any(segment.enters(band) for segment in segments if segment.kind != "hold"):
         rows["band_rate"].flag(
             Labels(band=band.id), Status.NOT_APPLICABLE, "no ramp of the card enters this band"
         )
 
 
-def _passage(rows: Rows, segment: Segment, label: Labels, inputs: Inputs) -> None:
+def _passage(rows: Rows, segment: Segment, band: KeepOut, inputs: Inputs) -> None:
     shutdown: Shutdown = inputs["shutdown"]
-    top = segment.top_rad_s
+    label, top = Labels(segment=segment.id, band=band.id), segment.top_rad_s
     if segment.kind == "stop" and not shutdown.powered:
         reason = "an unpowered passage is judged by its turns and its amplitude"
         rows.flag(label, Status.NOT_APPLICABLE, reason, speed_rad_s=top)
@@ -154,7 +154,20 @@ def _passage(rows: Rows, segment: Segment, label: Labels, inputs: Inputs) -> Non
     if not segment.duration_s > 0.0:
         rows.flag(label, *_no_time(segment), speed_rad_s=top)
         return
-    rows.add(label, rate_rad_s2(segment) / inputs["stand.full_speed_rad_s"], speed_rad_s=top)
+    rate = least_rate_rad_s2(segment, band)
+    rows.add(label, rate / inputs["stand.full_speed_rad_s"], speed_rad_s=top)
+
+
+def least_rate_rad_s2(segment: Segment, band: KeepOut) -> float:
+    """Least size of the rate of change of rotor speed inside a band that is entered [rad/s²]."""
+    rates = [
+        abs(last - first) / seconds
+        for seconds, first, last in segment.pieces
+        if seconds > 0.0
+        and min(first, last) < band.to_rad_s
+        and max(first, last) > band.from_rad_s
+    ]
+    return min(rates, default=0.0)
 
 
 def _gap(low_rad_s: float, high_rad_s: float, band: KeepOut) -> float:
@@ -164,12 +177,20 @@ def _gap(low_rad_s: float, high_rad_s: float, band: KeepOut) -> float:
 
 def seconds_inside(segment: Segment, band: KeepOut) -> float:
     """Time that one pass of a segment spends inside a band [s]."""
-    low, high = sorted((segment.from_rad_s, segment.to_rad_s))
-    if low == high:
-        inside = band.from_rad_s <= low <= band.to_rad_s
-        return segment.duration_s if inside else 0.0
-    overlap = max(0.0, min(high, band.to_rad_s) - max(low, band.from_rad_s))
-    return segment.duration_s * overlap / (high - low)
+    return sum(seconds for seconds, _ in stretches_inside(segment, band))
+
+
+def stretches_inside(segment: Segment, band: KeepOut) -> list[tuple[float, float]]:
+    """Time [s] and mean speed [rad/s] of each even stretch of a segment inside a band."""
+    found = []
+    for seconds, first, last in segment.pieces:
+        low, high = sorted((first, last))
+        inner, outer = max(low, band.from_rad_s), min(high, band.to_rad_s)
+        if low == high and inner <= outer:
+            found.append((seconds, low))
+        elif inner < outer:
+            found.append((seconds * (outer - inner) / (high - low), 0.5 * (inner + outer)))
+    return found
 
 
 SCHEDULE = Study(

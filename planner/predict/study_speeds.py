@@ -8,10 +8,11 @@ from planner.model.results import Labels, Status
 from planner.predict.band_rows import CYCLES, TOTALS, cycle_rows, total_rows
 from planner.predict.cases import air_of
 from planner.predict.drive_reserve import reserves
+from planner.predict.fixed_frame import NO_STAND_MODE
 from planner.predict.histories import own_run_up_of, ramp_history
+from planner.predict.mid_ramp import cuts
 from planner.predict.passage_amplitudes import (
     AMPLITUDE,
-    NO_MODE,
     PEAK_SPEED,
     passages_of,
     ramp_rows,
@@ -31,8 +32,10 @@ if TYPE_CHECKING:
     from planner.model.plan import Segment
     from planner.model.results import Prediction
     from planner.predict.histories import FoundRunDown, Order
+    from planner.predict.passage_amplitudes import Passage
     from planner.predict.run_down_hand import Hand
     from planner.predict.shaft import Shaft, Way
+    from planner.predict.stand_modes import StandMode
     from planner.rotor.speed_history import History
 
 _ID = "speeds"
@@ -50,16 +53,52 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     cyclics = shaft.found_cyclics(walk)
     ways = [(segment, ends_of(segment, cyclics)) for segment in walk]
     events = [*stops(ways, inputs, shaft), *aborts(ways, inputs, shaft)]
-    solved = solved_events(shaft, events, inputs.allowance("torque"))
+    modes = _modes(inputs)
+    cut = list(cuts(ways, inputs, shaft, [] if isinstance(modes, NotAssessedError) else modes))
+    every = [*events, *(one.event for one in cut)]
+    solved = solved_events(shaft, every, inputs.allowance("torque"))
+    solved, of_cuts = solved[: len(events)], solved[len(events) :]
     rows = {q: Rows(q, _ID) for q in (*TIMES, CYCLES, *TOTALS, AMPLITUDE, PEAK_SPEED)}
     hands = {found.order: hand_of(shaft, found) for _, found in solved if found is not None}
     for event, found in solved:
         _time_rows(rows, event, found, hands)
     cycle_rows(rows[CYCLES], solved, inputs["keep_outs"], hands)
     total_rows(rows, solved, (walk, inputs["keep_outs"]), inputs["abort"].reentries)
-    _passage_rows(rows, (ways, shaft), (solved, hands), inputs)
+    if isinstance(modes, NotAssessedError):
+        for quantity in (AMPLITUDE, PEAK_SPEED):
+            rows[quantity].flag(Labels(), modes.status, str(modes))
+    else:
+        passages = _passages(modes, inputs)
+        ramp_rows(rows, _powered(ways, shaft, inputs), passages)
+        joined = [(one, *case) for one, case in zip(cut, of_cuts, strict=True)]
+        run_down_rows(rows, solved, passages, hands, joined)
     found_rows = {quantity: filled.prediction() for quantity, filled in rows.items()}
     return {"drive_torque_reserve": _reserves(ways, inputs, shaft), **found_rows}
+
+
+def _modes(inputs: Inputs) -> tuple[StandMode, ...] | NotAssessedError:
+    """Modes of the stand, or why there are none: a refusal leaves the times alone."""
+    try:
+        found = stand_modes(inputs)
+    except NotAssessedError as refusal:
+        return refusal
+    except ValueError as refusal:
+        return NotAssessedError(Status.OUTSIDE_VALIDITY, str(refusal))
+    return found or NotAssessedError(Status.NOT_STATED, NO_STAND_MODE)
+
+
+def _passages(modes: Sequence[StandMode], inputs: Inputs) -> list[Passage]:
+    unbalance = inputs.prior["unbalance"]
+    known = (float(unbalance.value[0]), unbalance.status[0], unbalance.reasons[0])
+    return passages_of(modes, inputs, known)
+
+
+def _powered(
+    ways: Sequence[Way], shaft: Shaft, inputs: Inputs
+) -> list[tuple[Segment, History | NotAssessedError]]:
+    """Ramps, and the stop where it is powered, with their speed over time."""
+    driven = {"ramp", "stop"} if inputs["shutdown"].powered else {"ramp"}
+    return [(way[0], _history(way, shaft)) for way in ways if way[0].kind in driven]
 
 
 def _reserves(ways: Sequence[Way], inputs: Inputs, shaft: Shaft) -> Prediction:
@@ -91,41 +130,6 @@ def _time_rows(
             rows[quantity].add(event.label, time, speed_rad_s=top)
         else:
             rows[quantity].flag(event.label, event.status, event.reason, speed_rad_s=top)
-
-
-def _passage_rows(
-    rows: Mapping[str, Rows],
-    ramps: tuple[Sequence[Way], Shaft],
-    run_downs: tuple[Sequence[tuple[Event, FoundRunDown | None]], Mapping[Order, Hand]],
-    inputs: Inputs,
-) -> None:
-    """Sway of the stand in every passage; a refusal of its modes leaves the times alone."""
-    try:
-        modes = stand_modes(inputs)
-    except NotAssessedError as refusal:
-        _flag_all(rows, refusal.status, str(refusal))
-        return
-    except ValueError as refusal:
-        _flag_all(rows, Status.OUTSIDE_VALIDITY, str(refusal))
-        return
-    if not modes:
-        _flag_all(rows, Status.NOT_APPLICABLE, NO_MODE)
-        return
-    unbalance = inputs.prior["unbalance"]
-    known = (float(unbalance.value[0]), unbalance.status[0], unbalance.reasons[0])
-    passages = passages_of(modes, inputs, known)
-    ways, shaft = ramps
-    coasts = not inputs["shutdown"].powered
-    driven = {"ramp"} if coasts else {"ramp", "stop"}
-    powered = [(way[0], _history(way, shaft)) for way in ways if way[0].kind in driven]
-    ramp_rows(rows, powered, passages)
-    solved, hands = run_downs
-    run_down_rows(rows, solved, passages, hands)
-
-
-def _flag_all(rows: Mapping[str, Rows], status: Status, reason: str) -> None:
-    for quantity in (AMPLITUDE, PEAK_SPEED):
-        rows[quantity].flag(Labels(), status, reason)
 
 
 def _history(way: Way, shaft: Shaft) -> History | NotAssessedError:

@@ -115,7 +115,7 @@ def test_start_writes_a_folder_that_runs_as_it_is(tmp_path):
             "plan.toml",
             'rpm = "25 % rpm"',
             "rpm = 90",
-            "plan.toml:152:7: block.step.rpm: expected",
+            "plan.toml:153:7: block.step.rpm: expected",
         ),
         ("plan.toml", "temperature = ", "temprature = ", "did you mean"),
         ("rotor.toml", 'radius = "5.6 m"', 'radius = "5.6 kg"', "rotor.toml:5:"),

@@ -64,6 +64,8 @@ SAFE = {
     "root_flap_moment": 500.0,
     "harmonic_spacing": 0.3,
     "mode_damping": 0.02,
+    "mode_frequency": 70.0,
+    "fixed_frame_spacing": 0.3,
     "crossing_cover": 0.4,
     "band_rate": 0.04,
     "band_distance": 3.0,
@@ -98,13 +100,15 @@ SAFE = {
     "drive_torque_reserve": 1_500.0,
     "time_to_rest": 90.0,
     "band_cycles": 12.0,
-    "band_amplification": 6.0,
+    "passage_amplitude": 0.002,
 }
 """SI numbers that keep every rule of the example book; other quantities read 1."""
 
 BLADE_MODES = ("flap 1", "flap 2", "flap 3", "lag 1", "lag 2", "torsion 1")
 HARMONICS = {"stand sway": ("1", "4", "8"), "shaft twist": ("4", "8")}
 """Harmonics of the given modes with four blades; blade modes have the first two only."""
+AGAINST = ("stand sway, Ω - ω", "stand sway, Ω + ω")
+"""What low flap and lag modes are held against as the stand sees them."""
 
 
 @cache
@@ -169,7 +173,7 @@ def stand() -> Stand:
         modes=(mode("sway", "stand", 70.0), mode("twist", "shaft", 300.0)),
         drive=Drive("motor", 5.0, 4_000.0, 150_000.0, 45.0, 90.0, 38.5),
         brake_below_rad_s=16.0,
-        ratings=Ratings(20_000.0, 3_000.0),
+        ratings=Ratings(20_000.0, 3_000.0, hub_amplitude_m=0.005),
         obstructions=(),
         positions=(),
     )
@@ -275,7 +279,6 @@ def _places(quantity: Quantity, walk: tuple[Segment, ...]) -> list[tuple[Segment
     kinds = {
         "blade_clearance": ("hold", "ramp", "stop"),
         "band_cycles": (),
-        "band_amplification": (),
     }
     of_time = ("stop",) if quantity.id.startswith("time_to") else ("ramp", "stop")
     here = [(s, "") for s in walk if s.kind in kinds.get(quantity.id, of_time)]
@@ -286,25 +289,33 @@ def _labels_of_run(quantity: Quantity, run: Plan) -> list[Labels]:
     if "band" in quantity.axes:
         return [Labels(band=band.id) for band in run.keep_outs]
     if "mode" in quantity.axes:
-        return [
-            Labels(mode=m, harmonic=n) for m, harmonics in HARMONICS.items() for n in harmonics
-        ]
+        modes = ("stand sway",) if quantity.id in OF_STAND else HARMONICS
+        return [Labels(mode=m, harmonic=n) for m in modes for n in _harmonics(quantity, m)]
     return [Labels()]
 
 
 def _harmonics(quantity: Quantity, mode: str) -> tuple[str, ...]:
-    return HARMONICS.get(mode, ("1", "2")) if "harmonic" in quantity.axes else ("",)
+    if "harmonic" not in quantity.axes:
+        return ("",)
+    if quantity.id == "fixed_frame_spacing":
+        return AGAINST
+    return ("1",) if quantity.id in OF_STAND else HARMONICS.get(mode, ("1", "2"))
+
+
+OF_STAND = ("passage_amplitude", "passage_peak_speed", "passage_rate_needed")
+OF_BLADES = {"mode_share": BLADE_MODES, "fixed_frame_spacing": BLADE_MODES[:2] + BLADE_MODES[3:5]}
 
 
 def _modes(quantity: Quantity, segment: Segment) -> tuple[str, ...]:
     """Modes that have numbers: passages in ramps for given modes only, the rest in holds."""
     if "mode" not in quantity.axes:
         return ("",)
-    if quantity.id == "band_amplification":
+    if quantity.id in OF_STAND:
         return ("stand sway",)
     if quantity.id == "crossing_cover":
         return () if segment.kind == "hold" else tuple(HARMONICS)
-    return (*BLADE_MODES, *HARMONICS) if segment.kind == "hold" else ()
+    every = OF_BLADES.get(quantity.id, (*BLADE_MODES, *HARMONICS))
+    return every if segment.kind == "hold" else ()
 
 
 OF_STOPS = ("droop_stop", "up_stop", "lift_off", "contact", "lag_peak", "lag_stop")
@@ -333,8 +344,11 @@ def predictions(run: Plan) -> dict[str, Prediction]:
             (labels, value, Status.OK, tops.get(labels.segment, math.nan))
             for labels in _labels(quantity, run, walk)
         ]
-        if quantity.id in {"band_cycles", "band_amplification"}:
-            rows.append((Labels("stop"), math.nan, Status.NOT_APPLICABLE, math.nan))
+        if quantity.id == "band_cycles":
+            rows += [
+                (Labels("stop", band=band.id), math.nan, Status.NOT_APPLICABLE, math.nan)
+                for band in run.keep_outs
+            ]
         found[quantity.id] = table(quantity.id, rows)
     return found
 

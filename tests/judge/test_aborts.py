@@ -79,10 +79,14 @@ def test_abort_counts_for_the_segment_where_it_begins(bench, segment, state, whe
 
 
 def test_band_and_mode_of_an_abort_are_named(bench):
-    rows = bench.rows("band_amplification", segment="1.2h", state=FROZEN)
-    bench.put("band_amplification", rows, high=99.0)
-    where = f"abort from 1.2h, {FROZEN}, stand sway, band lag"
-    assert bench.finding("keep-out-amplification").where == where
+    rows = bench.rows("passage_amplitude", segment="1.2h", state=FROZEN)
+    bench.put("passage_amplitude", rows, high=99.0)
+    where = f"abort from 1.2h, {FROZEN}, stand sway, 1 per rev"
+    assert bench.finding("passage-sway").where == where
+    rows = bench.rows("band_cycles", segment="1.2h", state=FROZEN)
+    bench.put("band_cycles", rows, high=99.0)
+    where = f"abort from 1.2h, {FROZEN}, band lag"
+    assert bench.finding("keep-out-cycles").where == where
 
 
 def test_hand_check_of_an_abort_names_it(bench):
@@ -316,24 +320,22 @@ def unpowered(bench) -> None:
     bench.change(shutdown=replace(bench.plan.shutdown, powered=False))
     rows = bench.rows("band_rate", segment="stop")
     bench.flag("band_rate", rows, Status.NOT_APPLICABLE, "an unpowered stop has no rate")
-    for quantity, mode in (("band_cycles", ""), ("band_amplification", "stand sway")):
-        at = bench.rows(quantity, segment="stop")
-        relabel(bench, quantity, at[0], Labels("stop", mode, band="lag"))
-        bench.flag(quantity, at, Status.OK)
-        bench.put(quantity, at, value=5.0, low=5.0, high=5.0)
+    at = bench.rows("band_cycles", segment="stop")
+    bench.flag("band_cycles", at, Status.OK)
+    bench.put("band_cycles", at, value=5.0, low=5.0, high=5.0)
 
 
 def test_25_unpowered_stop_is_judged_by_cycles_and_amplitude(bench):
     unpowered(bench)
     assert run_verdict(bench) is GO
     closed = bench.covered("resonance", "stop").closed_by
-    assert closed == "keep-out-cycles, keep-out-amplification, keep-out-cover"
+    assert closed == "keep-out-cycles, passage-sway, keep-out-cover"
     bench.put("band_cycles", bench.rows("band_cycles", segment="stop"), high=51.0)
     finding = bench.finding("keep-out-cycles")
     assert (finding.verdict, finding.where) == (NO_GO, "stop, band lag")
 
 
-@pytest.mark.parametrize("quantity", ["band_cycles", "band_amplification"])
+@pytest.mark.parametrize("quantity", ["band_cycles", "passage_amplitude"])
 def test_25_rate_of_an_unpowered_stop_stands_in_for_nothing(bench, quantity):
     unpowered(bench)
     rows = bench.rows("band_rate", segment="stop")
@@ -345,14 +347,23 @@ def test_25_rate_of_an_unpowered_stop_stands_in_for_nothing(bench, quantity):
     assert run_verdict(bench) is OPEN
 
 
-def test_25_each_stand_mode_is_asked_for_in_each_abort_through_a_band(bench):
-    rows = bench.rows("band_amplification", segment="1.2r", state=BRAKE_LOST)
-    bench.drop("band_amplification", rows)
-    finding = bench.finding("keep-out-amplification")
+@pytest.mark.parametrize(
+    ("segment", "state", "place"),
+    [
+        ("1.1r", "", "1.1r"),
+        ("stop", "", "stop"),
+        ("1.2r", BRAKE_LOST, f"the abort from 1.2r, {BRAKE_LOST}"),
+        ("1.1h", FROZEN, f"the abort from 1.1h, {FROZEN}"),
+    ],
+)
+def test_25_each_stand_mode_is_asked_for_in_each_passage(bench, segment, state, place):
+    rows = bench.rows("passage_amplitude", segment=segment, state=state)
+    bench.drop("passage_amplitude", rows)
+    finding = bench.finding("passage-sway")
     assert finding.verdict is OPEN
-    place = f"the abort from 1.2r, {BRAKE_LOST}"
-    wanted = f"nothing was predicted for stand sway, band lag at {place}"
-    assert finding.reason.startswith(wanted)
+    assert finding.reason.startswith(f"nothing was predicted for stand sway at {place}")
+    part = "abort" if state else ("stop" if segment == "stop" else "ramp")
+    assert bench.covered("aborts" if state else "resonance", part).verdict is OPEN
 
 
 def test_25_abort_from_below_a_band_is_asked_for_no_passage(bench):
@@ -362,18 +373,18 @@ def test_25_abort_from_below_a_band_is_asked_for_no_passage(bench):
 
 
 def test_25_damping_exempts_no_passage_of_an_abort(bench):
-    rows = bench.rows("band_amplification", segment="1.2h", state=FROZEN)
-    bench.put("band_amplification", rows, high=99.0)
+    rows = bench.rows("passage_amplitude", segment="1.2h", state=FROZEN)
+    bench.put("passage_amplitude", rows, high=99.0)
     damping = bench.rows("mode_damping", segment="1.2h", mode="stand sway")
     bench.put("mode_damping", damping, value=0.5, low=0.5, high=0.5)
-    bench.change_rule("keep-out-amplification", exempt_damping=0.1)
-    assert bench.finding("keep-out-amplification").verdict is NO_GO
+    bench.change_rule("passage-sway", exempt_damping=0.1)
+    assert bench.finding("passage-sway").verdict is NO_GO
 
 
 @pytest.mark.parametrize("fitted", [None, False])
 def test_12_stand_mode_without_the_rotors_mass_is_not_assessed_in_a_passage(bench, fitted):
     modes = tuple(replace(m, rotor_fitted=fitted) for m in bench.plan.stand.modes)
     bench.change(stand=replace(bench.plan.stand, modes=modes))
-    finding = bench.finding("keep-out-amplification")
+    finding = bench.finding("passage-sway")
     assert finding.verdict is OPEN
     assert "not stated to be found with the rotor's mass fitted" in finding.reason

@@ -27,6 +27,7 @@ REFERENCE_NUMBERS = {
     "stand_thrust_rating": 20_000.0,
     "root_force_rating": 100_000.0,
     "stand_hub_moment_rating": 3_000.0,
+    "stand_hub_amplitude_rating": 0.005,
     "lowest_design_or_proven_speed": 40.0,
     "drive_maximum_speed": 45.0,
     "drive_torque_rating": 4_000.0,

@@ -31,6 +31,7 @@ def test_ids_are_those_of_the_register():
         ("drive_power_rating", 150_000.0),
         ("stand_thrust_rating", 20_000.0),
         ("stand_hub_moment_rating", 3_000.0),
+        ("stand_hub_amplitude_rating", 0.005),
         ("root_force_rating", 100_000.0),
         ("droop_stop_moment_rating", 600.0),
         ("up_stop_moment_rating", 900.0),

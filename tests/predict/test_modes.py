@@ -46,12 +46,14 @@ def test_window_that_reaches_rest_is_still_held_against_harmonics(articulated, r
         articulated.blocks[0].steps[1], speed_rad_s=140.0 * RPM, window=Window(200.0 * RPM, 0.0)
     )
     block = dataclasses.replace(articulated.blocks[0], steps=(step,))
-    found = run_predict(dataclasses.replace(articulated, blocks=(block,)), "modes")[
-        "harmonic_spacing"
-    ]
+    predictions = run_predict(dataclasses.replace(articulated, blocks=(block,)), "modes")
+    found, damping = predictions["harmonic_spacing"], predictions["mode_damping"]
     i = row(found, segment="1.1h", mode="stand lateral", harmonic="1")
     assert found.status[i] is Status.OK
     assert found.low[i] == 0.0
+    # at rest a hinged blade's lag frequency is zero, and its damping ratio without an end
+    i = row(damping, segment="1.1h", mode="lag 1")
+    assert damping.status[i] is Status.NOT_COMPUTED
 
 
 def test_lag_frequency_of_a_hinged_blade_is_far_below_once_per_revolution(predicted):

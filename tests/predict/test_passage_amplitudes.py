@@ -17,7 +17,7 @@ RPM = 2.0 * math.pi / 60.0
 NAMED = ("stand lateral", "stand fore-aft")
 
 
-def test_ramp_through_the_lateral_mode_equals_its_own_equation_integrated(articulated, predicted):
+def test_ramp_through_the_lateral_mode_equals_its_own_equation_integrated(predicted):
     """x'' + 2 ζ w x' + w² x = U/M (Ω² cos ψ + Ω' sin ψ) along the ramp of 12 rpm/s."""
     found = predicted("articulated-run-up")
     unbalance = float(found["unbalance"].value[0])
@@ -67,7 +67,7 @@ def test_run_up_peaks_above_the_resonance_and_run_down_below(predicted):
         assert peak.value[row(peak, segment="stop", mode=mode)] < w
 
 
-def test_every_ramp_stop_and_abort_has_its_row_for_each_mode(articulated, predicted):
+def test_every_ramp_stop_and_abort_has_its_row_for_each_mode(predicted):
     sway = predicted("articulated-run-up")["passage_amplitude"]
     for mode in NAMED:
         own = rows(sway, mode=mode)
@@ -115,7 +115,7 @@ def test_what_is_not_stated_leaves_every_passage_not_stated(
     assert Status.OK in found["time_to_rest"].status
 
 
-def test_rate_needed_keeps_the_hub_below_its_rating(articulated, predicted):
+def test_rate_needed_keeps_the_hub_below_its_rating(predicted):
     """A ramp at the needed rate, predicted anew, sways as far as the stand bears and no more."""
     needed = predicted("articulated-run-up")["passage_rate_needed"]
     i = row(needed, mode="stand lateral")

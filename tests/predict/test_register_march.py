@@ -8,6 +8,8 @@ import numpy as np
 import pytest
 
 from planner.methods.stop_contact import stop_moment_n_m
+from planner.predict.band_rows import TOTALS
+from planner.predict.passage_amplitudes import AMPLITUDE, PEAK_SPEED
 from planner.predict.register import REGISTER
 from planner.predict.register_march import COURSE, MARCHED
 from planner.predict.register_speeds import SPEEDS
@@ -15,12 +17,13 @@ from planner.predict.register_speeds import SPEEDS
 
 def test_marched_numbers_are_of_segments_and_aborts_only():
     for quantity in (*MARCHED, *SPEEDS):
-        states = quantity.id != "drive_torque_reserve"
+        whole_card = quantity.id in TOTALS
+        states = quantity.id != "drive_torque_reserve" and not whole_card
         assert ("state" in quantity.axes) is states
-        assert quantity.axes[0] == "segment"
+        assert quantity.axes[0] == ("band" if whole_card else "segment")
         assert quantity.allowance == ("air_load" if quantity in MARCHED else "torque")
     known = {q.id for q in REGISTER.values() if q.study in {"marches", "speeds"}}
-    assert known == {q.id for q in (*MARCHED, COURSE, *SPEEDS)}
+    assert known == {AMPLITUDE, PEAK_SPEED} | {q.id for q in (*MARCHED, COURSE, *SPEEDS)}
     assert COURSE.axes == ("segment", "mode")  # a picture of starts and the stop, no abort's
 
 

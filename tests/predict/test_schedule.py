@@ -86,8 +86,8 @@ def test_unpowered_passage_is_not_judged_by_rate(predicted):
 
 
 def test_without_bands_band_rules_do_not_apply(articulated, run_predict):
-    found = run_predict(dataclasses.replace(articulated, keep_outs=()), "schedule")
-    for quantity in ("band_distance", "band_rate", "band_time"):
+    found = run_predict(dataclasses.replace(articulated, keep_outs=()), "schedule", "speeds")
+    for quantity in ("band_distance", "band_rate", "band_time_total"):
         assert found[quantity].status == (Status.NOT_APPLICABLE,)
 
 

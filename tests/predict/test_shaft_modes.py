@@ -14,7 +14,7 @@ from tests.predict.rows import row, rows
 TRAIN = ("shaft train 1", "shaft train 2", "shaft train 3")
 
 
-def test_every_mode_of_the_train_stands_at_every_hold_against_the_blades(sample, predicted):
+def test_every_mode_of_the_train_stands_at_every_hold_against_the_blades(predicted):
     found = predicted("hingeless-model")
     for mode in TRAIN:
         labels = [found["harmonic_spacing"].labels[i] for i in rows(

@@ -22,7 +22,7 @@ def with_mode(plan, **values):
     return dataclasses.replace(plan, stand=dataclasses.replace(plan.stand, modes=modes))
 
 
-def test_mode_found_without_the_rotor_is_corrected_by_the_missing_mass(sample, predicted):
+def test_mode_found_without_the_rotor_is_corrected_by_the_missing_mass(predicted):
     """By hand: 6.4 Hz with 58 kg moving, 3.2 kg missing."""
     found = predicted("hingeless-model")["mode_frequency"]
     i = row(found, segment="1.1h", mode="stand fore-aft")

@@ -14,6 +14,7 @@ from planner.judge.requests import requests
 from planner.methods import hand_checks_run_down as hand
 from planner.model.plan import ABORT_CAUSES, Cyclic, KeepOut, segments
 from planner.model.results import Status
+from planner.predict.band_rows import TOTALS
 from planner.predict.histories import (
     Origin,
     abort_order,
@@ -22,12 +23,14 @@ from planner.predict.histories import (
     run_downs,
     timed,
 )
+from planner.predict.passage_amplitudes import AMPLITUDE, PEAK_SPEED
 from planner.predict.register import REFERENCES, REGISTER
 from planner.predict.run_down_events import aborts, solved_events, stops
 from planner.predict.shaft import ends_of, shaft_of
 from planner.predict.study import Inputs, NotAssessedError
 from planner.predict.study_air import AIR, WIND
 from planner.predict.study_speeds import SPEEDS, TIMES
+from planner.predict.study_unbalance import UNBALANCE
 from planner.rotor.speed_history import Controls
 from tests.conftest import SAMPLES
 
@@ -74,10 +77,12 @@ def plan():
 
 def inputs_of(plan, walk=None):
     walk, wanted = walk or segments(plan), requests(plan.rule_book)
-    paths = {*AIR.takes, *WIND.takes, *SPEEDS.takes} - {"segments"}
+    before = (AIR, WIND, UNBALANCE)
+    paths = {path for study in (*before, SPEEDS) for path in study.takes} - {"segments"}
     values = {path: attrgetter(path)(plan) for path in paths} | {"segments": walk}
     bare = Inputs(values, wanted, {})
-    return Inputs(values, wanted, {**AIR.run(bare), **WIND.run(bare)})
+    prior = {quantity: p for study in before for quantity, p in study.run(bare).items()}
+    return Inputs(values, wanted, prior)
 
 
 def found_in(plan, walk=None):
@@ -104,9 +109,16 @@ def test_every_place_has_its_row(plan, found):
     for quantity in TIMES:
         assert {(x.segment, x.state) for x in found[quantity].labels} == places
         assert set(found[quantity].status) == {Status.OK}
-    for quantity in ("band_cycles", "band_amplification"):
-        assert {(x.segment, x.state) for x in found[quantity].labels} == places
+    assert {(x.segment, x.state) for x in found["band_cycles"].labels} == places
+    assert set(found["band_cycles"].status) == {Status.OK}
+    for quantity in (AMPLITUDE, PEAK_SPEED):
+        for mode in ("stand lateral", "stand fore-aft"):
+            here = [found[quantity].labels[i] for i in rows(found[quantity], mode=mode)]
+            assert {(x.segment, x.state) for x in here} == places | {("1.1r", "")}
         assert set(found[quantity].status) == {Status.OK}
+    for quantity in TOTALS:
+        assert [x.band for x in found[quantity].labels] == ["S1"]
+        assert found[quantity].status == (Status.OK,)
     assert {x.segment for x in found["drive_torque_reserve"].labels} == {"1.1r", "stop"}
     for prediction in found.values():
         known = np.isfinite(prediction.hand)
@@ -205,15 +217,29 @@ def test_band_above_the_first_speed_is_not_passed(plan):
     found = found_in(
         dataclasses.replace(plan, keep_outs=(KeepOut("S9", 190.0 * RPM, 200.0 * RPM, "x"),))
     )
-    for quantity in ("band_cycles", "band_amplification"):
+    assert set(found["band_cycles"].status) == {Status.NOT_APPLICABLE}
+    assert set(found["band_cycles"].reasons) == {"the run-down begins below this band"}
+    for quantity in TOTALS:
+        assert found[quantity].status == (Status.OK,)
+        assert found[quantity].high.tolist() == [0.0]
+
+
+def test_mode_above_the_first_speed_is_not_passed(plan):
+    modes = tuple(
+        dataclasses.replace(m, frequency_rad_s=200.0 * RPM) for m in plan.stand.modes[:1]
+    )
+    found = found_in(change(plan, "stand", modes=modes))
+    for quantity in (AMPLITUDE, PEAK_SPEED):
         assert set(found[quantity].status) == {Status.NOT_APPLICABLE}
-        assert set(found[quantity].reasons) == {"the run-down begins below this band"}
+        assert set(found[quantity].reasons) == {"this resonance is not passed"}
 
 
 def test_mode_that_no_passage_can_be_computed_for_says_why(plan):
     modes = tuple(dataclasses.replace(m, damping_ratio=0.0) for m in plan.stand.modes)
     found = found_in(change(plan, "stand", modes=modes))
-    assert set(found["band_amplification"].status) == {Status.OUTSIDE_VALIDITY}
+    for quantity in (AMPLITUDE, PEAK_SPEED):
+        assert set(found[quantity].status) == {Status.OUTSIDE_VALIDITY}
+        assert all("damping" in reason for reason in found[quantity].reasons)
     assert set(found["band_cycles"].status) == {Status.OK}
 
 

@@ -32,10 +32,31 @@ def test_layout_1_is_brought_forward_with_rows_of_no_abort():
     for quantity, found in record["predictions"].items():
         was = old["predictions"][quantity]["rows"]
         assert found["rows"] == [{**row, "state": ""} for row in was]
-    assert {k: v for k, v in record.items() if old.get(k) != v}.keys() == {
-        "layout", "predictions", "content_digest",
-    }  # fmt: skip
+    assert changed(old, record) == {"layout", "predictions", "series", "content_digest"}
     assert from_bytes(to_bytes(record), "x.json") == record
+
+
+@pytest.mark.parametrize("layout", [1, 2])
+def test_older_fan_charts_are_brought_forward_without_what_was_not_computed(layout):
+    data = (HERE / f"golden_layout_{layout}.json").read_bytes()
+    old, record = json.loads(data), from_bytes(data, "x.json")
+    if layout > 1:
+        assert changed(old, record) == {"layout", "series", "content_digest"}
+    assert changed(old["series"], record["series"]) == {"fan"}
+    before, fan = old["series"]["fan"], record["series"]["fan"]
+    assert fan["speed_rad_s"] == before["speed_rad_s"]
+    assert fan["harmonics"] == {"blade": before["harmonics"], "stand": [], "shaft": []}
+    assert (fan["collective_rad"], fan["shifted"], fan["time_at_speed"]) == (None, [], None)
+    for mode, was in zip(fan["modes"], before["modes"], strict=True):
+        given = mode["family"] in {"stand", "shaft"}
+        told = {"panel": mode["family"] if given else "blade", "doubt": ""}
+        assert mode == {**told, **was}
+    assert from_bytes(to_bytes(record), "x.json") == record
+
+
+def changed(old, new):
+    """Keys whose values are not the same in both."""
+    return {key for key in {*old, *new} if key not in old or old[key] != new.get(key)}
 
 
 def test_layout_1_that_was_edited_is_noticed():

@@ -64,10 +64,11 @@ def test_numbers_that_are_not_finite_become_null():
         (b"{", r"x.json: expected a whirlcard record in JSON, found"),
         (b"[" * 100_000, r"x.json: expected a whirlcard record in JSON, found"),
         (b"[1]", r"x.json: expected a whirlcard record, found JSON without a layout number"),
-        (b'{"layout": 99}', r"x.json: expected record layout 2, found 99"),
-        (b'{"layout": [1]}', r"x.json: expected record layout 2, found \[1\]"),
+        (b'{"layout": 99}', r"x.json: expected record layout 3, found 99"),
+        (b'{"layout": [1]}', r"x.json: expected record layout 3, found \[1\]"),
         (b'{"layout": 1}', r"x.json: expected a whole record, found none of: made_by, files"),
         (b'{"layout": 2}', r"x.json: expected a whole record, found none of: made_by, files"),
+        (b'{"layout": 3}', r"x.json: expected a whole record, found none of: made_by, files"),
     ],
 )
 def test_other_files_are_refused(data, message):

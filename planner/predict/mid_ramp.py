@@ -1,0 +1,165 @@
+"""Aborts out of the middle of a ramp, near a resonance: up to it, and back through it.
+
+Power that fails a little above a resonance turns the speed around inside it: the mode, swinging
+already, is passed once more. So each powered ramp that passes a mode of the stand is cut at some
+speeds about it, and the ramp and the run-down after it are marched as one.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from functools import partial
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from planner.methods.passage import SpeedTable, passage_peak
+from planner.methods.run_down import lanes_of, speed_at
+from planner.model.plan import ABORT_CAUSES
+from planner.model.results import Labels, Status
+from planner.predict.histories import Origin, abort_order
+from planner.predict.run_down_events import Event, ordered
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator, Mapping, Sequence
+
+    from numpy.typing import NDArray
+
+    from planner.model.plan import Segment
+    from planner.predict.histories import FoundRunDown
+    from planner.predict.shaft import Shaft, Way
+    from planner.predict.stand_modes import StandMode
+    from planner.predict.study import Inputs
+
+    FloatArray = NDArray[np.float64]
+
+CUTS = (0.97, 1.02, 1.07, 1.12, 1.17)
+"""Of a mode's frequency: where power fails. Half of these steps change the greatest sway of the
+sample plans by less than 1 %."""
+BESIDE = 0.4
+"""Of a mode's frequency: how far beyond it ramp and run-down are followed."""
+POINTS = 2048
+_STAYS = "a run-down out of the ramp may stay near this resonance"
+
+
+@dataclass(frozen=True)
+class Cut:
+    """Power fails in a ramp at one speed, for one cause."""
+
+    segment: Segment
+    mode: str
+    event: Event
+
+
+@dataclass(frozen=True)
+class Worst:
+    """Greatest amplification of all cuts of a ramp for one cause."""
+
+    nominal: float = 0.0
+    speed_rad_s: float = 0.0
+    """Where the nominal one peaks."""
+    most: float = 0.0
+    """Over both ends of the frequency and torque allowances, and of what still rings."""
+    status: Status = Status.OK
+    reason: str = ""
+
+
+def cuts(
+    ways: Sequence[Way], inputs: Inputs, shaft: Shaft, modes: Sequence[StandMode]
+) -> Iterator[Cut]:
+    """Every ramp that has a time, cut about each mode that can be judged, for every cause."""
+    for segment, (start, end) in ways:
+        if segment.kind != "ramp" or not segment.duration_s > 0.0:
+            continue
+        rise = segment.to_rad_s - segment.from_rad_s
+        for mode in modes:
+            for speed in _speeds(segment, mode):
+                controls = start.towards(end, (speed - segment.from_rad_s) / rise)
+                origin = Origin(speed, controls)
+                for cause in ABORT_CAUSES:
+                    event = Event(Labels(segment=segment.id, state=cause), speed)
+                    parts = (inputs["abort"], origin, cause)
+                    found = ordered(event, partial(abort_order, shaft, *parts))
+                    yield Cut(segment, mode.label, found)
+
+
+def _speeds(segment: Segment, mode: StandMode) -> list[float]:
+    """Speeds inside a ramp at which it is cut about a mode."""
+    if mode.status is not Status.OK:
+        return []
+    low, high = sorted((segment.from_rad_s, segment.to_rad_s))
+    wanted = (share * mode.frequencies_rad_s[0] for share in CUTS)
+    return [speed for speed in wanted if low < speed < high]
+
+
+def worst_of_cuts(
+    solved: Sequence[tuple[Cut, Event, FoundRunDown | None]], mode: StandMode
+) -> Mapping[tuple[str, str], Worst]:
+    """Greatest amplification of one mode by ramp and cause."""
+    own = [case for case in solved if case[0].mode == mode.label]
+    found: dict[tuple[str, str], Worst] = {}
+    marched = [(cut, event, down) for cut, event, down in own if down is not None]
+    for cut, event, down in own:
+        place = (cut.segment.id, event.label.state)
+        if down is None and event.status is not Status.NOT_APPLICABLE:
+            found[place] = Worst(status=event.status, reason=event.reason)
+    if marched:
+        for (cut, event, _), one in zip(marched, _marched(marched, mode), strict=True):
+            place = (cut.segment.id, event.label.state)
+            found[place] = _worse(found.get(place, Worst()), one)
+    return found
+
+
+def _worse(before: Worst, one: Worst) -> Worst:
+    for either in (before, one):
+        if either.status is not Status.OK:
+            return either
+    top = one if one.nominal > before.nominal else before
+    return replace(top, most=max(before.most, one.most))
+
+
+def _marched(cases: Sequence[tuple[Cut, Event, FoundRunDown]], mode: StandMode) -> Iterator[Worst]:
+    """Each cut by itself; three lanes a cut for the nominal, low and high torque."""
+    w = np.array(mode.frequencies_rad_s)
+    lowest, highest = (1.0 - BESIDE) * w.min(), (1.0 + BESIDE) * w.max()
+    ramps = [_approach(cut, event.from_rad_s, (lowest, highest)) for cut, event, _ in cases]
+    leaves = [min(lowest, 0.5 * event.from_rad_s) for _, event, _ in cases]
+    ends = np.concatenate(
+        [down.reached(v)[0] for (_, _, down), v in zip(cases, leaves, strict=True)]
+    )
+    known = np.isfinite(ends)
+    before = np.repeat([times[-1] for times, _ in ramps], 3)
+    lasts = before + np.where(known, ends, 1.0)
+    time = lasts[:, None] * np.linspace(0.0, 1.0, POINTS)
+    lanes = np.concatenate([down.lane + np.arange(3) for _, _, down in cases])
+    after = np.maximum(time - before[:, None], 0.0)
+    speed = speed_at(lanes_of(cases[0][2].path, lanes), after)
+    for i, (times, speeds) in enumerate(ramps):
+        rows = slice(3 * i, 3 * i + 3)
+        going = time[rows] < times[-1]
+        speed[rows] = np.where(going, np.interp(time[rows], times, speeds), speed[rows])
+    peak = passage_peak(SpeedTable(speed, lasts / (POINTS - 1)), w, mode.damping_ratio)
+    most = np.maximum(peak.amplitude, peak.held_amplitude)
+    for i in range(len(cases)):
+        rows = slice(3 * i, 3 * i + 3)
+        if np.all(known[rows]):
+            nominal, at = peak.amplitude[3 * i, 0], peak.speed_rad_s[3 * i, 0]
+            yield Worst(float(nominal), float(at), float(most[rows].max()))
+        else:
+            yield Worst(status=Status.OUTSIDE_VALIDITY, reason=_STAYS)
+
+
+def _approach(
+    cut: Cut, at_rad_s: float, followed: tuple[float, float]
+) -> tuple[FloatArray, FloatArray]:
+    """Time and speed of the ramp from where it comes near the mode to where it is cut."""
+    seconds, first, last = np.array(cut.segment.pieces).T
+    times = np.concatenate([[0.0], np.cumsum(seconds)])
+    speeds = np.concatenate([first, last[-1:]])
+    rises = cut.segment.to_rad_s > cut.segment.from_rad_s
+    order = 1.0 if rises else -1.0
+    begin = max(first[0], followed[0]) if rises else min(first[0], followed[1])
+    wanted = np.interp(order * np.array([begin, at_rad_s]), order * speeds, times)
+    inner = times[(times > wanted[0]) & (times < wanted[1])]
+    moments = np.concatenate([wanted[:1], inner, wanted[1:]])
+    return moments - moments[0], np.interp(moments, times, speeds)
