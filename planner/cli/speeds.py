@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING
 from planner.cli.screen import fail
 from planner.cli.sources import stop_on_fault
 from planner.cli.summary import NARROW, WIDE
-from planner.explore.speed_advice import FINE, REACH, advise
+from planner.explore.speed_advice import FINE, REACH, TOLD_DECIMALS, advise
 from planner.files.read import read_plan
 from planner.model.results import Verdict
 from planner.paper.texts import unprintable
@@ -58,12 +58,12 @@ def told(advice: Sequence[Advice]) -> str:
     if not advice:
         return _ALL_WELL
     lines = [*textwrap.wrap(_FOREWORD, width), ""]
-    heads = f"{'nearest below':<20}{'nearest above':<20}"
-    lines.append(f"  {'hold':<8}{'speed':<14}{heads}verdict")
+    heads = f"{'nearest below':<22}{'nearest above':<22}"
+    lines.append(f"  {'hold':<8}{'speed':<12}{heads}verdict")
     for one in advice:
         below, above = (_words(better) for better in (one.below, one.above))
         speed = _rpm(one.speed_rad_s)
-        lines.append(f"  {one.segment:<8}{speed:<14}{below:<20}{above:<20}{one.verdict.value}")
+        lines.append(f"  {one.segment:<8}{speed:<12}{below:<22}{above:<22}{one.verdict.value}")
         words = f"not satisfied: {', '.join(one.reasons)}"
         lines += textwrap.wrap(words, width, initial_indent=_IN, subsequent_indent=_IN)
     return "\n".join(lines)
@@ -104,4 +104,4 @@ def _words(better: Better | None) -> str:
 
 
 def _rpm(speed_rad_s: float) -> str:
-    return f"{from_si(speed_rad_s, 'rpm'):.1f} rpm"
+    return f"{from_si(speed_rad_s, 'rpm'):.{TOLD_DECIMALS}f} rpm"

@@ -19,6 +19,7 @@ from planner.model.rules import SpeedRange
 from planner.predict.histories import timed
 from planner.predict.register import REGISTER
 from planner.predict.run import predict_only
+from planner.units import from_si, to_si
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
@@ -40,6 +41,8 @@ REACH = 0.3
 COARSE, FINE = 0.005, 0.001
 """Of full speed: steps of the search, and of what is told. A gap narrower than the first may be
 missed."""
+TOLD_DECIMALS = 1
+"""Of a speed in rpm, as it is told."""
 
 
 @dataclass(frozen=True)
@@ -161,15 +164,20 @@ def _searched(desk: _Desk, told: Advice, hold: Segment, real: Predictions) -> Ad
     count = int(REACH * hold.to_rad_s / coarse)
     found: list[Better | None] = []
     for side in (-1.0, 1.0):
-        speeds = [hold.to_rad_s + side * coarse * (k + 1) for k in range(count)]
+        speeds = [_as_told(hold.to_rad_s + side * coarse * (k + 1)) for k in range(count)]
         speeds = [v for v in speeds if 0.0 < v <= top]
         first = next(_better(desk, (told, hold), speeds, real), None)
         if first is not None:
             steps = range(int(COARSE / FINE) - 1, 0, -1)
-            nearer = [first.speed_rad_s - side * FINE * unit * k for k in steps]
+            nearer = [_as_told(first.speed_rad_s - side * FINE * unit * k) for k in steps]
             first = next(_better(desk, (told, hold), nearer, real), first)
         found.append(first)
     return replace(told, below=found[0], above=found[1])
+
+
+def _as_told(speed_rad_s: float) -> float:
+    """The speed that is printed, so that none is told that was not itself tried."""
+    return to_si(round(from_si(speed_rad_s, "rpm"), TOLD_DECIMALS), "rpm")
 
 
 def _better(

@@ -161,7 +161,7 @@ def _entered(quantity: str, place: Place, case: Case, *, must_apply: bool) -> tu
 
 def _resonance(place: Place, case: Case) -> tuple[Evidence, ...]:
     if place.kind == "hold":
-        return (*_blade_modes(place, case), *_given_modes(case), *_bands(case))
+        return (*_blade_modes(place, case), *_given_modes(place, case), *_bands(case))
     covers = _passages("crossing_cover", place, case)
     if place.kind == "stop" and not case.plan.shutdown.powered:
         return (*covers, *_unpowered(place, case))
@@ -179,14 +179,23 @@ def _blade_modes(place: Place, case: Case) -> tuple[Evidence, ...]:
     motions = (CYCLIC, COLLECTIVE) if is_pair else ("",)
     return tuple(
         Evidence(
-            "harmonic_spacing", family, order=n, mode=f"{family} {n}{motion}" if motion else ""
+            "harmonic_spacing",
+            family,
+            order=n,
+            mode=f"{family} {n}{motion}" if motion else "",
+            must_apply=_turns(place),
         )
         for family, n in lowest
         for motion in motions
     )
 
 
-def _given_modes(case: Case) -> tuple[Evidence, ...]:
+def _turns(place: Place) -> bool:
+    """Tell whether a hold is not one at rest, where there are no harmonics."""
+    return place.span.highest_rad_s > 0.0
+
+
+def _given_modes(place: Place, case: Case) -> tuple[Evidence, ...]:
     """Each stand mode against unbalance and the blades, each shaft mode against the blades.
 
     A family of which the stand file gives no mode is asked for all the same: it stays open.
@@ -194,7 +203,7 @@ def _given_modes(case: Case) -> tuple[Evidence, ...]:
     blades = str(case.plan.rotor.n_blades)
     wanted_of = {"stand": ("1", blades), "shaft": (blades,)}
     return tuple(
-        Evidence("harmonic_spacing", family, harmonic, mode=mode)
+        Evidence("harmonic_spacing", family, harmonic, mode=mode, must_apply=_turns(place))
         for family, harmonics in wanted_of.items()
         for mode in _given(family, case) or ("",)
         for harmonic in (harmonics if mode else ("",))

@@ -15,7 +15,8 @@ tests of the same numbers in ``tests/judge`` try every one of them.
 6. A rule matches no row, because of its part of the run, speed range, mode family or harmonics:
    NOT ASSESSED, and its class is open.
 7. Prediction left out a segment, an abort, a mode or a keep-out band, or labelled it wrongly: the
-   expected places are listed from the plan and each missing one is NOT ASSESSED.
+   expected places are listed from the plan and each missing one is NOT ASSESSED. Modes of stand
+   and shaft are listed as the stand file gives them and as its column and drive train have them.
 8. A hold's window or a ramp reaches into a rule's speed range with one end only: it is judged
    whole, gauge error included.
 9. A limit over speed is read outside its table, or at the mild end of a ramp: no extrapolation;
@@ -25,8 +26,8 @@ tests of the same numbers in ``tests/judge`` try every one of them.
 11. A limit is in another dimension than the quantity, or refers to a value of another: NOT
     ASSESSED.
 12. The plan or book lacks a value that it must have (a model allowance, the overspeed trip, the
-    margin on lift-off speed, whether a mode was found with the rotor fitted): NOT ASSESSED, and no
-    document closes it.
+    margin on lift-off speed, whether a mode was found with the rotor fitted, the sway that the
+    stand bears): NOT ASSESSED, and no document closes it.
 13. A mode is exempt by damping that was not assessed: only assessed damping, at its least, counts.
 14. A part does not apply, or a rule sets harmonics aside or exempts modes: the rule gives GO, but
     what it set aside or exempted closes no hazard class (the first flap mode may be exempt: it
@@ -34,10 +35,11 @@ tests of the same numbers in ``tests/judge`` try every one of them.
     at and does not apply, there is no such hazard, and the rules that looked close it.
 15. A thin rule book: every class is listed, part by part, and each asks for the numbers that speak
     of its hazard, down to the order of a blade mode, each mode of the stand and the harmonic that
-    drives it: held spacing and distance from keep-out bands, resonances passed in ramps and the
-    stop, both stops and the moment of resting on one, also at rest, the overspeed trip, torque and
-    power while speed changes and what the drive has left, the room between blade and stand. A rule
-    that guards the harmless side, or one of another part of the run, does not count.
+    drives it: held spacing and distance from each keep-out band, resonances passed in ramps and
+    the stop and how far the hub sways there, both stops and the moment of resting on one, also at
+    rest, the overspeed trip, torque and power while speed changes and what the drive has left, the
+    room between blade and stand. A rule that guards the harmless side, or one of another part of
+    the run, does not count.
 16. One hold is judged, another is outside every rule's range: each segment is asked by itself.
 17. An outside document is for less speed or less wind (at the anemometer or the hub, whichever is
     more), is for another part or class, is dated after the card's issue, or names no approver: it
@@ -58,11 +60,26 @@ tests of the same numbers in ``tests/judge`` try every one of them.
 24. An abort is said not to apply: with power cut and controls commanded or frozen it always does;
     the class of aborts is never closed by rows of which none was assessed.
 25. A passage without power is judged by its rate, which nobody chooses: an unpowered stop and each
-    abort that runs down through a keep-out band are asked for turns inside it and for the response
-    of each stand mode.
+    abort that runs down through a keep-out band are asked for turns inside it. A rate does not
+    tell the response either: every ramp, the stop and every abort are asked for the sway of the
+    hub in each mode of the stand, inside a band or not.
 26. A wind gate was computed for this very plan and the planned wind is above it in a sector:
     NO-GO; NOT ASSESSED where the gate ends because something was not assessed. The gate of another
     plan or version is never found, and lying inside a gate closes no class.
+27. A number is said not to apply although there is one: only a rotor at rest has no harmonics;
+    that a mode of the stand is not passed counts only where the plan's speeds, with the gauge's
+    error, keep off its frequency with its allowance; a frequency that is not known is passed by
+    whatever turns. A keep-out band that is entered has its own number. A stand file without a mode
+    of the stand leaves open what ramps, the stop and aborts pass.
+28. A blade mode seen from the stand is held against some of the stand's modes only: each of them
+    is looked for by name, on both sides of rotor speed; a rule for rotor harmonics judges no such
+    pair instead of setting it aside; a stand mode that does not count the rotor's mass takes the
+    OK from its pairs; and damping exempts where that of the blade mode itself was assessed.
+29. A mode has lost its name, or a harmonic its number, at the one hold that a rule reaches: what
+    has a number anywhere in the run is looked for in every place of the rule. Of a teetering pair
+    both motions are asked for.
+30. A number over the whole card leaves out a keep-out band, or a mode of the stand: these are
+    looked for there too.
 """
 
 from __future__ import annotations

@@ -207,7 +207,7 @@ def _wanted_modes(scope: _Scope, place: Place | None) -> Iterator[_Wanted]:
         yield _Wanted(mode=mode, harmonics=frozenset(harmonics - {""}))
     if place and rule.mode_family not in GIVEN_FAMILIES:
         for order in rule.mode_orders:
-            yield _Wanted(order=order, harmonics=frozenset(scope.against))
+            yield _Wanted(order=order)
 
 
 def _answers(row: Row, wanted: _Wanted) -> bool:

@@ -48,6 +48,8 @@ class BladeMode:
     ends: Ends
     share: FloatArray
     """Of its motion in its own family, by kinetic energy, shape (lanes,)."""
+    set_id: str = ""
+    """Kind of motion of the hub that it belongs to."""
 
 
 def blade_modes(
@@ -131,5 +133,5 @@ def _labelled(
         )
         ends = measured_ends(model, [measured[i] for i in own], allowance)
         share = modes.share[:n, k, families.index(family)]
-        found.append(BladeMode(label, family, ends, share))
+        found.append(BladeMode(label, family, ends, share, suffix))
     return found

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from planner.model.results import Status
+from planner.predict.branches import breaks_of, sets_of
 from planner.predict.fixed_frame import SIDES, shifted, shifted_rad_s
 from planner.predict.mode_tracks import (
     BLADE_HARMONICS,
@@ -48,14 +49,16 @@ def fan_series(
     except (ValueError, np.linalg.LinAlgError):
         found = []  # the study itself says why
     n = plan.rotor.n_blades
+    breaks = {t.name: breaks_of(t, members) for members in sets_of(found) for t in members}
     return {
         "speed_rad_s": speed,
         "collective_rad": fan_collective_rad(segments),
-        "modes": [_curve(track) for track in found],
+        "modes": [_curve(track, breaks.get(track.name, [])) for track in found],
         "shifted": [
             {
                 "name": f"{track.name}, {words}",
                 "frequency_rad_s": shifted_rad_s(track, speed, side),
+                "breaks": breaks.get(track.name, []),
             }
             for track in shifted(found)
             if track.name.split()[1] == DRAWN_ORDER
@@ -70,12 +73,13 @@ def fan_series(
     }
 
 
-def _curve(track: Track) -> dict[str, Any]:
+def _curve(track: Track, breaks: Sequence[int]) -> dict[str, Any]:
     return {
         "name": track.name,
         "family": track.family,
         "panel": track.panel,
         "frequency_rad_s": track.ends.frequency_rad_s,
+        "breaks": breaks,
         "damping": track.damping,
         "doubt": "" if track.status is Status.OK else "NOT ASSESSED",
     }

@@ -93,9 +93,17 @@ def _speeds(segment: Segment, mode: StandMode) -> list[float]:
 
 
 def worst_of_cuts(
-    solved: Sequence[tuple[Cut, Event, FoundRunDown | None]], mode: StandMode
+    solved: Sequence[tuple[Cut, Event, FoundRunDown | None]],
+    mode: StandMode,
+    variants: tuple[FloatArray, FloatArray],
 ) -> Mapping[tuple[str, str], Worst]:
-    """Greatest amplification of one mode by ramp and cause."""
+    """Greatest amplification of one mode by ramp and cause.
+
+    Args:
+        solved: cuts with their run-downs.
+        mode: which of their modes.
+        variants: frequencies and damping ratios that it may have, the nominal ones first.
+    """
     own = [case for case in solved if case[0].mode == mode.label]
     found: dict[tuple[str, str], Worst] = {}
     marched = [(cut, event, down) for cut, event, down in own if down is not None]
@@ -104,7 +112,7 @@ def worst_of_cuts(
         if down is None and event.status is not Status.NOT_APPLICABLE:
             found[place] = Worst(status=event.status, reason=event.reason)
     if marched:
-        for (cut, event, _), one in zip(marched, _marched(marched, mode), strict=True):
+        for (cut, event, _), one in zip(marched, _marched(marched, variants), strict=True):
             place = (cut.segment.id, event.label.state)
             found[place] = _worse(found.get(place, Worst()), one)
     return found
@@ -118,9 +126,11 @@ def _worse(before: Worst, one: Worst) -> Worst:
     return replace(top, most=max(before.most, one.most))
 
 
-def _marched(cases: Sequence[tuple[Cut, Event, FoundRunDown]], mode: StandMode) -> Iterator[Worst]:
+def _marched(
+    cases: Sequence[tuple[Cut, Event, FoundRunDown]], variants: tuple[FloatArray, FloatArray]
+) -> Iterator[Worst]:
     """Each cut by itself; three lanes a cut for the nominal, low and high torque."""
-    w = np.array(mode.frequencies_rad_s)
+    w, zeta = variants
     lowest, highest = (1.0 - BESIDE) * w.min(), (1.0 + BESIDE) * w.max()
     ramps = [_approach(cut, event.from_rad_s, (lowest, highest)) for cut, event, _ in cases]
     leaves = [min(lowest, 0.5 * event.from_rad_s) for _, event, _ in cases]
@@ -138,7 +148,7 @@ def _marched(cases: Sequence[tuple[Cut, Event, FoundRunDown]], mode: StandMode) 
         rows = slice(3 * i, 3 * i + 3)
         going = time[rows] < times[-1]
         speed[rows] = np.where(going, np.interp(time[rows], times, speeds), speed[rows])
-    peak = passage_peak(SpeedTable(speed, lasts / (POINTS - 1)), w, mode.damping_ratio)
+    peak = passage_peak(SpeedTable(speed, lasts / (POINTS - 1)), w, zeta)
     most = np.maximum(peak.amplitude, peak.held_amplitude)
     for i in range(len(cases)):
         rows = slice(3 * i, 3 * i + 3)

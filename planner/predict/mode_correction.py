@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from planner.methods.frequency_correction import Measured, correct
+from planner.units import from_si
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -29,6 +30,8 @@ class Ends:
     correction: float = float("nan")
     """Of the frequency, where it was measured first; not a number: nothing was measured."""
     residual: float = float("nan")
+    fault: str = ""
+    """Why the mode cannot be judged; its frequencies are then not numbers."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -53,11 +56,35 @@ def measured_ends(
 ) -> Ends:
     """The model corrected by measurements, whose residual is the allowance.
 
-    Raises:
-        ValueError: model and measurement are too far apart to be the same mode.
+    Measurements that are too far from the model to be of the same mode leave it with a fault.
     """
     if not measured:
         return with_allowance(model.frequency_rad_s, allowance)
+    try:
+        return _corrected(model, measured, allowance)
+    except ValueError:
+        unknown = np.full(model.frequency_rad_s.shape, np.nan)
+        fault = _apart(measured, model.where_measured_rad_s)
+        return Ends(unknown, unknown, unknown, fault=fault)
+
+
+def _apart(measured: Sequence[MeasuredMode], model_rad_s: FloatArray) -> str:
+    """Measured and computed frequencies of a mode side by side, in words."""
+    pairs = [
+        f"{from_si(m.frequency_rad_s, 'Hz'):.3f} Hz measured at "
+        f"{from_si(m.speed_rad_s, 'rpm'):.4g} rpm, {from_si(w, 'Hz'):.3f} Hz computed"
+        for m, w in zip(measured, model_rad_s.tolist(), strict=True)
+    ]
+    return (
+        f"measured_mode {measured[0].mode}: expected a measurement within 20 % of the model, "
+        f"found {'; '.join(pairs)}; check which mode it is, and the blade's or stand's stiffness "
+        "and mass"
+    )
+
+
+def _corrected(
+    model: ModelFrequency, measured: Sequence[MeasuredMode], allowance: tuple[float, float]
+) -> Ends:
     found = correct(
         Measured(
             speed_rad_s=np.array([m.speed_rad_s for m in measured]),

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from planner.model.results import Labels, Status
+from planner.predict.study import NotAssessedError
 from planner.rotor.blade_views import flap_inertia
 
 if TYPE_CHECKING:
@@ -30,7 +31,7 @@ def add_damping(rows: Rows, track: Track, hold: Segment, inputs: Inputs) -> None
     """
     label = Labels(segment=hold.id, mode=track.name)
     if track.damping is not None:
-        rows.add(label, track.damping, speed_rad_s=hold.to_rad_s)
+        _as_stated(rows, label, (track.damping, hold), inputs)
         return
     least = 0.0 if track.share is None else float(track.share.min())
     hinged = inputs["rotor.hub"].kind == "articulated"
@@ -43,6 +44,16 @@ def add_damping(rows: Rows, track: Track, hold: Segment, inputs: Inputs) -> None
         _from_damper(rows, label, (track, hold, least), inputs)
     else:
         rows.flag(label, Status.NOT_COMPUTED, _NOT_KNOWN, speed_rad_s=hold.to_rad_s)
+
+
+def _as_stated(rows: Rows, label: Labels, at: tuple[float, Segment], inputs: Inputs) -> None:
+    damping, hold = at
+    try:
+        low, high = inputs.allowance("damping")
+    except NotAssessedError as refusal:
+        rows.flag(label, refusal.status, str(refusal), speed_rad_s=hold.to_rad_s)
+        return
+    rows.add(label, damping, low=low * damping, high=high * damping, speed_rad_s=hold.to_rad_s)
 
 
 def _from_damper(

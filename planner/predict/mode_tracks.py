@@ -16,6 +16,8 @@ if TYPE_CHECKING:
     from planner.model.rotor import Rotor
     from planner.predict.blade_modes import Lanes
     from planner.predict.mode_correction import Ends
+    from planner.predict.shaft_modes import ShaftMode
+    from planner.predict.stand_modes import StandMode
     from planner.predict.study import Inputs
 
     FloatArray = NDArray[np.float64]
@@ -47,6 +49,13 @@ class Track:
     """Of a blade mode's motion in its own family, shape (lanes,)."""
     status: Status = Status.OK
     reason: str = ""
+    set_id: str = ""
+    """Blade modes of one set do not change places where their frequencies are put in order."""
+
+    @property
+    def frequency_rad_s(self) -> FloatArray:
+        """Nominal frequency, shape (lanes,)."""
+        return self.ends.frequency_rad_s
 
     def at(self, lanes: IntArray | slice) -> Track:
         """The same mode at some of the lanes."""
@@ -80,34 +89,35 @@ def tracks(inputs: Inputs, lanes: Lanes) -> list[Track]:
     rotor: Rotor = inputs["rotor"]
     allowance = inputs.allowance("frequency")
     found = [
-        Track(m.label, m.family, "blade", m.ends, BLADE_HARMONICS, share=m.share)
+        Track(m.label, m.family, "blade", m.ends, BLADE_HARMONICS, share=m.share, set_id=m.set_id)
         for m in blade_modes.blade_modes(rotor, lanes, allowance)
     ]
     everywhere = np.zeros(lanes.speed_rad_s.shape, dtype=np.intp)
-    excited = stand_harmonics(rotor.n_blades)
-    for stand in stand_modes.stand_modes(inputs):
-        one = Track(
-            stand.label,
-            "stand",
-            "stand",
-            stand.ends,
-            excited,
-            stand.damping_ratio,
-            status=stand.status,
-            reason=stand.reason,
-        )
-        found.append(one.at(everywhere))
+    for mode in stand_modes.stand_modes(inputs):
+        harmonics = stand_harmonics(rotor.n_blades)
+        found.append(_given(mode, "stand", harmonics).at(everywhere))
     found += [
-        Track(
-            shaft.label,
-            "shaft",
-            "shaft",
-            shaft.ends,
-            shaft_harmonics(rotor.n_blades),
-            shaft.damping_ratio,
-            status=shaft.status,
-            reason=shaft.reason,
-        )
+        _given(shaft, "shaft", shaft_harmonics(rotor.n_blades))
         for shaft in shaft_modes.shaft_modes(inputs, lanes.speed_rad_s)
     ]
-    return found
+    return [_with_fault(track) for track in found]
+
+
+def _given(mode: StandMode | ShaftMode, panel: Panel, harmonics: tuple[int, ...]) -> Track:
+    return Track(
+        mode.label,
+        panel,
+        panel,
+        mode.ends,
+        harmonics,
+        mode.damping_ratio,
+        status=mode.status,
+        reason=mode.reason,
+    )
+
+
+def _with_fault(track: Track) -> Track:
+    """A mode whose measurement does not fit it is outside validity."""
+    if track.ends.fault and track.status is Status.OK:
+        return replace(track, status=Status.OUTSIDE_VALIDITY, reason=track.ends.fault)
+    return track

@@ -59,20 +59,27 @@ class Passage:
     unbalance_kg_m: float
     error_rad_s: float
     """Of the speed gauge."""
+    damping_allowance: tuple[float, float]
 
     @property
     def offset_m(self) -> float:
         """The unbalance over the modal mass: what amplifications multiply."""
         return self.unbalance_kg_m / self.mode.modal_mass_kg
 
-    def frequencies_rad_s(self, ends_rad_s: Sequence[float]) -> FloatArray:
-        """Nominal, lowest and highest frequency, then those that lie where a passage ends.
+    def variants(self, ends_rad_s: Sequence[float]) -> tuple[FloatArray, FloatArray]:
+        """Frequencies and damping ratios that the mode may have, the nominal ones first.
 
-        A mode that lies at an end, gauge error included, answers more than at its own ends.
+        Both ends of the frequency allowance with both ends of the damping allowance, and, with
+        the least damping, frequencies where a passage ends: a mode that lies there, gauge error
+        included, answers more than at its own ends.
         """
-        _, low, high = self.mode.frequencies_rad_s
+        nominal, low, high = self.mode.frequencies_rad_s
         near = [v + e for v in ends_rad_s for e in (-self.error_rad_s, 0.0, self.error_rad_s)]
-        return np.array([*self.mode.frequencies_rad_s, *np.clip(near, low, high)])
+        lightly = [nominal, low, high, *np.clip(near, low, high)]
+        least, most = (share * self.mode.damping_ratio for share in self.damping_allowance)
+        frequency = np.array([nominal, *lightly, nominal, low, high])
+        damping = [self.mode.damping_ratio, *[least] * len(lightly), *[most] * 3]
+        return frequency, np.array(damping)
 
     def is_passed(self, low_rad_s: float, high_rad_s: float) -> bool:
         """Whether speeds reach the mode's frequency, allowance and gauge error included."""
@@ -129,14 +136,18 @@ def run_down_rows(
 def passages_of(
     modes: Sequence[StandMode], inputs: Inputs, unbalance: tuple[float, Status, str]
 ) -> list[Passage]:
-    """What drives each mode; where modal mass or unbalance are not known the mode is flagged."""
+    """What drives each mode; where modal mass or unbalance are not known the mode is flagged.
+
+    Raises:
+        NotAssessedError: the rule book states no damping allowance.
+    """
     value, status, reason = unbalance
-    found = []
+    found, damping = [], inputs.allowance("damping")
     for mode in modes:
         known = without_mass(mode)
         if known.status is Status.OK and status is not Status.OK:
             known = replace(known, status=status, reason=reason)
-        found.append(Passage(known, value, inputs["stand.speed_gauge_error_rad_s"]))
+        found.append(Passage(known, value, inputs["stand.speed_gauge_error_rad_s"], damping))
     return found
 
 
@@ -172,8 +183,8 @@ def _ramp_row(
     top = segment.top_rad_s
     try:
         table = SpeedTable(history.speed_rad_s[None, :], history.step_s)
-        w = passage.frequencies_rad_s((segment.from_rad_s, segment.to_rad_s))
-        peak = passage_peak(table, w, passage.mode.damping_ratio)
+        w, zeta = passage.variants((segment.from_rad_s, segment.to_rad_s))
+        peak = passage_peak(table, w, zeta)
     except ValueError as refusal:
         _flag(rows, label, (Status.OUTSIDE_VALIDITY, str(refusal)), top)
         return
@@ -223,7 +234,7 @@ def _followed_rows(
     hands, cut = beside
     try:
         answers = _answers(list(different.values()), passage)
-        worst = worst_of_cuts(cut, passage.mode)
+        worst = worst_of_cuts(cut, passage.mode, passage.variants(()))
     except ValueError as refusal:
         fault = (Status.OUTSIDE_VALIDITY, str(refusal))
         for event, _ in cases:
@@ -280,10 +291,11 @@ def _answers(
     table = SpeedTable(
         speed_at(lanes_of(found[0].path, lanes), time), (end - begin) / (POINTS - 1)
     )
-    frequencies = np.repeat(
-        [passage.frequencies_rad_s((f.order.from_rad_s,)) for f in found], 3, axis=0
+    frequency, damping = (
+        np.repeat(each, 3, axis=0)
+        for each in zip(*(passage.variants((f.order.from_rad_s,)) for f in found), strict=True)
     )
-    peak = passage_peak(table, frequencies, mode.damping_ratio)
+    peak = passage_peak(table, frequency, damping)
     most = np.maximum(peak.amplitude, peak.held_amplitude)
     numbers = (np.concatenate([peak.amplitude, most], axis=1), peak.speed_rad_s)
     orders = [f.order for f in found]

@@ -61,8 +61,8 @@ RESONANCE = (
         study="modes",
         method="First flap modes: from the air, as flap_damping_ratio; first lag mode of an "
         "articulated hub: damper over critical; both times the share of the mode's motion in its "
-        "family, and not computed below half; stand and shaft modes as stated; other blade modes "
-        "are not computed.",
+        "family, and not computed below half; stand and shaft modes as stated, with the damping "
+        "allowance; other blade modes are not computed.",
         validity="light coupling between modes",
         source="definitions",
         hand_check="none: see flap_damping_ratio",
@@ -204,13 +204,14 @@ RESONANCE = (
         study="speeds",
         method="Each stand mode as one degree of freedom with its modal mass, driven once per "
         "revolution by the unbalance, whose force grows with the square of speed, and marched "
-        "through the actual ramp, stop or abort; the frequency allowance moves the mode, in "
-        "run-downs the torque allowance the rate. High end of a ramp: also if its last speed is "
-        "then held. Does not apply where the mode is not passed.",
+        "through the actual ramp, stop or abort; power may also fail in the middle of a ramp, a "
+        "little above the mode. Frequency and damping allowances change the mode, in run-downs "
+        "the torque allowance the rate. High end of a ramp: also if its last speed is then held. "
+        "Does not apply where the mode is not passed.",
         validity=_ON_STAND,
         source=_SWEEP_SOURCE,
-        hand_check="U/M times steady peak 1/(2 ζ) times 1 - exp(-2.86 η^-0.445), η the rate over "
-        "the bandwidth squared",
+        hand_check="even ramps and run-downs: U/M times steady peak 1/(2 ζ) times 1 - exp(-2.86 "
+        "η^-0.445), η the rate over the bandwidth squared",
         hand_band=0.2,
         hand_floor=2e-4,
         allowance="frequency",

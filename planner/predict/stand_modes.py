@@ -30,7 +30,7 @@ if TYPE_CHECKING:
 TAKES = ("rotor", "stand.modes", "stand.column", "stand.measured_modes")
 """Model paths that the stand's modes follow from."""
 LEAST_SHARE_OF_BLADES = 0.95
-"""A mass said to have been missing is at least this share of the blades' own."""
+"""A mass that holds the blades is at least this share of their own."""
 _NOT_SAID = (
     "the stand file does not say whether the rotor's mass was fitted when this mode was found "
     "(rotor_fitted)"
@@ -89,10 +89,11 @@ def mode_fault(mode: GivenMode, rotor: Rotor) -> tuple[Status, str]:
     if not mode.counts_rotor:
         return Status.NOT_COMPUTED, _NOT_CORRECTED
     blades = rotor.n_blades * blade_mass_kg(rotor.blade)
-    missing = mode.missing_mass_kg or 0.0
-    if mode.is_corrected and missing < LEAST_SHARE_OF_BLADES * blades:
+    key = "missing_mass" if mode.is_corrected else "modal_mass"
+    stated = mode.missing_mass_kg if mode.is_corrected else mode.modal_mass_kg
+    if stated is not None and stated < LEAST_SHARE_OF_BLADES * blades:
         words = (
-            f"missing_mass {missing:g} kg is less than the {rotor.n_blades} blades weigh by "
+            f"{key} {stated:g} kg is less than the {rotor.n_blades} blades weigh by "
             f"their table, {blades:.4g} kg; correct one of the two"
         )
         return Status.OUTSIDE_VALIDITY, words
@@ -131,7 +132,8 @@ def _of_column(
         own = [m for m in measured if m.mode == label]
         one, each = np.array([frequency]), np.full(len(own), frequency)
         ends = measured_ends(ModelFrequency(np.zeros(1), one, one, each, each), own, allowance)
-        modes.append(StandMode(label, ends, column.damping_ratio, float(mass)))
+        status = Status.OUTSIDE_VALIDITY if ends.fault else Status.OK
+        modes.append(StandMode(label, ends, column.damping_ratio, float(mass), status, ends.fault))
     of_stand = [m for m in measured if m.mode.startswith("stand ")]
     require_known(of_stand, [mode.label for mode in modes])
     return modes

@@ -9,6 +9,7 @@ import numpy as np
 from planner.methods.crossings import crossings
 from planner.model.results import Labels, Status
 from planner.predict.blade_modes import Lanes
+from planner.predict.branches import branches, sets_of
 from planner.predict.fixed_frame import fixed_frame_rows
 from planner.predict.mode_damping import add_damping
 from planner.predict.mode_hand import hand_frequency
@@ -23,15 +24,19 @@ if TYPE_CHECKING:
 
     from planner.model.plan import Segment
     from planner.model.results import Prediction
+    from planner.predict.mode_correction import Ends
 
     FloatArray = NDArray[np.float64]
+    IntArray = NDArray[np.intp]
 
 _ID = "modes"
 TOP_SHARE = 1.2
 """Of full speed, and of the card's highest: how far the fan chart reaches."""
 GRID_SPEEDS = 61
-CORNERS = 5
-"""Lanes of a hold: as meant, then both ends of speed with both ends of collective."""
+PITCH_SHARES = (-1.0, -0.5, 0.0, 0.5, 1.0)
+"""Of the half window of collective: a frequency may be lowest or highest between its ends."""
+CORNERS = 1 + 2 * len(PITCH_SHARES)
+"""Lanes of a hold: as meant, then both ends of speed with each of these pitches."""
 SLOWEST_SHARE = 1e-3
 """A window that reaches down to rest is held against harmonics from this share of its top."""
 AT_HOLDS = ("mode_frequency", "mode_share", "mode_damping", "harmonic_spacing")
@@ -46,8 +51,7 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     found = tracks(inputs, _joined(hold_lanes(holds, inputs), fan_lanes(inputs)))
     over_fan = [track.at(slice(CORNERS * len(holds), None)) for track in found]
     rows = {q: Rows(q, _ID) for q in (*AT_HOLDS, "crossing_speed", "fixed_frame_spacing")}
-    for track in over_fan:
-        _crossing_rows(rows["crossing_speed"], track, fan)
+    _crossing_rows(rows["crossing_speed"], over_fan, fan)
     for i, hold in enumerate(holds):
         lanes = slice(CORNERS * i, CORNERS * (i + 1))
         here = [track.at(lanes) for track in found]
@@ -82,14 +86,15 @@ def fan_lanes(inputs: Inputs) -> Lanes:
 
 
 def hold_lanes(holds: Sequence[Segment], inputs: Inputs) -> Lanes:
-    """Each hold as it is meant and at the corners of its window, gauge error included."""
+    """Each hold as it is meant and around its window, gauge error included."""
     error = inputs["stand.speed_gauge_error_rad_s"]
     speeds, pitches = [], []
     for hold in holds:
         low, high = hold.ends_rad_s(error)
         pitch, half = hold.to_collective_rad, hold.window.collective_rad
-        speeds += [hold.to_rad_s, low, low, high, high]
-        pitches += [pitch, pitch - half, pitch + half, pitch - half, pitch + half]
+        around = [pitch + share * half for share in PITCH_SHARES]
+        speeds += [hold.to_rad_s, *(v for v in (low, high) for _ in around)]
+        pitches += [pitch, *around, *around]
     return Lanes(np.array(speeds, dtype=np.float64), np.array(pitches, dtype=np.float64))
 
 
@@ -154,14 +159,28 @@ def _spacing_rows(rows: Rows, track: Track, label: Labels, at: _At) -> None:
         )
 
 
-def _crossing_rows(rows: Rows, track: Track, speed: FloatArray) -> None:
-    if track.status is not Status.OK:
-        rows.flag(Labels(mode=track.name), track.status, track.reason)
-        return
-    ends = track.ends
-    for n in track.harmonics:
+def _crossing_rows(rows: Rows, tracks: Sequence[Track], speed: FloatArray) -> None:
+    """Blade modes along their branches, the others along their own curves."""
+    for track in tracks:
+        if track.status is not Status.OK:
+            rows.flag(Labels(mode=track.name), track.status, track.reason)
+        elif track.panel != "blade":
+            one = np.zeros(speed.shape, dtype=np.intp)
+            _met_rows(rows, [track], (track.ends, one), speed)
+    for members in sets_of(tracks):
+        for branch in branches(members):
+            _met_rows(rows, members, branch, speed)
+
+
+def _met_rows(
+    rows: Rows, members: Sequence[Track], branch: tuple[Ends, IntArray], speed: FloatArray
+) -> None:
+    """Where a branch meets each harmonic, under the name that it has there."""
+    ends, who = branch
+    for n in members[0].harmonics:
         for met in crossings(speed, ends.frequency_rad_s, ends.low_rad_s, ends.high_rad_s, n):
-            label = Labels(mode=track.name, harmonic=str(n))
+            nearest = int(np.argmin(np.abs(speed - met.nominal_rad_s)))
+            label = Labels(mode=members[who[nearest]].name, harmonic=str(n))
             rows.add(
                 label,
                 met.nominal_rad_s,

@@ -130,20 +130,24 @@ def _rates(inputs: Inputs) -> Prediction:
         elif unbalance.status[0] is not Status.OK:
             rows.flag(label, unbalance.status[0], unbalance.reasons[0])
         else:
-            _rate_row(rows, label, mode, (limit, float(unbalance.value[0])))
+            least = inputs.allowance("damping")[0]
+            _rate_row(rows, label, mode, (limit, float(unbalance.value[0]), least))
     return rows.prediction()
 
 
-def _rate_row(rows: Rows, label: Labels, mode: StandMode, asked: tuple[float, float]) -> None:
-    """The rate for the nominal frequency and for both ends of its allowance."""
-    limit_m, unbalance_kg_m = asked
+def _rate_row(
+    rows: Rows, label: Labels, mode: StandMode, asked: tuple[float, float, float]
+) -> None:
+    """The nominal rate, and that for both ends of the frequency with the least damping."""
+    limit_m, unbalance_kg_m, least = asked
     if unbalance_kg_m == 0.0:
         rows.add(label, 0.0)
         return
     wanted = limit_m * mode.modal_mass_kg / unbalance_kg_m
     w = np.array(mode.frequencies_rad_s)
+    zeta = mode.damping_ratio * np.array([1.0, least, least])
     try:
-        found = rate_needed_rad_s2(w, mode.damping_ratio, wanted)
+        found = rate_needed_rad_s2(w, zeta, wanted)
     except ValueError as refusal:
         rows.flag(label, Status.OUTSIDE_VALIDITY, str(refusal))
         return

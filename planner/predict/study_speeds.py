@@ -64,11 +64,11 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
         _time_rows(rows, event, found, hands)
     cycle_rows(rows[CYCLES], solved, inputs["keep_outs"], hands)
     total_rows(rows, solved, (walk, inputs["keep_outs"]), inputs["abort"].reentries)
-    if isinstance(modes, NotAssessedError):
+    passages = modes if isinstance(modes, NotAssessedError) else _passages(modes, inputs)
+    if isinstance(passages, NotAssessedError):
         for quantity in (AMPLITUDE, PEAK_SPEED):
-            rows[quantity].flag(Labels(), modes.status, str(modes))
+            rows[quantity].flag(Labels(), passages.status, str(passages))
     else:
-        passages = _passages(modes, inputs)
         ramp_rows(rows, _powered(ways, shaft, inputs), passages)
         joined = [(one, *case) for one, case in zip(cut, of_cuts, strict=True)]
         run_down_rows(rows, solved, passages, hands, joined)
@@ -87,10 +87,13 @@ def _modes(inputs: Inputs) -> tuple[StandMode, ...] | NotAssessedError:
     return found or NotAssessedError(Status.NOT_STATED, NO_STAND_MODE)
 
 
-def _passages(modes: Sequence[StandMode], inputs: Inputs) -> list[Passage]:
+def _passages(modes: Sequence[StandMode], inputs: Inputs) -> list[Passage] | NotAssessedError:
     unbalance = inputs.prior["unbalance"]
     known = (float(unbalance.value[0]), unbalance.status[0], unbalance.reasons[0])
-    return passages_of(modes, inputs, known)
+    try:
+        return passages_of(modes, inputs, known)
+    except NotAssessedError as refusal:
+        return refusal
 
 
 def _powered(
