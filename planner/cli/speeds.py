@@ -29,9 +29,9 @@ _NONE = "none within reach"
 _ALL_WELL = "Every hold satisfies every rule of frequency."
 _FOREWORD = (
     "Holds that a rule of frequency does not let pass, and the nearest speeds that keep every "
-    f"limit of frequency, on steps of {FINE:.1%} of full speed, up to {REACH:.0%} away. Window, "
-    "pitch and air stay as planned. Other rules, those of the ramps between among them, are not "
-    "looked at here: check the plan again after a change."
+    f"limit of frequency, on steps of {FINE:.1%} and up to {REACH:.0%} of full speed away. "
+    "Window, pitch and air stay as planned. Other rules, those of the ramps between among them, "
+    "are not looked at here: check the plan again after a change."
 )
 
 
@@ -61,11 +61,17 @@ def told(advice: Sequence[Advice]) -> str:
     heads = f"{'nearest below':<22}{'nearest above':<22}"
     lines.append(f"  {'hold':<8}{'speed':<12}{heads}verdict")
     for one in advice:
-        below, above = (_words(better) for better in (one.below, one.above))
+        pair = (one.below, one.above)
+        below, above = ("not looked for" if one.open_for else _words(b) for b in pair)
         speed = _rpm(one.speed_rad_s)
         lines.append(f"  {one.segment:<8}{speed:<12}{below:<22}{above:<22}{one.verdict.value}")
-        words = f"not satisfied: {', '.join(one.reasons)}"
+        words = f"{'not assessed' if one.open_for else 'not satisfied'}: {', '.join(one.reasons)}"
         lines += textwrap.wrap(words, width, initial_indent=_IN, subsequent_indent=_IN)
+    reasons = dict.fromkeys(reason for one in advice for reason in one.open_for)
+    if reasons:
+        lines += ["", "Not assessed, so that no other speed was looked for:"]
+    for reason in reasons:
+        lines += textwrap.wrap(reason, width, initial_indent="  ", subsequent_indent=_IN)
     return "\n".join(lines)
 
 

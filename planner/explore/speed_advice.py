@@ -37,7 +37,7 @@ AGAIN = ("schedule", "holds", "modes")
 QUANTITIES = ("harmonic_spacing", "fixed_frame_spacing", "band_distance")
 """A rule of frequency limits one of these."""
 REACH = 0.3
-"""Of the hold's speed: how far to either side speeds are tried."""
+"""Of full speed: how far to either side speeds are tried."""
 COARSE, FINE = 0.005, 0.001
 """Of full speed: steps of the search, and of what is told. A gap narrower than the first may be
 missed."""
@@ -65,7 +65,9 @@ class Advice:
     """Titles of the rules that it does not satisfy, each with its place."""
     below: Better | None = None
     above: Better | None = None
-    """Nearest better speeds; None: none within reach."""
+    """Nearest better speeds; None: none within reach, or not looked for."""
+    open_for: tuple[str, ...] = ()
+    """Why the rules were not assessed: then no other speed is looked for."""
 
 
 def advise(plan: Plan) -> tuple[Advice, ...]:
@@ -87,7 +89,10 @@ def advise(plan: Plan) -> tuple[Advice, ...]:
         verdict, reasons = _held(hold.id, judgement)
         if hold.kind == "hold" and verdict is not Verdict.GO:
             told = Advice(hold.id, hold.to_rad_s, verdict, reasons)
-            found.append(_searched(desk.held_to(hold, judgement), told, hold, real))
+            if _is_open(hold.id, judgement):
+                found.append(replace(told, open_for=_open_for(judgement)))
+            else:
+                found.append(_searched(desk.held_to(hold, judgement), told, hold, real))
     return tuple(found)
 
 
@@ -149,6 +154,18 @@ def _held(segment_id: str, judgement: Judgement) -> tuple[Verdict, tuple[str, ..
     return worst, tuple(f.rule for f, verdict in said if verdict is not Verdict.GO)
 
 
+def _is_open(segment_id: str, judgement: Judgement) -> bool:
+    """A rule of frequency was not assessed at a hold, so that none can be satisfied for sure."""
+    open_words = Verdict.NOT_ASSESSED.value
+    return any(f.segment_verdicts.get(segment_id) == open_words for f in judgement.findings)
+
+
+def _open_for(judgement: Judgement) -> tuple[str, ...]:
+    """Reasons of the rules of frequency that were not assessed, each once."""
+    said = [f.reason for f in judgement.findings if f.verdict is Verdict.NOT_ASSESSED]
+    return tuple(dict.fromkeys(reason for reason in said if reason))
+
+
 def _of_rules(finding: Finding) -> bool:
     return bool(finding.segment_verdicts)
 
@@ -161,7 +178,7 @@ def _searched(desk: _Desk, told: Advice, hold: Segment, real: Predictions) -> Ad
         plan.rotor.design_maximum_rad_s, plan.rotor.proven_rad_s, plan.stand.drive.maximum_rad_s
     )
     coarse = COARSE * unit
-    count = int(REACH * hold.to_rad_s / coarse)
+    count = int(REACH / COARSE)
     found: list[Better | None] = []
     for side in (-1.0, 1.0):
         speeds = [_as_told(hold.to_rad_s + side * coarse * (k + 1)) for k in range(count)]

@@ -67,8 +67,20 @@ def check_train(document: Document, file: StandFile) -> None:
             if name and name in names[:i]:
                 path = ("drive_train", key, i, "name")
                 document.fault(path, "a name of its own", "rename one of the two")
+    if bodies >= _FEWEST_BODIES and shafts == bodies - 1:
+        _check_turns(document, train)
     if bodies >= _FEWEST_BODIES:
         _check_against_drive(document, file, train)
+
+
+def _check_turns(document: Document, train: DriveTrainTable) -> None:
+    """A shaft turns with one of its two neighbours, or between them where a gear is in it."""
+    for i, shaft in enumerate(train.shaft):
+        low, high = sorted((train.inertia[i].turns, train.inertia[i + 1].turns))
+        if not low * (1.0 - _ROUNDING) <= shaft.turns <= high * (1.0 + _ROUNDING):
+            expected = f"turns of its neighbours, {low:g} to {high:g}"
+            mend = "give the turns of the shaft itself: its stiffness counts times turns squared"
+            document.fault(("drive_train", "shaft", i, "turns"), expected, mend)
 
 
 def _check_against_drive(document: Document, file: StandFile, train: DriveTrainTable) -> None:
