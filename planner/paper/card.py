@@ -12,6 +12,7 @@ from planner.paper.closing import as_run_boxes, reentry_boxes, signature_boxes
 from planner.paper.coast import coast_boxes
 from planner.paper.course_chart import course_boxes
 from planner.paper.fan import fan_boxes
+from planner.paper.fan_tables import measured_boxes
 from planner.paper.flap_chart import flap_drawing
 from planner.paper.front import (
     configuration_boxes,
@@ -73,6 +74,7 @@ def _body(reading: Reading, frame: Frame) -> list[Box]:
         as_run_boxes(frame),
         fan_boxes(reading, frame, "13  Fan chart"),
         resonance_boxes(reading, frame),
+        measured_boxes(reading, frame, is_short=True),
         _flap_boxes(reading, frame),
         course_boxes(reading, frame),
         signature_boxes(reading, frame),

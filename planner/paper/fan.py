@@ -2,26 +2,28 @@
 
 from __future__ import annotations
 
-import csv
-import io
 from typing import TYPE_CHECKING
+from xml.sax.saxutils import escape
 
-from planner.paper import texts
 from planner.paper.banner import banner_of
 from planner.paper.boxes import Box, Picture, heading, new_page, paragraph
 from planner.paper.fan_chart import fan_drawing
-from planner.paper.fan_panels import FAMILIES, FRAMES, panels
+from planner.paper.fan_csv import csv_text
+from planner.paper.fan_panels import FAMILIES
 from planner.paper.fan_tables import fan_table_boxes
-from planner.paper.ink import PLAIN
-from planner.paper.pages import frame_for, paginate, render
+from planner.paper.ink import BODY, HEADING, PLAIN, REFERENCE, clipped
+from planner.paper.pages import FOOTING, frame_for, paginate, render
 from planner.paper.reading import Json, Reading
 from planner.paper.resonance_page import resonance_boxes
 
 if TYPE_CHECKING:
-    from planner.paper.fan_panels import Curve
-    from planner.paper.pages import Frame
+    from reportlab.graphics.shapes import Drawing
 
-_SVG_WIDTH, _SVG_PANEL = 900.0, 470.0
+    from planner.paper.pages import Banner, Frame
+
+_SVG_WIDTH, _SVG_PANEL, _SVG_BANNER = 900.0, 470.0, 78.0
+_SVG_TITLE, _SVG_ABOUT = "<title>...</title>", "<desc>...</desc>"
+"""What the library writes in place of a title and of a description."""
 _KEY = (
     "Rays nP: n times per revolution. Hatched: keep-out bands. Dotted uprights: speeds that are "
     "held. "
@@ -59,44 +61,39 @@ def fan_svg(record: Json) -> str:
     from reportlab.graphics.shapes import Drawing, Group  # noqa: PLC0415
 
     reading = Reading(record)
-    whole = Drawing(_SVG_WIDTH, len(FAMILIES) * _SVG_PANEL, initialFontName=PLAIN)
+    banner = banner_of(reading, "Fan chart")
+    tall = len(FAMILIES) * _SVG_PANEL
+    whole = Drawing(_SVG_WIDTH, tall + _SVG_BANNER, initialFontName=PLAIN)
+    _draw_banner(whole, banner, tall)
     for i, family in enumerate(reversed(FAMILIES)):
         part = fan_drawing(reading, (family,), _SVG_WIDTH, _SVG_PANEL - 10.0)
         whole.add(Group(*part.contents, transform=(1, 0, 0, 1, 0, i * _SVG_PANEL)))
-    return str(drawToString(whole))
+    title = escape(f"{banner.document}: {' '.join(banner.title.split())}")
+    about = escape(f"{banner.verdict}. {banner.status}. {banner.reference}. {FOOTING}")
+    drawn = str(drawToString(whole))
+    drawn = drawn.replace(_SVG_TITLE, f"<title>{title}</title>", 1)
+    return drawn.replace(_SVG_ABOUT, f"<desc>{about}</desc>", 1)
+
+
+def _draw_banner(drawing: Drawing, banner: Banner, bottom: float) -> None:
+    """What every page says of its document, above the panels."""
+    from reportlab.graphics.shapes import String  # noqa: PLC0415  # only SVG pays
+
+    left, width = 10.0, _SVG_WIDTH - 20.0
+    lines = (
+        (f"{banner.document}: {banner.title}", HEADING, 60.0),
+        (f"{banner.verdict}  ·  {banner.status}", BODY.bold, 42.0),
+        (banner.reference, REFERENCE, 27.0),
+        (f"{FOOTING}  ·  {banner.maker}", REFERENCE, 14.0),
+    )
+    for text, face, up in lines:
+        line = clipped(text, face, width)
+        drawing.add(String(left, bottom + up, line, fontName=face.font, fontSize=face.size))
 
 
 def fan_csv(record: Json) -> str:
-    """Write the fan chart as a table, one row a rotor speed; what is not known says so."""
-    reading = Reading(record)
-    found = panels(reading)
-    curves = [(panel.family, curve) for panel in found for curve in panel.curves]
-    harmonics = sorted({n for panel in found for n in panel.harmonics})
-    out = io.StringIO()
-    writer = csv.writer(out, lineterminator="\n")
-    writer.writerow(
-        [
-            "rotor speed [rpm]",
-            *(_column(family, curve) for family, curve in curves),
-            *(f"{n} per revolution [Hz]" for n in harmonics),
-        ]
-    )
-    speeds = curves[0][1].speed_rpm if curves else ()
-    for i, rpm in enumerate(speeds):
-        frequencies = [curve.frequency_hz[i] for _, curve in curves]
-        writer.writerow(
-            [
-                f"{rpm:.6g}",
-                *(texts.NOT_ASSESSED if f is None else f"{f:.6g}" for f in frequencies),
-                *(f"{n * rpm / 60.0:.6g}" for n in harmonics),
-            ]
-        )
-    return out.getvalue()
-
-
-def _column(family: str, curve: Curve) -> str:
-    """Head of a column: mode, what makes it doubtful, and the frame."""
-    return f"{curve.label}, {FRAMES[family]} [Hz]"
+    """Write the fan chart as tables of numbers; what is not known says so."""
+    return csv_text(Reading(record))
 
 
 def fan_boxes(reading: Reading, frame: Frame, title: str) -> list[Box]:

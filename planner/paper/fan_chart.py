@@ -2,13 +2,12 @@
 
 from __future__ import annotations
 
-import math
 from dataclasses import dataclass, replace
-from itertools import groupby
 from typing import TYPE_CHECKING
 
 from planner.paper.fan_foot import draw_foot, foot_height
 from planner.paper.fan_panels import Curve, panels
+from planner.paper.fan_rays import draw_rays, name_rays
 from planner.paper.ink import PLAIN, clipped
 from planner.paper.plot import DASHES, LABEL, Area, Plot, spread, text_width, ticks
 from planner.units import from_si
@@ -32,7 +31,10 @@ _LEAST_LABEL_GAP = 9.5
 _FEWEST_LABELS = 6
 _THICK, _THIN = 1.5, 0.8
 _FREQUENCY = "frequency [Hz]"
-_OVER_SHIFTED, _SQUEEZED, _NEARER = 1.08, 2.0, 1.6
+_OVER_SHIFTED, _SQUEEZED, _NEARER = 1.08, 2.0, 2.0
+_OVER_STAND, _OVER_ONCE = 1.3, 1.15
+"""Above its highest mode, and above once per revolution: where a stand panel is cut that shares
+its page, so that its lowest modes have height."""
 _ASTRAY = 20.0
 """How far a name may stand beside its band [pt]."""
 
@@ -64,6 +66,8 @@ def fan_drawing(reading: Reading, families: Iterable[str], width: float, height:
     top_rpm = _top_speed(reading)
     if len(found) == 1:
         found += _close_up(found[0], top_rpm)
+    else:
+        found = [_cut(panel, top_rpm) for panel in found]
     foot = foot_height(reading)
     plots = _plots(drawing, found, across, (foot, height), top_rpm)
     _name_bands(plots[0], reading)
@@ -116,6 +120,24 @@ def _close_up(panel: Panel, top_rpm: float) -> list[Panel]:
     return [replace(panel, title="The same, lowest frequencies", top_hz=top)]
 
 
+def _cut(panel: Panel, top_rpm: float) -> Panel:
+    """A stand panel without what lies above its own modes and once per revolution.
+
+    A mode above the highest harmonic at the highest speed, which nothing excites, does not count.
+    """
+    highest = max([*panel.harmonics, 1]) * top_rpm / 60.0
+    own = [
+        max(known)
+        for curve in panel.curves
+        if not curve.is_shifted and (known := [f for f in curve.frequency_hz if f is not None])
+    ]
+    excited = [f for f in own if f < highest]
+    if panel.family != "stand" or not excited:
+        return panel
+    top = max(_OVER_STAND * max(excited), _OVER_ONCE * top_rpm / 60.0)
+    return replace(panel, top_hz=min(top, _top_frequency(panel, top_rpm)))
+
+
 def _top_frequency(panel: Panel, top_rpm: float) -> float:
     if panel.top_hz:
         return panel.top_hz
@@ -153,8 +175,10 @@ def _draw_panel(plot: Plot, panel: Panel, reading: Reading) -> None:
     area = plot.area
     for band in reading.plan["keep_outs"]:
         plot.hatch(*(area.x(from_si(band[key], "rpm")) for key in ("from_rad_s", "to_rad_s")))
-    _draw_harmonics(plot, panel.harmonics)
+    draw_rays(plot, panel.harmonics)
     _draw_modes(plot, panel.curves)
+    lines = [run for curve in panel.curves for run in _inside(curve, area)]
+    name_rays(plot, panel.harmonics, lines)
     plot.border()
     for value, _ in ticks(*area.x_range):
         plot.line(((area.x(value), area.bottom), (area.x(value), area.bottom - 3.0)))
@@ -176,32 +200,15 @@ def _boxed(plot: Plot, place: Point, text: str) -> None:
     plot.text(place, text, "middle")
 
 
-def _draw_harmonics(plot: Plot, harmonics: Sequence[int]) -> None:
-    area = plot.area
-    top_rpm, top_hz = area.x_range[1], area.y_range[1]
-    for n in harmonics:
-        end_rpm = min(top_rpm, 60.0 * top_hz / n)
-        end = area.x(end_rpm), area.y(n * end_rpm / 60.0)
-        plot.line(((area.left, area.bottom), end), 0.5, grey=0.35)
-        label = f"{n}P"
-        # just inside the frame, so that ends at the top and at the right read alike
-        along = 1.0 - 15.0 / max(1.0, math.dist((area.left, area.bottom), end))
-        x = area.left + along * (end[0] - area.left) - 0.5 * text_width(label)
-        y = min(area.bottom + along * (end[1] - area.bottom) - 3.0, area.top - 11.0)
-        left, right = x - 1.0, x + text_width(label) + 1.0
-        plot.fill(((left, y - 2), (right, y - 2), (right, y + 8), (left, y + 8)), 1.0)
-        plot.text((x, y), label)
-
-
 def _draw_modes(plot: Plot, curves: Sequence[Curve]) -> None:
     area = plot.area
     labels: list[Label] = []
     for curve in curves:
         runs = _inside(curve, area)
+        step = max(1, len(curve.speed_rpm) // _MARKS)
         for run in runs:
             _stroke(plot, run, curve)
-            step = max(1, len(run) // _MARKS)
-            for place in run[step // 2 :: step]:
+            for place in run[min(step, len(run)) // 2 :: step]:
                 plot.marker(place, curve.style)
         if runs:
             end = runs[-1][-1]
@@ -248,15 +255,15 @@ def _draw_label(plot: Plot, label: Label, y: float) -> None:
 
 
 def _inside(curve: Curve, area: Area) -> list[list[Point]]:
-    """Stretches of a curve that are known and below the top of the chart."""
-    pairs = zip(curve.speed_rpm, curve.frequency_hz, strict=True)
-    stretches: list[list[Point]] = []
-    for visible, members in groupby(
-        pairs, key=lambda p: p[1] is not None and p[1] <= area.y_range[1]
-    ):
-        if visible:
-            stretches.append([(area.x(s), area.y(f)) for s, f in members if f is not None])
-    return stretches
+    """Stretches of a curve that are known, below the top of the chart and of one branch."""
+    stretches: list[list[Point]] = [[]]
+    for k, (rpm, hertz) in enumerate(zip(curve.speed_rpm, curve.frequency_hz, strict=True)):
+        if hertz is not None and hertz <= area.y_range[1]:
+            stretches[-1].append((area.x(rpm), area.y(hertz)))
+            if k not in curve.breaks:
+                continue
+        stretches.append([])
+    return [stretch for stretch in stretches if stretch]
 
 
 def _draw_uprights(plot: Plot, reading: Reading) -> None:

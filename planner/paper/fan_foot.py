@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from planner.paper import texts
+from planner.paper.fan_panels import breaks_of
 from planner.paper.plot import Area, Plot, time_scale
 from planner.units import from_si, to_si
 
@@ -16,6 +17,7 @@ if TYPE_CHECKING:
 _AXIS, _BARS, _BETWEEN, _TRACK, _OVER = 30.0, 42.0, 6.0, 62.0, 4.0
 _NOTE_FROM, _NOTE_STEP = 12.0, 11.5
 _GREY = 0.7
+_GAP = ("a gap: two modes", "exchange their names")
 _LEAST_BAR = 1.5
 """A bin that is passed in seconds shows too [pt]."""
 
@@ -72,8 +74,14 @@ def _draw_track(drawing: Drawing, room: Area, reading: Reading, *, has_bars: boo
         "one pass of each block;",
         "dots up: speeds that are held",
         *(() if has_bars else ("time at speed: not in this record",)),
+        *(_GAP if _has_gap(reading) else ()),
     )
     return plot
+
+
+def _has_gap(reading: Reading) -> bool:
+    fan = reading.record["series"]["fan"]
+    return any(breaks_of(mode) for mode in (*fan["modes"], *fan["shifted"]))
 
 
 def _draw_bars(drawing: Drawing, room: Area, reading: Reading, at_speed: Json) -> Plot:

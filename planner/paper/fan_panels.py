@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from itertools import count
 from typing import TYPE_CHECKING
 
 from planner.paper import texts
@@ -35,6 +34,8 @@ class Curve:
     """Picks dashes and markers, another for each curve of a panel."""
     is_shifted: bool = False
     """A blade mode as the stand sees it, drawn thin."""
+    breaks: frozenset[int] = frozenset()
+    """After these speeds the name goes over to another branch: the points are not joined."""
 
     @property
     def label(self) -> str:
@@ -66,14 +67,28 @@ def _panel(reading: Reading, family: str) -> Panel:
     speed = tuple(from_si(value, "rpm") for value in fan["speed_rad_s"])
     own = [mode for mode in fan["modes"] if mode["panel"] == family]
     seen = fan["shifted"] if family == "stand" else []
-    styles = count()
+    sources = [(mode, False) for mode in own] + [(mode, True) for mode in seen]
     curves = [
-        Curve(m["name"], speed, _hertz(m), _doubt(reading, m), next(styles)) for m in own
-    ] + [Curve(m["name"], speed, _hertz(m), "", next(styles), is_shifted=True) for m in seen]
+        Curve(
+            mode["name"],
+            speed,
+            _hertz(mode),
+            "" if is_shifted else _doubt(reading, mode),
+            style,
+            is_shifted=is_shifted,
+            breaks=breaks_of(mode),
+        )
+        for style, (mode, is_shifted) in enumerate(sources)
+    ]
     harmonics = tuple(int(n) for n in fan["harmonics"][family])
     missing = "" if own else _missing(reading, family)
     title = _title(reading, family, has_harmonics=bool(harmonics), has_shifted=bool(seen))
     return Panel(family, title, tuple(curves), harmonics, missing)
+
+
+def breaks_of(mode: Json) -> frozenset[int]:
+    """Speeds after which a mode's name goes over to another branch; older records have none."""
+    return frozenset(int(k) for k in mode.get("breaks") or ())
 
 
 def _hertz(mode: Json) -> tuple[float | None, ...]:

@@ -15,6 +15,7 @@ if TYPE_CHECKING:
 
 NOT_COMPUTED = f"{texts.NOT_ASSESSED} ({Status.NOT_COMPUTED.value})"
 NO_HAND = "—"
+EXEMPT = "exempt by damping"
 _NO_FINDING = {"limit": None, "verdict": Verdict.NOT_ASSESSED.value, "tested": 0}
 
 
@@ -40,7 +41,11 @@ def number_text(reading: Reading, quantity: str, row: Json | None) -> str:
 def missing_text(row: Json, why: str) -> str:
     """Say why a row has no number, by the record's own reason."""
     status = row["status"]
-    said = status if status not in {Status.OK.value, Status.NOT_APPLICABLE.value} else why
+    if is_absent(row):
+        return (
+            f"{texts.DOES_NOT_APPLY} ({row['reason']})" if row["reason"] else texts.DOES_NOT_APPLY
+        )
+    said = status if status != Status.OK.value else why
     parts = [part for part in (said, row["reason"]) if part and part != NO_HAND]
     return f"{texts.NOT_ASSESSED} ({': '.join(parts) or Status.NOT_COMPUTED.value})"
 
@@ -91,7 +96,27 @@ def _no_number(found: Sequence[tuple[Json, Json]]) -> str:
     if any(finding["verdict"] != Verdict.GO.value or finding["tested"] for finding, _ in found):
         return texts.NOT_ASSESSED
     is_exempt = all(rule["exempt_damping"] is not None for _, rule in found)
-    return "exempt by damping" if is_exempt else texts.DOES_NOT_APPLY
+    return EXEMPT if is_exempt else texts.DOES_NOT_APPLY
+
+
+def exempting_damping(reading: Reading, quantity: str, row: Json) -> str:
+    """Print the damping that exempts a row from every rule on it; empty where one judges it.
+
+    Only damping that was itself assessed counts, at its least, of the same mode and hold.
+
+    Args:
+        reading: the record.
+        quantity: that the rules are about.
+        row: of a hold.
+    """
+    asked = [rule["exempt_damping"] for rule in _rules(reading, quantity, "hold", row["mode"])]
+    place = (row["segment"], row["mode"])
+    damping = [d for d in reading.rows_of("mode_damping") if (d["segment"], d["mode"]) == place]
+    numbers = [d[key] for d in damping for key in ("value", "low", "high")]
+    known = all(d["status"] == Status.OK.value for d in damping) and None not in numbers
+    if not (asked and numbers and known) or None in asked or min(numbers) < max(asked):
+        return ""
+    return texts.number(min(numbers), "%", "down")
 
 
 def _rules(reading: Reading, quantity: str, part: str, mode: str) -> Iterator[Json]:

@@ -24,7 +24,7 @@ PAPERS = {"a4": (841.89, 595.28), "letter": (792.0, 612.0)}
 MARGIN_X = 28.0
 _MARGIN_TOP, _MARGIN_BOTTOM = 26.0, 24.0
 _HEADER, _FOOTER = 54.0, 16.0
-_FOOTING = (
+FOOTING = (
     "Planning aid. The facility's approved procedures, local codes and licensed practice decide."
 )
 
@@ -278,6 +278,6 @@ def _draw_banner(canvas: Canvas, frame: Frame, banner: Banner, page: str) -> Non
     foot = _MARGIN_BOTTOM + REFERENCE.leading - 4.0
     canvas.setLineWidth(0.3)
     canvas.line(MARGIN_X, foot + 1.0, right, foot + 1.0)
-    draw_lines(canvas, (_FOOTING,), REFERENCE, (MARGIN_X, foot))
+    draw_lines(canvas, (FOOTING,), REFERENCE, (MARGIN_X, foot))
     start = right - width_of(banner.maker, REFERENCE)
     draw_lines(canvas, (banner.maker,), REFERENCE, (start, foot))

@@ -18,6 +18,7 @@ from planner.paper.fan_words import (
     number_text,
 )
 from planner.paper.ink import BODY
+from planner.paper.passage_words import hand_or_why, peak_note
 from planner.paper.reading import ABORT
 from planner.paper.steps import band_text
 from planner.paper.tables import Table, fitted, plain_row, table_boxes
@@ -31,6 +32,14 @@ if TYPE_CHECKING:
 SWAY, PEAK, RATE = "passage_amplitude", "passage_peak_speed", "passage_rate_needed"
 _TIME, _TURNS = "band_time_total", "band_cycles_total"
 _ALL = "every passage"
+_ONCE_ONLY = (
+    "Amplitudes are of stand modes at once per revolution only, for nobody knows the force at the "
+    "blade number: crossings at the blade number, and those of blade and shaft modes, are listed "
+    "in the fan document without amplitude, and holds keep away from them."
+)
+_NO_LEAST = "no least rate"
+_STAYS = f"{_NO_LEAST}: steady sway stays below the rating at the stated damping"
+_NO_LEAVE = " No least rate is no leave to dwell: bands are passed without stopping."
 
 
 @dataclass(frozen=True)
@@ -63,7 +72,7 @@ def _passage_boxes(reading: Reading, frame: Frame) -> list[Box]:
         words = f"Sway of the hub while a stand mode is passed: {reason}."
         return [paragraph(words, frame.width, BODY.bold)]
     table = Table(
-        frame.shares(29, 14, 20, 11, 17, 9),
+        frame.shares(28, 13, 19, 10, 18, 12),
         ("Passage", "Stand mode", "Sway to one side", "Limit", "Peak at", "Hand check"),
     )
     found = [plain_row("\n".join(one.places), one.mode, *one.said) for one in passages(reading)]
@@ -85,7 +94,8 @@ def _passage_key(reading: Reading) -> str:
         "Each stand mode is driven once per revolution through the ramp, stop or abort as it is "
         f"planned; unbalance: {unbalance}. Of aborts the worst for each mode and cause. Running "
         "up the peak comes above the resonance, running down below it. Brackets: range over the "
-        "allowances. Hand check: a published estimate for an even rate."
+        "allowances. Hand check: a published estimate for an even rate. "
+        f"{_ONCE_ONLY}"
     )
 
 
@@ -135,7 +145,8 @@ def _badness(reading: Reading, row: Json) -> tuple[bool, float]:
 
 
 def _said(reading: Reading, row: Json) -> tuple[str, ...]:
-    part = ABORT if row["state"] else _segment(reading, row["segment"])["kind"]
+    segment = _segment(reading, row["segment"])
+    part = ABORT if row["state"] else segment["kind"]
     limit = limit_text(reading, SWAY, part, row["mode"])
     if not reading.shown_row(SWAY, row).is_number:
         return (number_text(reading, SWAY, row), limit, NO_HAND, NO_HAND)
@@ -143,11 +154,12 @@ def _said(reading: Reading, row: Json) -> tuple[str, ...]:
     peak = next(
         (r for r in reading.rows_of(PEAK) if all(r[key] == row[key] for key in place)), None
     )
+    note = peak_note(reading, row["mode"], peak)
     return (
         number_text(reading, SWAY, row),
         limit,
-        number_text(reading, PEAK, peak),
-        hand_text(reading, SWAY, row),
+        "\n".join(filter(None, (number_text(reading, PEAK, peak), note))),
+        hand_or_why(reading, row, segment),
     )
 
 
@@ -175,13 +187,13 @@ def _rate_boxes(reading: Reading, frame: Frame) -> list[Box]:
         f", {texts.limit(rating, 'mm', 'at most')}." if rating is not None else "."
     )
     table = Table(frame.shares(34, 46, 20), ("Stand mode", "Rate of run-up needed", "Hand check"))
+    found = reading.rows_of(RATE)
+    said += _NO_LEAVE if any(_rate_text(reading, row) == _STAYS for row in found) else ""
     rows = [
         plain_row(
-            row["mode"] or "all stand modes",
-            _rate_text(reading, row),
-            hand_text(reading, RATE, row),
+            row["mode"] or "all stand modes", _rate_text(reading, row), _rate_hand(reading, row)
         )
-        for row in reading.rows_of(RATE)
+        for row in found
     ]
     return [
         heading("Rate of run-up needed", frame.width, level=1),
@@ -195,12 +207,18 @@ def _rate_text(reading: Reading, row: Json) -> str:
     if not shown.is_number:
         return number_text(reading, RATE, row)
     if shown.high <= 0.0:
-        return "any rate: even standing on the resonance stays below"
+        return _STAYS
     unit = reading.vocabulary[RATE]["unit"]
     value = texts.number(shown.value, unit, "up")
     if shown.low == shown.high:
         return value
     return f"{value} ({texts.span(shown.low, shown.high, unit)})"
+
+
+def _rate_hand(reading: Reading, row: Json) -> str:
+    """The hand check of a rate; a rate of zero is none."""
+    hand = row["hand"]
+    return _NO_LEAST if hand is not None and hand <= 0.0 else hand_text(reading, RATE, row)
 
 
 def _band_boxes(reading: Reading, frame: Frame) -> list[Box]:

@@ -51,7 +51,7 @@ def run(inputs: Inputs) -> Mapping[str, Prediction]:
     found = tracks(inputs, _joined(hold_lanes(holds, inputs), fan_lanes(inputs)))
     over_fan = [track.at(slice(CORNERS * len(holds), None)) for track in found]
     rows = {q: Rows(q, _ID) for q in (*AT_HOLDS, "crossing_speed", "fixed_frame_spacing")}
-    _crossing_rows(rows["crossing_speed"], over_fan, fan)
+    crossing_rows(rows["crossing_speed"], over_fan, fan)
     for i, hold in enumerate(holds):
         lanes = slice(CORNERS * i, CORNERS * (i + 1))
         here = [track.at(lanes) for track in found]
@@ -159,7 +159,7 @@ def _spacing_rows(rows: Rows, track: Track, label: Labels, at: _At) -> None:
         )
 
 
-def _crossing_rows(rows: Rows, tracks: Sequence[Track], speed: FloatArray) -> None:
+def crossing_rows(rows: Rows, tracks: Sequence[Track], speed: FloatArray) -> None:
     """Blade modes along their branches, the others along their own curves."""
     for track in tracks:
         if track.status is not Status.OK:

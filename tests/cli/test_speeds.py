@@ -53,6 +53,17 @@ def test_each_hold_is_told_with_speeds_reasons_and_reservation(advised):
     assert sum("keep-out-distance" in line for line in lines) >= 2
 
 
+def test_hold_that_is_not_assessed_says_why_no_speed_was_looked_for(advised):
+    why = "stand-spacing: the stand file does not say whether the rotor's mass was fitted"
+    one = Advice("1.1h", 500.0 * RPM, Verdict.NOT_ASSESSED, REASONS, open_for=(why,))
+    advised(one, one)
+    result = call(SAMPLE)
+    assert result.exit_code == 4
+    assert result.stdout.count("not looked for  ") == 4
+    assert " ".join(result.stdout.split()).count(why) == 1
+    assert max(len(line) for line in result.stdout.splitlines()) <= 80
+
+
 @pytest.mark.parametrize(
     ("verdicts", "status"),
     [

@@ -156,6 +156,17 @@ def test_rule_that_ends_above_a_speed_makes_it_no_better(advised, run_predict):
     assert advised[BETWEEN_RULES].below is None
 
 
+def test_hold_whose_rules_are_not_assessed_is_told_no_other_speed():
+    plan = held_at(930.0)
+    modes = tuple(dataclasses.replace(mode, rotor_fitted=None) for mode in plan.stand.modes)
+    stand = dataclasses.replace(plan.stand, modes=modes)
+    (advice,) = advise(dataclasses.replace(plan, stand=stand))
+    assert advice.verdict is not Verdict.GO
+    assert {"torsion-spacing", "stand-spacing"} <= set(advice.reasons)
+    assert (advice.below, advice.above) == (None, None)
+    assert any("whether the rotor's mass was fitted" in reason for reason in advice.open_for)
+
+
 def test_plan_where_all_is_well_needs_no_advice():
     assert advise(held_at(*SOUND)) == ()
 

@@ -8,8 +8,11 @@ import math
 import pytest
 
 from planner.model.plan import ABORT_CAUSES, KeepOut, segments
-from planner.model.results import Status
-from planner.predict.band_rows import inside
+from planner.model.results import Labels, Status
+from planner.predict.band_rows import inside, total_rows
+from planner.predict.rows import Rows
+from planner.predict.run_down_events import Event
+from planner.predict.study_schedule import least_rate_rad_s2
 from tests.predict.rows import row, rows
 
 RPM = 2.0 * math.pi / 60.0
@@ -22,6 +25,33 @@ def test_turns_of_an_even_ramp_are_its_mean_speed_times_its_time(articulated):
     seconds, turns = inside(ramp, band)
     assert seconds == pytest.approx(2.5)
     assert turns == pytest.approx(127.0 / 60.0 * 2.5)
+
+
+def test_own_run_up_counts_by_its_course_not_by_its_mean(articulated):
+    """Slow through the band and quick beyond it: 4 s at 127 rpm on the way of 10 s."""
+    ramp = next(s for s in segments(articulated) if s.id == "1.2r")
+    low, high = 112.0 * RPM, 142.0 * RPM
+    course = ((0.0, ramp.from_rad_s), (3.0, low), (7.0, high), (10.0, ramp.to_rad_s))
+    own = dataclasses.replace(ramp, own_run_up=True, duration_s=10.0, course=course)
+    band = KeepOut("S1", low, high, "x")
+    seconds, turns = inside(own, band)
+    assert seconds == pytest.approx(4.0)
+    assert turns == pytest.approx(127.0 / 60.0 * 4.0)
+    assert least_rate_rad_s2(own, band) == pytest.approx(30.0 * RPM / 4.0)
+
+
+def test_stop_whose_run_down_was_not_found_leaves_the_total_open(articulated):
+    band = articulated.keep_outs[0]
+    walk = segments(articulated)
+    failed = Event(
+        Labels(segment="stop"), 30.0, status=Status.NOT_CONVERGED, reason="torque did not converge"
+    )
+    rows = {q: Rows(q, "speeds") for q in ("band_time_total", "band_cycles_total")}
+    total_rows(rows, [(failed, None)], (walk, [band]), 2)
+    for filled in rows.values():
+        found = filled.prediction()
+        assert found.status == (Status.NOT_CONVERGED,)
+        assert found.reasons == ("torque did not converge",)
 
 
 def test_total_is_schedule_stop_and_the_worst_aborts_with_their_ways_back(articulated, predicted):

@@ -40,8 +40,8 @@ def test_blades_that_move_alike_do_not_shake_the_stand_sideways(predicted):
     assert modes == {f"{family} {n} cyclic" for family in ("flap", "lag") for n in (1, 2)}
 
 
-def test_stand_without_modes_leaves_nothing_to_compare(articulated, run_predict):
+def test_stand_that_states_no_modes_leaves_the_comparison_open(articulated, run_predict):
     bare = dataclasses.replace(articulated.stand, modes=())
     found = run_predict(dataclasses.replace(articulated, stand=bare), "modes")
     spacing = found["fixed_frame_spacing"]
-    assert {spacing.status[i] for i in rows(spacing, mode="lag 1")} == {Status.NOT_APPLICABLE}
+    assert {spacing.status[i] for i in rows(spacing, mode="lag 1")} == {Status.NOT_STATED}

@@ -95,7 +95,8 @@ def test_cut_whose_run_down_was_not_found_counts_against_its_ramp(articulated):
     ends = with_allowance(np.array([W]), (0.97, 1.03))
     mode = StandMode("stand lateral", ends, ZETA, MASS)
     cut = Cut(ramp, mode.label, failed)
-    worst = worst_of_cuts([(cut, failed, None)], mode)["1.2r", COMMANDED]
+    variants = (np.array([W]), np.array([ZETA]))
+    worst = worst_of_cuts([(cut, failed, None)], mode, variants)["1.2r", COMMANDED]
     assert (worst.status, worst.reason) == (Status.NOT_CONVERGED, "torque did not converge")
     absent = dataclasses.replace(failed, status=Status.NOT_APPLICABLE)
-    assert worst_of_cuts([(cut, absent, None)], mode) == {}
+    assert worst_of_cuts([(cut, absent, None)], mode, variants) == {}

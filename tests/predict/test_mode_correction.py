@@ -52,11 +52,22 @@ def test_allowance_is_narrower_between_the_speeds_where_a_mode_was_measured(
     assert widths[2] > 0.9 * widths[1]
 
 
-def test_measurement_of_another_mode_is_refused_in_words(articulated, run_predict):
+def test_measurement_of_another_mode_is_refused_in_words_and_leaves_the_others(
+    articulated, run_predict
+):
     tap = MeasuredMode("torsion 1", 55.9 * HZ, 0.0, 0.0, 0.01, "x")
     found = run_predict(measured(articulated, tap), "modes")
-    assert set(found["harmonic_spacing"].status) == {Status.OUTSIDE_VALIDITY}
-    assert "check which mode it is" in found["harmonic_spacing"].reasons[0]
+    for quantity in ("harmonic_spacing", "mode_frequency"):
+        rows = found[quantity]
+        refused = {
+            label.mode
+            for label, status in zip(rows.labels, rows.status, strict=True)
+            if status is Status.OUTSIDE_VALIDITY
+        }
+        assert refused == {"torsion 1"}
+        own = [i for i, label in enumerate(rows.labels) if label.mode == "torsion 1"]
+        assert {rows.status[i] for i in own} == {Status.OUTSIDE_VALIDITY}
+        assert all("check which mode it is" in rows.reasons[i] for i in own)
 
 
 def test_plan_without_measurements_says_so(sample, run_predict):
