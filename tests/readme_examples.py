@@ -24,7 +24,7 @@ MOVED = ('rpm = "90 % rpm"', 'rpm = "70 % rpm"')
 
 
 def prepare(folder: pathlib.Path) -> None:
-    """Lay out a folder like the repository's, with a broken and a moved plan beside the samples."""
+    """Lay out a folder like the repository's, a broken and a moved plan beside the samples."""
     shutil.copytree(ROOT / "rules", folder / "rules")
     shutil.copytree(ROOT / "sample_plans", folder / "sample_plans")
     broken = folder / "sample_plans" / "broken"

@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from planner.paper import texts
 from planner.paper.boxes import Box, gap, heading, paragraph
+from planner.paper.fan_panels import panels
 from planner.paper.fan_words import NOT_COMPUTED, harmonic_text, is_absent, missing_text
 from planner.paper.ink import BODY, REFERENCE
 from planner.paper.tables import Row, Table, fitted, plain_row, table_boxes
@@ -52,13 +53,13 @@ def _of(
     reading: Reading, rows: Sequence[Json], *, given: bool
 ) -> dict[str, dict[str, list[str] | None]]:
     """Crossings by mode and harmonic, of the blades or of what stands still; None: none found."""
-    fan = reading.record["series"]["fan"]
     found: dict[str, dict[str, list[str] | None]] = {}
-    for mode in fan["modes"]:
-        is_known = not mode["doubt"] and None not in mode["frequency_rad_s"]
-        if is_known and (mode["panel"] in _GIVEN) is given and not _is_open(rows, mode["name"]):
-            asked = (str(n) for n in fan["harmonics"][mode["panel"]])
-            found[mode["name"]] = dict.fromkeys(asked)
+    for panel in panels(reading):
+        own = (c for c in panel.curves if not c.is_shifted and (panel.family in _GIVEN) is given)
+        for curve in own:
+            is_known = texts.NOT_ASSESSED not in curve.doubt and None not in curve.frequency_hz
+            if is_known and not _is_open(rows, curve.name):
+                found[curve.name] = dict.fromkeys(map(str, panel.harmonics))
     for row in rows:
         if row["mode"] and row["harmonic"] and _is_given(row["mode"]) is given:
             cells = found.setdefault(row["mode"], {})

@@ -177,7 +177,7 @@ def _draw_panel(plot: Plot, panel: Panel, reading: Reading) -> None:
         plot.hatch(*(area.x(from_si(band[key], "rpm")) for key in ("from_rad_s", "to_rad_s")))
     draw_rays(plot, panel.harmonics)
     _draw_modes(plot, panel.curves)
-    lines = [run for curve in panel.curves for run in _inside(curve, area)]
+    lines = [run for curve in panel.curves for run in stretches(curve, area)]
     name_rays(plot, panel.harmonics, lines)
     plot.border()
     for value, _ in ticks(*area.x_range):
@@ -204,7 +204,7 @@ def _draw_modes(plot: Plot, curves: Sequence[Curve]) -> None:
     area = plot.area
     labels: list[Label] = []
     for curve in curves:
-        runs = _inside(curve, area)
+        runs = stretches(curve, area)
         step = max(1, len(curve.speed_rpm) // _MARKS)
         for run in runs:
             _stroke(plot, run, curve)
@@ -254,16 +254,16 @@ def _draw_label(plot: Plot, label: Label, y: float) -> None:
     plot.text((start + 31.0, y - 3.0), clipped(label.text, LABEL, _RIGHT - 46.0))
 
 
-def _inside(curve: Curve, area: Area) -> list[list[Point]]:
+def stretches(curve: Curve, area: Area) -> list[list[Point]]:
     """Stretches of a curve that are known, below the top of the chart and of one branch."""
-    stretches: list[list[Point]] = [[]]
+    found: list[list[Point]] = [[]]
     for k, (rpm, hertz) in enumerate(zip(curve.speed_rpm, curve.frequency_hz, strict=True)):
         if hertz is not None and hertz <= area.y_range[1]:
-            stretches[-1].append((area.x(rpm), area.y(hertz)))
+            found[-1].append((area.x(rpm), area.y(hertz)))
             if k not in curve.breaks:
                 continue
-        stretches.append([])
-    return [stretch for stretch in stretches if stretch]
+        found.append([])
+    return [stretch for stretch in found if stretch]
 
 
 def _draw_uprights(plot: Plot, reading: Reading) -> None:

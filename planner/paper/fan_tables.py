@@ -164,24 +164,29 @@ def _real(rows: list[Json]) -> list[Json]:
 
 def _absent_texts(reading: Reading, absent: dict[tuple[str, str], list[Json]]) -> list[str]:
     """One sentence for each reason why pairs need no distance, with the distance all the same."""
-    unit = reading.vocabulary[SPACING]["unit"] if absent else ""
     said: dict[str, dict[str, list[str]]] = {}
     for (mode, against), rows in absent.items():
-        known = [row["low"] for row in rows if row["low"] is not None]
-        number = f" ({texts.number(min(known), unit, 'down')})" if known else ""
-        stand, _, side = (against or "stand modes").partition(", ")
-        seen = f"{stand}, {side.replace(' ', texts.GLUE)}" if side else stand
         modes = said.setdefault(rows[0]["reason"], {})
-        modes.setdefault(mode or "all blade modes", []).append(
-            f"{against or 'stand modes'}{number}"
-        )
+        named = modes.setdefault(mode or "all blade modes", [])
+        named.append(_absent_pair(reading, against, rows))
     return [
         texts.sentence(
-            f"Does not apply ({reason}; least distances for information): "
+            f"Does not apply ({reason}): "
             + "; ".join(f"{mode} against {', '.join(pairs)}" for mode, pairs in modes.items())
         )
         for reason, modes in said.items()
     ]
+
+
+def _absent_pair(reading: Reading, against: str, rows: list[Json]) -> str:
+    """What a mode is seen against, with the least distance that nobody judges."""
+    stand, _, side = (against or "stand modes").partition(", ")
+    seen = f"{stand} {side.replace(' ', texts.GLUE)}".strip()
+    known = [row["low"] for row in rows if row["low"] is not None]
+    if not known:
+        return seen
+    unit = reading.vocabulary[SPACING]["unit"]
+    return f"{seen} (for information {texts.number(min(known), unit, 'down')})"
 
 
 def _pair_row(reading: Reading, pair: tuple[str, str], real: list[Json]) -> Row:

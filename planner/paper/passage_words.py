@@ -36,7 +36,7 @@ def peak_note(reading: Reading, mode: str, peak: Json | None) -> str:
     if not own:
         return "peak outside every band"
     names = ", ".join(str(band["id"]) for band in own)
-    return f"{'range reaches' if around else 'peak'} outside band {names}"
+    return f"{'partly' if around else 'peak'} outside band {names}"
 
 
 def _holds(band: Json, speed_rad_s: float) -> bool:

@@ -32,6 +32,7 @@ if TYPE_CHECKING:
 SWAY, PEAK, RATE = "passage_amplitude", "passage_peak_speed", "passage_rate_needed"
 _TIME, _TURNS = "band_time_total", "band_cycles_total"
 _ALL = "every passage"
+_ABORT = "abort from "
 _ONCE_ONLY = (
     "Amplitudes are of stand modes at once per revolution only, for nobody knows the force at the "
     "blade number: crossings at the blade number, and those of blade and shaft modes, are listed "
@@ -72,10 +73,10 @@ def _passage_boxes(reading: Reading, frame: Frame) -> list[Box]:
         words = f"Sway of the hub while a stand mode is passed: {reason}."
         return [paragraph(words, frame.width, BODY.bold)]
     table = Table(
-        frame.shares(28, 13, 19, 10, 18, 12),
+        frame.shares(26, 13, 18, 9, 24, 10),
         ("Passage", "Stand mode", "Sway to one side", "Limit", "Peak at", "Hand check"),
     )
-    found = [plain_row("\n".join(one.places), one.mode, *one.said) for one in passages(reading)]
+    found = [plain_row(_joined(one.places), one.mode, *one.said) for one in passages(reading)]
     boxes: list[Box] = [
         paragraph(_passage_key(reading), frame.width, keep_next=bool(found)),
         gap(3.0),
@@ -96,6 +97,18 @@ def _passage_key(reading: Reading) -> str:
         "up the peak comes above the resonance, running down below it. Brackets: range over the "
         "allowances. Hand check: a published estimate for an even rate. "
         f"{_ONCE_ONLY}"
+    )
+
+
+def _joined(places: tuple[str, ...]) -> str:
+    """Places of one line; causes of aborts from one place share its name."""
+    together: dict[str, list[str]] = {}
+    for place in places:
+        start, _, rest = place.partition(", ")
+        together.setdefault(start if rest and start.startswith(_ABORT) else place, []).append(rest)
+    return "\n".join(
+        f"{start}: {', '.join(causes)}" if start not in places else start
+        for start, causes in together.items()
     )
 
 
@@ -172,7 +185,7 @@ def _segment(reading: Reading, segment_id: str) -> Json:
 def _place(reading: Reading, row: Json) -> str:
     """Where a passage lies, in words."""
     if row["state"]:
-        return f"abort from {row['segment'] or 'anywhere'}, {row['state']}"
+        return f"{_ABORT}{row['segment'] or 'anywhere'}, {row['state']}"
     segment = _segment(reading, row["segment"])
     if "from_rad_s" not in segment:
         return str(row["segment"] or _ALL)

@@ -1,20 +1,22 @@
 from __future__ import annotations
 
-import csv
 import io
 import itertools
-from xml.etree import ElementTree
 
 import pypdf
 import pytest
-from reportlab.graphics.shapes import Group, PolyLine
+from reportlab.graphics.shapes import Drawing, Polygon, PolyLine
 
+from planner.paper.card import card_pdf
 from planner.paper.fan import fan_boxes, fan_csv, fan_pdf, fan_svg
-from planner.paper.fan_chart import fan_drawing
+from planner.paper.fan_chart import fan_drawing, stretches
 from planner.paper.fan_panels import FAMILIES, counts_rotor, panels
+from planner.paper.fan_rays import name_rays
+from planner.paper.fan_tables import measured_boxes
+from planner.paper.fan_words import exempting_damping
 from planner.paper.pages import frame_for, paginate
+from planner.paper.plot import Area, Plot
 from planner.paper.reading import Reading
-from planner.paper.texts import UnprintableError
 from tests.paper.sample_record import Json, sample_record, without_panels
 from tests.paper.test_charts import labels, words
 
@@ -222,7 +224,9 @@ def test_pdf_prints_a_page_a_panel_and_tables(paper: str) -> None:
         assert "frequency [Hz]" in pages[number - 1]
     rest = " ".join(pages[3:])
     assert pages[3].count("Passing resonances") == 1
-    assert "flap 1 1 per rev 292 rpm (282 to 302 rpm)" in rest
+    assert "Mode 1 per rev 2 per rev 3 per rev" in rest
+    assert "flap 1 292 (282–302) — — —" in rest
+    assert "stand rocking 150 (145–156) — — — shaft first" in rest
 
 
 def test_pdf_tells_measurements_beside_the_correction() -> None:
@@ -253,53 +257,119 @@ def test_pdf_tells_the_nearest_hold_of_each_pair_or_what_is_missing() -> None:
     for row in rows:
         row.update(status="does not apply", mode="", harmonic="", reason="there is no stand mode")
     text = " ".join(flat(fan_pdf(record))[3:])
-    assert "all blade modes stand modes NOT ASSESSED (there is no stand mode)" in text
+    assert "Does not apply (there is no stand mode): all blade modes against stand modes" in text
+
+
+def test_pairs_that_do_not_apply_share_a_sentence_with_their_numbers() -> None:
+    record = sample_record(2)
+    for row in record["predictions"]["fixed_frame_spacing"]["rows"]:
+        if row["harmonic"].endswith("Ω + ω"):
+            row.update(status="does not apply", reason="seen ahead", low=0.1234)
+    text = " ".join(flat(fan_pdf(record))[3:])
+    assert (
+        "Does not apply (seen ahead): lag 1 against stand rocking Ω + ω (for information" in text
+    )
+    assert "(for information 12.3 %)." in text
+    assert "NOT ASSESSED (seen ahead" not in text
+
+
+def test_exempting_damping_is_printed_and_a_hold_that_is_judged_comes_first() -> None:
+    record = sample_record(3)
+    first = record["plan"]["rule_book"]["rules"][0]
+    record["plan"]["rule_book"]["rules"].append(
+        {**first, "id": "shifted", "quantity": "fixed_frame_spacing", "where": ["hold"],
+         "mode_family": "lag", "mode_orders": [1], "exempt_damping": 0.1, "unit": "%"}
+    )  # fmt: skip
+    record["findings"].append({**record["findings"][0], "rule": "shifted", "limit": 0.05})
+    rows = record["predictions"]["fixed_frame_spacing"]["rows"]
+    holds = list(dict.fromkeys(row["segment"] for row in rows))
+    made = [
+        {**rows[0], "segment": hold, "mode": "lag 1", "harmonic": "", "value": d, "low": d - 0.01,
+         "high": d, "hand": None}
+        for hold, d in zip(holds, (0.31, 0.21, 0.105), strict=True)
+    ]  # fmt: skip
+    record["predictions"]["mode_damping"] = {"study": "sample", "rows": made}
+    reading = Reading(record)
+    told = [exempting_damping(reading, "fixed_frame_spacing", row) for row in rows[::2]]
+    assert [text.replace("\xa0", " ") for text in told] == ["30.0 %", "20.0 %", ""]
+    text = " ".join(flat(fan_pdf(record))[3:])
+    assert f"{holds[2]} at least 5 %" in text
+    made[2].update(low=0.1)
+    text = " ".join(flat(fan_pdf(record))[3:])
+    assert "exempt by damping 30.0 %" in text
+    assert "Damping that exempts counts dampers in order." in text
+
+
+def test_modes_without_crossings_and_those_unknown_are_told_apart() -> None:
+    record = sample_record(2)
+    rows = record["predictions"]["crossing_speed"]["rows"]
+    rows += [{**rows[0], "value": 20.0, "low": 20.0, "high": 20.0}]
+    flag = {"harmonic": "", "status": "not stated", "reason": "no mass", "value": None}
+    rows += [{**rows[0], **flag, "mode": "stand twist"}]
+    text = " ".join(flat(fan_pdf(record))[3:])
+    assert "flap 1 292 (282–302) 191 — — —" in text
+    assert "flap 3 — — — — — — — —" in text
+    assert "stand twist: NOT ASSESSED (not stated: no mass)." in text
+    assert "stand twist —" not in text
+
+
+def test_card_lists_measured_frequencies_only_where_there_are_any() -> None:
+    record = sample_record(2)
+    frame = frame_for("a4")
+    assert not measured_boxes(Reading(record), frame, is_short=True)
+    one = {"mode": "flap 2", "frequency_rad_s": 22.0, "speed_rad_s": 0.0, "collective_rad": 0.0,
+           "accuracy": 0.01, "source": "rap test"}  # fmt: skip
+    record["plan"]["rotor"]["measured_modes"] = [one]
+    text = " ".join(flat(card_pdf(record)))
+    assert "Mode Measured Correction Left open flap 2 3.5014 Hz ± 1 % at rest, pitch 0°" in text
+    assert "below the lowest the rule book's allowance on the uncorrected model counts too" in text
+    record["predictions"]["frequency_correction"]["rows"] = []
+    row = record["predictions"]["crossing_speed"]["rows"][0]
+    row = {**row, "mode": "flap 2", "status": "outside validity", "reason": "30 % apart"}
+    record["predictions"]["mode_frequency"] = {"study": "sample", "rows": [row]}
+    text = " ".join(flat(fan_pdf(record))[3:])
+    assert "NOT ASSESSED (outside validity: 30 % apart)" in text
+
+
+def test_a_name_that_goes_over_to_another_branch_leaves_a_gap() -> None:
+    record = sample_record(2)
+    assert "a gap: two modes" not in drawn(record)
+    for mode in (curve(record, "flap 2"), record["series"]["fan"]["shifted"][0]):
+        mode["breaks"] = [0, 19]
+    assert {"a gap: two modes", "exchange their names"} <= set(drawn(record))
+    for family, name in (("blade", "flap 2"), ("stand", "lag 1, Ω - ω")):
+        (panel,) = panels(Reading(record), (family,))
+        broken = next(c for c in panel.curves if c.name == name)
+        area = Area(0.0, 0.0, 500.0, 300.0, (0.0, 500.0), (0.0, 1e3))
+        assert [len(piece) for piece in stretches(broken, area)] == [1, 19, 21]
+
+
+def test_names_of_rays_keep_off_curves_where_they_can_and_lie_above_them() -> None:
+    drawing = Drawing(500.0, 300.0)
+    plot = Plot(drawing, Area(0.0, 0.0, 500.0, 300.0, (0.0, 300.0), (0.0, 12.0)))
+    curve_ = [(0.0, 100.0), (300.0, 110.0), (500.0, 125.0)]  # ends where the ray 1P ends
+    name_rays(plot, (1, 2), [curve_])
+    places = {label.text: (label.x, label.y) for label in labels(drawing)}
+    assert places["1P"][1] + 8.0 < 110.0 + (places["1P"][0] - 300.0) * 15.0 / 200.0
+    assert places["2P"][1] > 200.0
+    everywhere = [[(0.0, y), (500.0, y)] for y in range(0, 300, 4)]
+    name_rays(plot, (1,), everywhere)
+    assert labels(drawing)[-1].x > 460.0
+    assert isinstance(drawing.contents[-2], Polygon)
+
+
+def test_stand_panel_that_shares_a_page_is_cut_above_its_own_modes() -> None:
+    record = sample_record(2)
+    curve(record, "stand twist")["frequency_rad_s"] = [900.0] * 41
+    drawing = fan_drawing(Reading(record), (*STAND, *SHAFT), 760.0, 420.0)
+    assert "stand twist: above the chart" in words(drawing)
+    titles = {label.text: label.y for label in labels(drawing)}
+    stand = next(y for text, y in titles.items() if text.startswith("Stand modes"))
+    rocking, shaft = (titles[name] for name in ("stand rocking", "Shaft modes, torsion"))
+    assert 0.2 < (rocking - shaft) / (stand - shaft) < 0.4
 
 
 def test_pdf_without_crossings_says_so() -> None:
     record = sample_record(2)
     del record["predictions"]["crossing_speed"]
     assert "Crossing speeds: NOT ASSESSED (not computed)." in " ".join(flat(fan_pdf(record)))
-
-
-def test_svg_has_three_panels_and_text_stays_text() -> None:
-    record = sample_record(2)
-    record["series"]["fan"]["modes"][0]["name"] = '<script>x</script>&"'
-    root = ElementTree.fromstring(fan_svg(record))  # noqa: S314  # made here
-    assert not [node for node in root.iter() if node.tag.endswith("script")]
-    found = [node.text or "" for node in root.iter()]
-    assert any('<script>x</script>&"' in text for text in found)
-    assert sum(text.strip() == "rotor speed [rpm]" for text in found) == 3
-    assert float(root.attrib["height"]) > 3 * 400.0
-
-
-def test_panels_of_the_svg_keep_to_their_places() -> None:
-    for families in (BLADE, STAND, SHAFT):
-        part = fan_drawing(Reading(sample_record(2)), families, 900.0, 460.0)
-        left, bottom, right, top = Group(*part.contents).getBounds()
-        assert (left >= 0.0, bottom >= 0.0, right <= 900.0, top <= 462.0) == (True,) * 4
-
-
-def test_svg_refuses_unprintable_text() -> None:
-    record = sample_record(2)
-    record["series"]["fan"]["modes"][0]["name"] = "a\u202eb"
-    with pytest.raises(UnprintableError, match=r"U\+202E"):
-        fan_svg(record)
-
-
-def test_csv_has_units_and_frames_and_says_what_is_missing() -> None:
-    record = sample_record(2)
-    curve(record, "flap 2")["frequency_rad_s"][3] = None
-    rows = list(csv.reader(io.StringIO(fan_csv(record))))
-    assert rows[0][:3] == [
-        "rotor speed [rpm]", "flap 1, turning frame [Hz]", "flap 2, turning frame [Hz]"
-    ]  # fmt: skip
-    for head in ("stand twist (NOT ASSESSED), fixed frame [Hz]", "shaft first, torsion [Hz]",
-                 "lag 1, Ω + ω, fixed frame [Hz]", "1 per revolution [Hz]"):  # fmt: skip
-        assert head in rows[0]
-    assert rows[4][2] == "NOT ASSESSED"
-    assert len({len(row) for row in rows}) == 1
-    seen = rows[0].index("lag 1, Ω + ω, fixed frame [Hz]")
-    assert float(rows[-1][seen]) == pytest.approx(1.3 * float(rows[-1][0]) / 60.0, rel=1e-5)
-    assert rows[0][-1] == "12 per revolution [Hz]"
-    assert float(rows[-1][-1]) == pytest.approx(12.0 * float(rows[-1][0]) / 60.0, rel=1e-5)

@@ -8,6 +8,7 @@ from planner.model.plan import ABORT_CAUSES
 from planner.paper.boxes import Lines
 from planner.paper.fan_words import limit_text
 from planner.paper.pages import frame_for, paginate
+from planner.paper.passage_words import IN_ONE, hand_or_why, peak_note
 from planner.paper.reading import Reading
 from planner.paper.resonance_page import not_passed, passages, resonance_boxes
 from planner.paper.tables import TableRow
@@ -56,10 +57,51 @@ def test_ramps_and_stop_are_listed_and_the_worst_abort_of_each_cause() -> None:
         *(f"abort from 1.1r, {cause}" for cause in ABORT_CAUSES if cause != ABORT_CAUSES[1]),
     }
     assert found["1.1r, rest to 247.62\xa0rpm"] == (
-        "stand rocking", "6.00 mm (5.40 to 6.60 mm)", "no limit", "146 rpm (131 to 161 rpm)",
-        "6.24 mm",
+        "stand rocking", "6.00 mm (5.40 to 6.60 mm)", "no limit",
+        "146 rpm (131 to 161 rpm)\npartly outside band K1", "6.24 mm",
     )  # fmt: skip
     assert found[frozen_place][1] == "6.00 mm (5.40 to 8.10 mm)"
+
+
+def test_page_says_that_amplitudes_are_of_stand_modes_once_per_revolution_only() -> None:
+    assert "of stand modes at once per revolution only, for nobody knows" in said(sample_record(2))
+
+
+@pytest.mark.parametrize(
+    ("speeds_rpm", "has_bands", "words"),
+    [
+        ((146.0, 142.0, 150.0), True, ""),
+        ((146.0, 138.0, 150.0), True, "partly outside band K1"),
+        ((138.0, 135.0, 140.0), True, "peak outside band K1"),
+        ((138.0, 135.0, 140.0), False, "peak outside every band"),
+    ],
+)
+def test_peak_outside_the_bands_is_told(
+    speeds_rpm: tuple[float, ...], words: str, *, has_bands: bool
+) -> None:
+    record = sample_record(2)
+    if not has_bands:
+        record["plan"]["keep_outs"] = record["plan"]["keep_outs"][1:]
+    row = record["predictions"]["passage_peak_speed"]["rows"][0]
+    ends = (to_si(rpm, "rpm") for rpm in speeds_rpm)
+    row.update(zip(("value", "low", "high"), ends, strict=True), status="ok")
+    assert peak_note(Reading(record), "stand rocking", row) == words
+
+
+@pytest.mark.parametrize(
+    ("damping", "kind", "words"),
+    [(0.02, "ramp", IN_ONE), (0.08, "ramp", "—"), (None, "ramp", "—"), (0.02, "hold", "—")],
+)
+def test_abort_out_of_a_ramp_without_a_hand_check_says_why(
+    damping: float | None, kind: str, words: str
+) -> None:
+    record = sample_record(6)
+    for mode in record["series"]["fan"]["modes"]:
+        mode["damping"] = damping
+    row = {**sway(record, ABORT_CAUSES[0])[0], "hand": None}
+    segment = {"kind": kind, "from_rad_s": 0.0, "to_rad_s": to_si(300.0, "rpm")}
+    assert hand_or_why(Reading(record), row, segment) == words
+    assert hand_or_why(Reading(record), {**row, "hand": 2e-3}, segment) == "2.00\xa0mm"
 
 
 def test_missing_number_outweighs_all_others_of_its_cause() -> None:
@@ -94,7 +136,7 @@ def test_modes_that_are_not_passed_are_named() -> None:
     [
         (None, "is passed: NOT ASSESSED (not computed)."),
         ([{"status": "does not apply", "reason": "the stand file gives no mode of the stand"}],
-         "is passed: NOT ASSESSED (the stand file gives no mode of the stand)."),
+         "is passed: does not apply (the stand file gives no mode of the stand)."),
         ([{"status": "not stated", "reason": "no allowance"}],
          "is passed: NOT ASSESSED (not stated: no allowance)."),
     ],
@@ -144,7 +186,11 @@ def test_rate_needed_is_told_with_the_rating_or_why_not() -> None:
     assert "stand twist NOT ASSESSED (not stated: the stand file does not say" in text
     row = record["predictions"]["passage_rate_needed"]["rows"][0]
     row.update(value=0.0, low=0.0, high=0.0, hand=to_si(0.1, "rpm/s"))
-    assert "any rate: even standing on the resonance stays below 0.100 rpm/s" in said(record)
+    no_rate = "no least rate: steady sway stays below the rating at the stated damping"
+    assert f"{no_rate} 0.100 rpm/s" in said(record)
+    assert "No least rate is no leave to dwell: bands are passed without stopping." in said(record)
+    row.update(hand=0.0)
+    assert f"{no_rate} no least rate" in said(record)
 
 
 def test_stay_in_bands_is_told_over_the_whole_card() -> None:
@@ -187,3 +233,8 @@ def test_limit_is_of_the_modes_that_a_rule_covers(change: Json, mode: str, words
     record["findings"].append({**record["findings"][0], "rule": "sway", "limit": 3e-3, **change})
     text = limit_text(Reading(record), "passage_amplitude", "hold", mode)
     assert text.replace("\xa0", " ") == words
+
+
+def test_causes_of_aborts_from_one_place_share_its_name() -> None:
+    text = said(sample_record(6))
+    assert f"abort from 1.1r: {', '.join(ABORT_CAUSES)}" in " ".join(text.split())
