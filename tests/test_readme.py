@@ -29,7 +29,7 @@ def test_shown_output_is_the_real_one(words, text, folder):
 
 def test_every_command_is_shown():
     shown = {m["words"].split()[0] for m in readme_examples.EXAMPLE.finditer(TEXT)}
-    assert shown == {"start", "check", "card", "fan", "method", "python"}
+    assert shown == {"start", "check", "card", "fan", "method", "python", "speeds"}
 
 
 def test_continuous_integration_runs_the_test_command_of_the_readme():

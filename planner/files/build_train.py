@@ -77,7 +77,8 @@ def _check_turns(document: Document, train: DriveTrainTable) -> None:
     """A shaft turns with one of its two neighbours, or between them where a gear is in it."""
     for i, shaft in enumerate(train.shaft):
         low, high = sorted((train.inertia[i].turns, train.inertia[i + 1].turns))
-        if not low * (1.0 - _ROUNDING) <= shaft.turns <= high * (1.0 + _ROUNDING):
+        # a value with a fault of its own is not a number, and not told twice
+        if shaft.turns < low * (1.0 - _ROUNDING) or shaft.turns > high * (1.0 + _ROUNDING):
             expected = f"turns of its neighbours, {low:g} to {high:g}"
             mend = "give the turns of the shaft itself: its stiffness counts times turns squared"
             document.fault(("drive_train", "shaft", i, "turns"), expected, mend)

@@ -323,6 +323,10 @@ SLIPS = {
     "no turns": (STAND, 'stiffness = "80 kN m/rad"\nturns = 4', 'stiffness = "80 kN m/rad"\n'
         "turns = ¦0", "drive_train.shaft.turns: expected a bare number above 0, found 0;"
         " correct the value"),
+    "turns of neither neighbour": (STAND, 'stiffness = "80 kN m/rad"\nturns = 4',
+        'stiffness = "80 kN m/rad"\nturns = ¦5', "drive_train.shaft.turns: expected turns of its"
+        " neighbours, 1 to 4, found 5; give the turns of the shaft itself: its stiffness counts"
+        " times turns squared"),
     # measured frequencies of the stand
     "second mode of a column": (STAND, '"stand column 1"', '¦"stand column 2"',
         'measured_mode.mode: expected a mode of column or drive train, "stand column 1",'

@@ -9,7 +9,7 @@ from planner.model.rules import Allowance
 
 def test_allowances_and_margin_go_forward(bench):
     wanted = requests(bench.plan.rule_book)
-    assert set(wanted.allowances) == {"air_load", "torque", "frequency"}
+    assert set(wanted.allowances) == {"air_load", "torque", "frequency", "damping"}
     assert wanted.allowances["air_load"] == pytest.approx((0.68, 1.05))
     assert wanted.stop_free_margin == pytest.approx(0.1)
 
