@@ -45,6 +45,9 @@ TOLD_DECIMALS = 1
 """Of a speed in rpm, as it is told."""
 
 
+_OPEN = Verdict.NOT_ASSESSED
+
+
 @dataclass(frozen=True)
 class Better:
     """A speed that keeps every limit of frequency, and what the rules would say of it."""
@@ -85,9 +88,14 @@ def advise(plan: Plan) -> tuple[Advice, ...]:
     real = desk.predicted(walk)
     judgement = desk.judged(walk, real)
     found = []
+    loose = [f for f in judgement.findings if _is_loose(f)]
     for hold in walk:
         verdict, reasons = _held(hold.id, judgement)
-        if hold.kind == "hold" and verdict is not Verdict.GO:
+        if hold.kind == "hold" and loose:
+            rules = tuple(dict.fromkeys((*reasons, *(f.rule for f in loose))))
+            told = Advice(hold.id, hold.to_rad_s, Verdict.worst([verdict, _OPEN]), rules)
+            found.append(replace(told, open_for=_open_for(judgement)))
+        elif hold.kind == "hold" and verdict is not Verdict.GO:
             told = Advice(hold.id, hold.to_rad_s, verdict, reasons)
             if _is_open(hold.id, judgement):
                 found.append(replace(told, open_for=_open_for(judgement)))
@@ -152,6 +160,11 @@ def _held(segment_id: str, judgement: Judgement) -> tuple[Verdict, tuple[str, ..
     ]
     worst = Verdict.worst([verdict for _, verdict in said] or [Verdict.GO])
     return worst, tuple(f.rule for f, verdict in said if verdict is not Verdict.GO)
+
+
+def _is_loose(finding: Finding) -> bool:
+    """A rule that matches nothing: no hold can be said to satisfy it."""
+    return finding.verdict is _OPEN and not finding.segment_verdicts
 
 
 def _is_open(segment_id: str, judgement: Judgement) -> bool:

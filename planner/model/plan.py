@@ -235,6 +235,8 @@ class Segment:
     """The drive's own run-up; ``duration_s`` is NaN until it is predicted."""
     course: tuple[tuple[float, float], ...] = ()
     """Time [s] and speed [rad/s] of a change of speed that is not even, once it is predicted."""
+    slow_course: tuple[tuple[float, float], ...] = ()
+    """The same at the worse end of the torque allowance."""
 
     @property
     def pieces(self) -> tuple[tuple[float, float, float], ...]:
@@ -242,6 +244,11 @@ class Segment:
         if not self.course:
             return ((self.duration_s, self.from_rad_s, self.to_rad_s),)
         return tuple((b[0] - a[0], a[1], b[1]) for a, b in pairwise(self.course))
+
+    @property
+    def slowest(self) -> Segment:
+        """The segment as slow as the torque allowance lets it be."""
+        return replace(self, course=self.slow_course) if self.slow_course else self
 
     @property
     def top_rad_s(self) -> float:

@@ -127,7 +127,7 @@ def _stay(
             total += _passed(found, band)
         else:
             back = _way_back(walk, event.label.segment, band)
-            worst = np.maximum(worst, _passed(found, band) + back[:, None])
+            worst = np.maximum(worst, _passed(found, band) + back)
     coasts = any(found is not None and not event.label.state for event, found in solved)
     return _with_schedule(walk, band, Stay(total + reentries * worst), coasts=coasts)
 
@@ -140,19 +140,25 @@ def _with_schedule(walk: Sequence[Segment], band: KeepOut, stay: Stay, *, coasts
             continue
         if not segment.duration_s > 0.0 and segment.enters(band):
             return Stay(_NOTHING, Status.NOT_STATED, f"{segment.id} has no duration")
-        total += segment.times * inside(segment, band)[:, None]
+        total += segment.times * _inside_ends(segment, band)
     return Stay(total)
 
 
 def _way_back(walk: Sequence[Segment], segment_id: str, band: KeepOut) -> FloatArray:
     """Ramps from rest up to and into a segment, each once."""
-    way = _NOTHING[:, 0].copy()
+    way = _NOTHING.copy()
     for segment in walk:
         if segment.kind == "ramp" and segment.duration_s > 0.0:
-            way += inside(segment, band)
+            way += _inside_ends(segment, band)
         if segment.id == segment_id:
             break
     return way
+
+
+def _inside_ends(segment: Segment, band: KeepOut) -> FloatArray:
+    """Time and turns inside a band, nominal twice and as slow as the torque allowance lets."""
+    nominal, slowest = inside(segment, band), inside(segment.slowest, band)
+    return np.stack([nominal, nominal, slowest], axis=1)
 
 
 def inside(segment: Segment, band: KeepOut) -> FloatArray:

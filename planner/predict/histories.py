@@ -255,11 +255,26 @@ class FoundRunUp:
         """Time of the run-up; infinite where the drive is too weak."""
         return float(self.path.time_s[0, -1])
 
+    @property
+    def slowest_s(self) -> float:
+        """The same at the worse end of the torque allowance."""
+        return float(self.path.time_s[-1, -1])
+
+    def course(self, lane: int) -> tuple[tuple[float, float], ...]:
+        """Time and speed of the nominal run-up, lane 0, or of the slowest, lane -1."""
+        times, speeds = self.path.time_s[lane].tolist(), self.path.speed_rad_s[lane].tolist()
+        return tuple(zip(times, speeds, strict=True))
+
 
 def own_run_up_of(
-    shaft: Shaft, segment: Segment, controls: tuple[Controls, Controls]
+    shaft: Shaft,
+    segment: Segment,
+    controls: tuple[Controls, Controls],
+    torque_allowance: tuple[float, float] = (1.0, 1.0),
 ) -> FoundRunUp:
     """Find the drive's own run-up; collective and cyclic follow the speed in proportion.
+
+    Its path has two lanes: nominal, and with the torque at the worse end of its allowance.
 
     Raises:
         NotAssessedError: no friction is stated, the torque did not converge, or it leads down.
@@ -278,12 +293,13 @@ def own_run_up_of(
     speed, fine = finer_torque(coarse[None, :], torque[None, None, :], PARTS)
     knots = [row[0] for row in shaft.drive.torque_by_speed if start < row[0] < segment.to_rad_s]
     speed, fine = _with_knots(speed[0], fine[0, 0], knots)
+    worst = np.max(np.multiply.outer(np.array(torque_allowance), fine), axis=0)
     path = run_up(
-        speed[None, :],
-        shaft.motor_torque_n_m(speed)[None, :],
-        fine[None, :],
-        np.array([shaft.friction_n_m]),
-        np.array([shaft.inertia_kg_m2]),
+        np.stack([speed, speed]),
+        np.stack([shaft.motor_torque_n_m(speed)] * 2),
+        np.stack([fine, np.maximum(fine, worst)]),
+        np.full(2, shaft.friction_n_m),
+        np.full(2, shaft.inertia_kg_m2),
     )
     return FoundRunUp(segment, controls, path)
 
@@ -299,8 +315,8 @@ def _with_knots(
 def timed(plan: Plan, walk: Sequence[Segment], requests: Requests) -> tuple[Segment, ...]:
     """The walk with the times of the drive's own run-ups filled in.
 
-    A time stays not a number where the drive does not reach the speed, or its run-up could not
-    be found: what builds on it is then not assessed.
+    A time stays not a number where the drive does not reach the speed at the worse end of the
+    torque allowance, or its run-up could not be found: what builds on it is then not assessed.
     """
     if not any(segment.own_run_up for segment in walk):
         return tuple(walk)
@@ -311,34 +327,43 @@ def timed(plan: Plan, walk: Sequence[Segment], requests: Requests) -> tuple[Segm
     except ValueError:
         return tuple(walk)
     cyclics = shaft.found_cyclics(walk)
-    return tuple(_timed(shaft, (s, ends_of(s, cyclics))) if s.own_run_up else s for s in walk)
+    allowance = requests.allowances.get("torque", (1.0, 1.0))
+    return tuple(
+        _timed(shaft, (s, ends_of(s, cyclics)), allowance) if s.own_run_up else s for s in walk
+    )
 
 
-def _timed(shaft: Shaft, way: Way) -> Segment:
+def _timed(shaft: Shaft, way: Way, torque_allowance: tuple[float, float]) -> Segment:
     segment, controls = way
     try:
-        found = own_run_up_of(shaft, segment, controls)
+        found = own_run_up_of(shaft, segment, controls, torque_allowance)
     except NotAssessedError:
         return replace(segment, duration_s=math.nan)
-    if not math.isfinite(found.time_s):
+    if not math.isfinite(found.slowest_s):
         return replace(segment, duration_s=math.nan)
-    times, speeds = found.path.time_s[0].tolist(), found.path.speed_rad_s[0].tolist()
-    return replace(segment, duration_s=found.time_s, course=tuple(zip(times, speeds, strict=True)))
+    return replace(
+        segment, duration_s=found.time_s, course=found.course(0), slow_course=found.course(-1)
+    )
 
 
 def ramp_history(
-    segment: Segment, controls: tuple[Controls, Controls], run_up: FoundRunUp | None = None
+    segment: Segment,
+    controls: tuple[Controls, Controls],
+    run_up: FoundRunUp | None = None,
+    lane: int = 0,
 ) -> History:
     """A powered ramp or stop over time: straight lines, or the drive's own run-up.
+
+    Lane 1 of a run-up is the slowest within the torque allowance.
 
     Raises:
         NotAssessedError: the ramp has no time, or the drive does not reach its speed.
     """
     label = segment.id
     if run_up is not None:
-        if not math.isfinite(run_up.time_s):
+        if not math.isfinite(run_up.path.time_s[lane, -1]):
             raise NotAssessedError(Status.OUTSIDE_VALIDITY, TOO_WEAK)
-        return own_run_up(label, run_up.path, 0, controls, SETTLE_S)
+        return own_run_up(label, run_up.path, lane, controls, SETTLE_S)
     if not segment.duration_s > 0.0:
         raise NotAssessedError(Status.NOT_STATED, "the ramp has no duration")
     speeds = (segment.from_rad_s, segment.to_rad_s)

@@ -89,7 +89,7 @@ class Passage:
 
 def ramp_rows(
     rows: Mapping[str, Rows],
-    ramps: Sequence[tuple[Segment, History | NotAssessedError]],
+    ramps: Sequence[tuple[Segment, tuple[History, ...] | NotAssessedError]],
     passages: Sequence[Passage],
 ) -> None:
     """Rows of powered ramps and of a powered stop, marched along their own speed."""
@@ -158,7 +158,7 @@ def _fault(
     passage: Passage,
     low_rad_s: float,
     high_rad_s: float,
-    history: History | NotAssessedError | None = None,
+    history: tuple[History, ...] | NotAssessedError | None = None,
 ) -> _Fault | None:
     """Why a passage has no amplitude."""
     mode = passage.mode
@@ -177,27 +177,35 @@ def _flag(rows: Mapping[str, Rows], label: Labels, fault: _Fault, top_rad_s: flo
 
 
 def _ramp_row(
-    rows: Mapping[str, Rows], label: Labels, passage: Passage, way: tuple[Segment, History]
+    rows: Mapping[str, Rows],
+    label: Labels,
+    passage: Passage,
+    way: tuple[Segment, tuple[History, ...]],
 ) -> None:
-    segment, history = way
+    """One ramp; histories beside the first are other ways that it may take."""
+    segment, histories = way
     top = segment.top_rad_s
     try:
-        table = SpeedTable(history.speed_rad_s[None, :], history.step_s)
         w, zeta = passage.variants((segment.from_rad_s, segment.to_rad_s))
-        peak = passage_peak(table, w, zeta)
+        peaks = [
+            passage_peak(SpeedTable(each.speed_rad_s[None, :], each.step_s), w, zeta)
+            for each in histories
+        ]
     except ValueError as refusal:
         _flag(rows, label, (Status.OUTSIDE_VALIDITY, str(refusal)), top)
         return
+    offset = passage.offset_m
+    amplitude = np.concatenate([peak.amplitude[0] for peak in peaks]) * offset
     # what a held speed after the ramp adds counts too
-    most = np.maximum(peak.amplitude[0], peak.held_amplitude[0]) * passage.offset_m
-    amplitude, speed = peak.amplitude[0] * passage.offset_m, peak.speed_rad_s[0]
+    held = np.concatenate([peak.held_amplitude[0] for peak in peaks]) * offset
+    speed = np.concatenate([peak.speed_rad_s[0] for peak in peaks])
     rate = (segment.to_rad_s - segment.from_rad_s) / segment.duration_s
     hand = math.nan if segment.own_run_up else _hand(passage, segment, abs(rate))
     rows[AMPLITUDE].add(
         label,
         float(amplitude[0]),
         low=float(amplitude.min()),
-        high=float(most.max()),
+        high=float(np.maximum(amplitude, held).max()),
         speed_rad_s=top,
         hand=hand,
     )

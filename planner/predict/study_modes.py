@@ -193,11 +193,14 @@ def _met_rows(
 def _corrections(found: Sequence[Track]) -> dict[str, Prediction]:
     rows = {q: Rows(q, _ID) for q in ("frequency_correction", "frequency_residual")}
     for track in found:
-        if np.isfinite(track.ends.residual):
+        if track.ends.fault:
+            for filled in rows.values():
+                filled.flag(Labels(mode=track.name), track.status, track.ends.fault)
+        elif np.isfinite(track.ends.residual):
             rows["frequency_correction"].add(Labels(mode=track.name), track.ends.correction)
             rows["frequency_residual"].add(Labels(mode=track.name), track.ends.residual)
     for filled in rows.values():
-        if not any(np.isfinite(track.ends.residual) for track in found):
+        if not any(np.isfinite(t.ends.residual) or t.ends.fault for t in found):
             filled.flag(Labels(), Status.NOT_APPLICABLE, _NOT_MEASURED)
     return {quantity: filled.prediction() for quantity, filled in rows.items()}
 

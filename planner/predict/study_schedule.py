@@ -154,8 +154,9 @@ def _passage(rows: Rows, segment: Segment, band: KeepOut, inputs: Inputs) -> Non
     if not segment.duration_s > 0.0:
         rows.flag(label, *_no_time(segment), speed_rad_s=top)
         return
-    rate = least_rate_rad_s2(segment, band)
-    rows.add(label, rate / inputs["stand.full_speed_rad_s"], speed_rad_s=top)
+    full = inputs["stand.full_speed_rad_s"]
+    rate, slowest = (least_rate_rad_s2(each, band) for each in (segment, segment.slowest))
+    rows.add(label, rate / full, low=slowest / full, speed_rad_s=top)
 
 
 def least_rate_rad_s2(segment: Segment, band: KeepOut) -> float:

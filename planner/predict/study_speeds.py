@@ -98,10 +98,11 @@ def _passages(modes: Sequence[StandMode], inputs: Inputs) -> list[Passage] | Not
 
 def _powered(
     ways: Sequence[Way], shaft: Shaft, inputs: Inputs
-) -> list[tuple[Segment, History | NotAssessedError]]:
+) -> list[tuple[Segment, tuple[History, ...] | NotAssessedError]]:
     """Ramps, and the stop where it is powered, with their speed over time."""
     driven = {"ramp", "stop"} if inputs["shutdown"].powered else {"ramp"}
-    return [(way[0], _history(way, shaft)) for way in ways if way[0].kind in driven]
+    allowance = inputs.allowance("torque")
+    return [(way[0], _histories(way, shaft, allowance)) for way in ways if way[0].kind in driven]
 
 
 def _reserves(ways: Sequence[Way], inputs: Inputs, shaft: Shaft) -> Prediction:
@@ -135,12 +136,16 @@ def _time_rows(
             rows[quantity].flag(event.label, event.status, event.reason, speed_rad_s=top)
 
 
-def _history(way: Way, shaft: Shaft) -> History | NotAssessedError:
-    """Speed of a powered ramp over time, or why there is none."""
+def _histories(
+    way: Way, shaft: Shaft, torque_allowance: tuple[float, float]
+) -> tuple[History, ...] | NotAssessedError:
+    """Speed of a powered ramp over time, of an own run-up also the slowest, or why none is."""
     segment, controls = way
     try:
-        run_up = own_run_up_of(shaft, segment, controls) if segment.own_run_up else None
-        return ramp_history(segment, controls, run_up)
+        if not segment.own_run_up:
+            return (ramp_history(segment, controls),)
+        run_up = own_run_up_of(shaft, segment, controls, torque_allowance)
+        return tuple(ramp_history(segment, controls, run_up, lane) for lane in (0, 1))
     except NotAssessedError as refusal:
         return refusal
 

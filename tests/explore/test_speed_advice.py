@@ -184,3 +184,21 @@ def test_no_speed_is_told_that_the_drive_may_not_have(monkeypatch):
     stand = dataclasses.replace(plan.stand, drive=drive)
     (advice,) = advise(dataclasses.replace(plan, stand=stand))
     assert told_rpm(advice) == {"below": 929.0}
+
+
+def test_rule_that_matches_nothing_leaves_every_hold_open():
+    """A stand without a shaft mode: no hold can be said to satisfy the rule of shafts."""
+    plan = held_at(250.0, 970.0)
+    stand = dataclasses.replace(
+        plan.stand,
+        drive_train=None,
+        modes=tuple(m for m in plan.stand.modes if m.family != "shaft"),
+    )
+    told = advise(dataclasses.replace(plan, stand=stand))
+    holds = [s.id for s in segments(plan) if s.kind == "hold"]
+    assert [one.segment for one in told] == holds
+    for one in told:
+        assert one.verdict is Verdict.NOT_ASSESSED
+        assert "shaft-spacing" in one.reasons
+        assert one.open_for
+        assert (one.below, one.above) == (None, None)

@@ -13,7 +13,7 @@ from planner.judge.requests import requests
 from planner.model.plan import ABORT_CAUSES, segments
 from planner.model.results import Labels, Status
 from planner.predict.histories import Origin, abort_order, run_downs
-from planner.predict.mid_ramp import CUTS, Cut, worst_of_cuts
+from planner.predict.mid_ramp import Cut, cut_speeds, worst_of_cuts
 from planner.predict.mode_correction import with_allowance
 from planner.predict.run_down_events import Event
 from planner.predict.shaft import ends_of, shaft_of
@@ -47,7 +47,7 @@ def test_worst_cut_equals_ramp_and_run_down_integrated_as_one(articulated, predi
     """x'' + 2 ζ w x' + w² x = (Ω² - i Ω') e^(iψ), by an adaptive method, at the same cuts."""
     found = predicted("articulated-run-up")
     worst = 0.0
-    for share in CUTS[1:4]:
+    for share in (1.04, 1.06, 1.08):
         times, speeds = joined_history(articulated, found, share)
         keep = times < 40.0
         times, speeds = times[keep], speeds[keep]
@@ -68,7 +68,8 @@ def test_worst_cut_equals_ramp_and_run_down_integrated_as_one(articulated, predi
     sway = found["passage_amplitude"]
     i = row(sway, segment="1.2r", mode="stand lateral", state=COMMANDED)
     offset = float(found["unbalance"].value[0]) / MASS
-    assert sway.value[i] == pytest.approx(worst * offset, rel=0.01)
+    assert 0.97 * sway.value[i] < worst * offset < 1.005 * sway.value[i]
+    assert sway.high[i] > worst * offset
 
 
 def test_abort_out_of_the_ramp_sways_more_than_one_from_its_end(predicted):
@@ -94,9 +95,23 @@ def test_cut_whose_run_down_was_not_found_counts_against_its_ramp(articulated):
     failed = Event(label, 13.0, status=Status.NOT_CONVERGED, reason="torque did not converge")
     ends = with_allowance(np.array([W]), (0.97, 1.03))
     mode = StandMode("stand lateral", ends, ZETA, MASS)
-    cut = Cut(ramp, mode.label, failed)
+    cut = Cut(ramp, failed)
     variants = (np.array([W]), np.array([ZETA]))
     worst = worst_of_cuts([(cut, failed, None)], mode, variants)["1.2r", COMMANDED]
     assert (worst.status, worst.reason) == (Status.NOT_CONVERGED, "torque did not converge")
     absent = dataclasses.replace(failed, status=Status.NOT_APPLICABLE)
     assert worst_of_cuts([(cut, absent, None)], mode, variants) == {}
+
+
+def test_ramp_is_cut_about_the_modes_it_passes_and_nowhere_else(articulated):
+    walk = {s.id: s for s in segments(articulated)}
+    ends = with_allowance(np.array([W]), (0.97, 1.03))
+    mode = StandMode("stand lateral", ends, ZETA, MASS)
+    speeds = np.array(cut_speeds(walk["1.2r"], [mode]))
+    assert speeds.min() == pytest.approx(0.96 * W)
+    assert speeds.max() == pytest.approx(1.26 * W)
+    assert np.all(np.diff(speeds) == pytest.approx(0.02 * W))
+    assert cut_speeds(walk["1.3r"], [mode]) == []
+    assert cut_speeds(walk["2.1r"], [mode]) == []  # pitch alone changes
+    unknown = dataclasses.replace(mode, status=Status.NOT_STATED)
+    assert cut_speeds(walk["1.2r"], [unknown]) == []

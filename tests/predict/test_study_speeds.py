@@ -283,6 +283,9 @@ def test_own_run_up_takes_the_time_that_its_torque_gives(plan):
     )
     assert walk[0].duration_s == pytest.approx(float(by_hand), rel=0.01)
     assert [s.duration_s for s in walk[1:]] == [s.duration_s for s in segments(plan)[1:]]
+    assert walk[0].course[-1] == (walk[0].duration_s, walk[0].to_rad_s)
+    assert walk[0].slow_course[-1][0] > 1.01 * walk[0].duration_s
+    assert walk[0].slowest.pieces[-1][0] > walk[0].pieces[-1][0]
     history = ramp_history(walk[0], ends, own_run_up_of(shaft, walk[0], ends))
     assert history.speed_rad_s[-1] == walk[0].to_rad_s
     found = found_in(plan, walk)["drive_torque_reserve"]
