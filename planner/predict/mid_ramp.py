@@ -33,14 +33,14 @@ if TYPE_CHECKING:
 
     FloatArray = NDArray[np.float64]
 
-CUT_STEP = 0.02
-CUT_SHARES = (0.96, 1.26)
+CUT_STEP = 0.04
+CUT_SHARES = (0.96, 1.24)
 """Of the modes' frequencies: where power fails, from below the lowest to above the highest mode
 that a ramp passes, in steps. The way back meets the way up in some phase, so that the sway goes up
 and down with the cut."""
-BETWEEN = 1.02
+BETWEEN = 1.05
 """Of the greatest amplification found: it may be this much between two cuts. Steps of a quarter
-change it by up to 2 %, tried with damping from 0.5 to 2.5 % and ramps from 3 to 20 s."""
+change it by up to 5 %, tried with damping from 0.5 to 2.5 % and ramps from 3 to 20 s."""
 BESIDE = 0.4
 """Of a mode's frequency: how far beyond it ramp and run-down are followed."""
 POINTS = 2048

@@ -47,7 +47,7 @@ def test_worst_cut_equals_ramp_and_run_down_integrated_as_one(articulated, predi
     """x'' + 2 ζ w x' + w² x = (Ω² - i Ω') e^(iψ), by an adaptive method, at the same cuts."""
     found = predicted("articulated-run-up")
     worst = 0.0
-    for share in (1.04, 1.06, 1.08):
+    for share in (1.04, 1.08, 1.12):
         times, speeds = joined_history(articulated, found, share)
         keep = times < 40.0
         times, speeds = times[keep], speeds[keep]
@@ -109,8 +109,8 @@ def test_ramp_is_cut_about_the_modes_it_passes_and_nowhere_else(articulated):
     mode = StandMode("stand lateral", ends, ZETA, MASS)
     speeds = np.array(cut_speeds(walk["1.2r"], [mode]))
     assert speeds.min() == pytest.approx(0.96 * W)
-    assert speeds.max() == pytest.approx(1.26 * W)
-    assert np.all(np.diff(speeds) == pytest.approx(0.02 * W))
+    assert speeds.max() == pytest.approx(1.24 * W)
+    assert np.all(np.diff(speeds) == pytest.approx(0.04 * W))
     assert cut_speeds(walk["1.3r"], [mode]) == []
     assert cut_speeds(walk["2.1r"], [mode]) == []  # pitch alone changes
     unknown = dataclasses.replace(mode, status=Status.NOT_STATED)
