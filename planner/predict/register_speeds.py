@@ -45,6 +45,25 @@ _TOTAL = (
     "to where it began. "
 )
 
+
+def _total(names: tuple[str, str], unit: tuple[str, str], hand_check: str) -> Quantity:
+    """Stay in a band over the whole card: id and name, unit and symbol."""
+    return Quantity(
+        id=names[0],
+        name=names[1],
+        unit=unit[0],
+        symbol=unit[1],
+        axes=("band",),
+        danger="high",
+        study="speeds",
+        method=_TOTAL,
+        validity=_COAST_VALIDITY,
+        source=_DERIVED,
+        hand_check=hand_check,
+        allowance="torque",
+    )
+
+
 SPEEDS = (
     Quantity(
         id="drive_torque_reserve",
@@ -84,32 +103,14 @@ SPEEDS = (
         hand_floor=1.0,
         allowance="torque",
     ),
-    Quantity(
-        id="band_time_total",
-        name="Time inside a keep-out band over the whole card",
-        unit="s",
-        symbol="t",
-        axes=("band",),
-        danger="high",
-        study="speeds",
-        method=_TOTAL,
-        validity=_COAST_VALIDITY,
-        source=_DERIVED,
-        hand_check="none of its own: sum of divisions and of times of run-downs",
-        allowance="torque",
+    _total(
+        ("band_time_total", "Time inside a keep-out band over the whole card"),
+        ("s", "t"),
+        "none of its own: sum of divisions and of times of run-downs",
     ),
-    Quantity(
-        id="band_cycles_total",
-        name="Turns inside a keep-out band over the whole card",
-        unit="",
-        symbol="n",
-        axes=("band",),
-        danger="high",
-        study="speeds",
-        method=_TOTAL,
-        validity=_COAST_VALIDITY,
-        source=_DERIVED,
-        hand_check="none of its own: sum of products, and of turns with their own",
-        allowance="torque",
+    _total(
+        ("band_cycles_total", "Turns inside a keep-out band over the whole card"),
+        ("", "n"),
+        "none of its own: sum of products, and of turns with their own",
     ),
 )
